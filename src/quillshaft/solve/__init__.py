@@ -1,1 +1,23 @@
+"""Numbers only: elimination on the graph, statics, natural modes and response of a `Network`."""
 
+from quillshaft.solve.elimination import ElementValues, Elimination, count_below, eliminate
+from quillshaft.solve.modes import Modes, natural_modes
+from quillshaft.solve.plan import Plan, plan_elimination
+from quillshaft.solve.statics import Statics, static_torques
+from quillshaft.solve.substitution import Solution, respond, solve
+
+__all__ = [
+    "ElementValues",
+    "Elimination",
+    "Modes",
+    "Plan",
+    "Solution",
+    "Statics",
+    "count_below",
+    "eliminate",
+    "natural_modes",
+    "plan_elimination",
+    "respond",
+    "solve",
+    "static_torques",
+]

@@ -1,0 +1,167 @@
+"""Oddities in the data worth a question before anything is signed (common practice figures throughout)."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator
+
+from quillshaft.assess.results import Flag, LinkDuty
+from quillshaft.graph.torsional import TorsionalGraph
+from quillshaft.train.model import Coupling, GearMesh, Station, Train
+
+RPM = 30.0 / math.pi
+STIFFNESS_OVER_TORQUE = {
+    "elastomer": (4.0, 150.0),
+    "steel-spring": (10.0, 60.0),
+    "grid": (10.0, 200.0),
+    "disc": (100.0, 3000.0),
+    "diaphragm": (100.0, 3000.0),
+    "gear": (300.0, 6000.0),
+}
+"""Ordinary coupling stiffness over rated torque [1/rad] by kind."""
+
+
+def plausibility_flags(train: Train, graph: TorsionalGraph, duties: tuple[LinkDuty, ...]) -> tuple[Flag, ...]:
+    """Everything odd in a train's data, in file order. A flag is a question, never a verdict."""
+    return (
+        *_disc_flags(train.stations),
+        *_spread_flags(train, graph),
+        *_referral_flags(train, graph),
+        *_shaft_flags(train),
+        *_coupling_flags(train),
+        *_gear_flags(train),
+        *_duty_flags(train, graph, duties),
+        *_operation_flags(train),
+    )
+
+
+def _disc_flags(stations: tuple[Station, ...]) -> Iterator[Flag]:
+    for station in stations:
+        if station.mass_kg is None or station.diameter_m is None or station.inertia_kgm2 == 0:
+            continue
+        disc = station.mass_kg * station.diameter_m**2 / 8.0
+        share = station.inertia_kgm2 / disc
+        where = f"stations.{station.name}"
+        text = (
+            f"its inertia is {share:.3g} × that of a plain disc of its mass and diameter ({disc:.4g} kg·m²)"
+        )
+        if 3.2 <= share <= 5.0:
+            yield Flag(where, f"{text}: a GD² value given as inertia would be 4 ×")
+        elif share > 2.0:
+            yield Flag(where, f"{text}: more than all its mass at the rim")
+        elif share < 0.2:
+            yield Flag(
+                where, f"{text}: a quarter would be GD² divided by four twice; ask what the sheet means"
+            )
+
+
+def _spread_flags(train: Train, graph: TorsionalGraph) -> Iterator[Flag]:
+    """An inertia out of proportion to the machine's power and speed (a factor-4 slip can hide)."""
+    if train.power is None:
+        return
+    largest = max((abs(watts) for watts in train.power.stations_w.values() if watts), default=0.0)
+    if largest == 0:
+        return
+    for machine in train.machines:
+        if machine.kind not in ("induction-motor", "synchronous-motor", "converter-fed-motor", "generator"):
+            continue
+        index = graph.number(machine.at or "")
+        speed = train.operation.rated_rad_s * abs(float(graph.speed_ratio[index]))
+        constant = 0.5 * graph.inertia_kgm2[index] * speed**2 / largest
+        if not 0.1 <= constant <= 8.0 and constant > 0:
+            text = (
+                f"the rotor's kinetic energy at speed is {constant:.2g} s of the train's power; "
+                "ordinary electrical machines hold 0.1 to 8 s: check for a factor of 4 (GD²) or of 9.81"
+            )
+            yield Flag(f"stations.{graph.stations[index]}", text)
+
+
+def _referral_flags(train: Train, graph: TorsionalGraph) -> Iterator[Flag]:
+    """A wheel lighter than its pinion hints at an inertia already referred to the other shaft."""
+    inertia = {station.name: station for station in train.stations}
+    for gear in train.gears:
+        if not isinstance(gear, GearMesh) or gear.internal:
+            continue
+        small, large = sorted(zip(gear.teeth, gear.between, strict=True))
+        pinion, wheel = inertia[small[1]], inertia[large[1]]
+        ratio = large[0] / small[0]
+        given = wheel.inertia_kgm2 > 0 and pinion.inertia_kgm2 > 0 and wheel.referred_to is None
+        if given and ratio > 1.5 and wheel.inertia_kgm2 < pinion.inertia_kgm2 * ratio:
+            text = (
+                f"only {wheel.inertia_kgm2 / pinion.inertia_kgm2:.2g} × the inertia of the pinion at "
+                f"{ratio:.2f} × its teeth (equal sections would give {ratio**4:.0f} ×): "
+                "is it already referred to the pinion's speed?"
+            )
+            yield Flag(f"stations.{wheel.name}", text)
+        if math.gcd(*gear.teeth) > 1:
+            text = f"the teeth {gear.teeth[0]} : {gear.teeth[1]} share a factor: nominal ratio in place of tooth numbers?"
+            yield Flag(f"gears.{gear.name}", text)
+
+
+def _shaft_flags(train: Train) -> Iterator[Flag]:
+    for shaft in train.shafts:
+        modulus = shaft.material.shear_modulus_pa if shaft.material else None
+        if modulus is not None and shaft.material is not None:
+            if shaft.material.name.lower() in ("steel", "cr-mo") and not 77e9 <= modulus <= 85e9:
+                yield Flag(f"shafts.{shaft.name}", f"G = {modulus / 1e9:.4g} GPa; steel has 79 to 83 GPa")
+        if shaft.pieces and not any(piece.hub_m for piece in shaft.pieces):
+            text = "no hub engagement on any piece: are both ends integral flanges or forged on?"
+            yield Flag(f"shafts.{shaft.name}", text)
+
+
+def _coupling_flags(train: Train) -> Iterator[Flag]:
+    for coupling in train.couplings:
+        where = f"couplings.{coupling.name}"
+        rated = coupling.rated_torque_nm
+        if rated is not None and coupling.kind is not None:
+            low, high = STIFFNESS_OVER_TORQUE[coupling.kind]
+            ratio = coupling.stiffness_nm_rad / rated
+            if not low <= ratio <= high:
+                text = f"stiffness over rated torque is {ratio:.3g} per rad; ordinary for this kind is {low:g} to {high:g}"
+                yield Flag(where, text)
+        if coupling.kind == "elastomer" or (coupling.kind is None and coupling.loss_factor is not None):
+            yield Flag(
+                where, "rubber: is this the dynamic stiffness, at what temperature and at what mean torque?"
+            )
+
+
+def _gear_flags(train: Train) -> Iterator[Flag]:
+    for gear in train.gears:
+        if not isinstance(gear, GearMesh) or gear.mesh_n_m is None or gear.geometry is None:
+            continue
+        if gear.geometry.face_m:
+            unit = gear.mesh_n_m / gear.geometry.face_m / 1e9
+            if not 8.0 <= unit <= 30.0:
+                yield Flag(
+                    f"gears.{gear.name}", f"mesh stiffness {unit:.3g} N/(mm·µm); steel gears have 10 to 25"
+                )
+
+
+def _duty_flags(train: Train, graph: TorsionalGraph, duties: tuple[LinkDuty, ...]) -> Iterator[Flag]:
+    twist_limit = {"coupling": math.radians(15.0), "shaft": math.radians(2.0)}
+    rated = {coupling.name: coupling for coupling in train.couplings}
+    for duty in duties:
+        link = graph.link(duty.link)
+        table = "couplings" if link.kind == "coupling" else "shafts"
+        limit = twist_limit.get(link.kind)
+        if duty.wind_up_rad is not None and limit is not None and abs(duty.wind_up_rad) > limit:
+            text = f"wind-up of {math.degrees(abs(duty.wind_up_rad)):.3g}° at rated power; ordinary is up to"
+            yield Flag(f"{table}.{duty.link}", f"{text} {math.degrees(limit):.3g}°")
+        coupling: Coupling | None = rated.get(duty.link)
+        if coupling is None or coupling.rated_torque_nm is None or duty.mean_torque_nm is None:
+            continue
+        if abs(duty.mean_torque_nm) > coupling.rated_torque_nm:
+            text = f"mean torque {abs(duty.mean_torque_nm):.5g} N·m exceeds its rated {coupling.rated_torque_nm:.5g} N·m"
+            yield Flag(f"couplings.{duty.link}", text)
+
+
+def _operation_flags(train: Train) -> Iterator[Flag]:
+    operation = train.operation
+    engine = any(machine.kind == "reciprocating-engine" for machine in train.machines)
+    if engine and operation.idle_rad_s is None:
+        yield Flag(
+            "operation",
+            "an engine without an idle speed: give idle, and a range that holds it if it runs there",
+        )
+    if operation.range_given and operation.trip_rad_s is None:
+        yield Flag("operation", "no trip speed is given: the diagram ends at the top of the range")

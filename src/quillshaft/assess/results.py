@@ -1,0 +1,184 @@
+"""What a screening finds: frozen records with units in their names, everything at each shaft's own speed."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Literal
+
+from quillshaft.graph.torsional import TorsionalGraph
+from quillshaft.solve.modes import Modes
+from quillshaft.sources.line import Source
+from quillshaft.train.model import Assumed, Dismissal, Train
+
+Verdict = Literal["clear", "barred", "close", "crossing"]
+SEVERITY: dict[Verdict, int] = {"clear": 0, "barred": 1, "close": 2, "crossing": 3}
+"""How bad a verdict is: the train's verdict is that of its worst pair."""
+
+
+@dataclass(frozen=True)
+class Proof:
+    """Elastic modes counted just below and just above a frequency; members of a cluster share the counts."""
+
+    below: int
+    above: int
+    relative_width: float
+    proven: bool
+
+
+@dataclass(frozen=True)
+class ModeNode:
+    """A point of a link that stands still in a mode: `share` of the way from its first station [0 to 1]."""
+
+    link: str
+    share: float
+
+
+@dataclass(frozen=True)
+class ModeResult:
+    """One natural mode.
+
+    shape             actual angle at each station, the largest is 1
+    referred_shape    referred angle at each station, the largest is 1
+    strain_energy     share by link; kinetic_energy share by station; each sums to 1
+    link_torque       referred torque by link over the largest of the mode; None where a closed loop of rigid
+                      meshes leaves the split open
+    bounds_hz         lowest and highest frequency over all tolerances
+    damping_ratio     half the loss factors weighted by strain energy, low damping
+    cluster           numbers of the modes that share this frequency, itself included
+    """
+
+    mode: int
+    frequency_hz: float
+    omega_rad_s: float
+    cycles_per_min: float
+    damping_ratio: float
+    shape: dict[str, float]
+    referred_shape: dict[str, float]
+    strain_energy: dict[str, float]
+    kinetic_energy: dict[str, float]
+    link_torque: dict[str, float | None]
+    nodes: tuple[ModeNode, ...]
+    bounds_hz: tuple[float, float]
+    proof: Proof
+    residual: float
+    cluster: tuple[int, ...]
+
+
+@dataclass(frozen=True)
+class Interference:
+    """A source and a mode: how near they come in the judged range, and what that means.
+
+    margin                nominal, signed; worst_margin over the tolerances
+    critical_speed_rpm    where they meet, in range nearest rated, else nearest the range; None if never
+    judged_at_rpm         speed of `speed-at` at which the margin is smallest
+    excitability          nominal; worst_excitability the largest of nominal and both corners; None where a
+                          rigid loop leaves the torque at the source open
+    """
+
+    source: str
+    mode: int
+    critical_speed_rpm: float | None
+    critical_speeds_rpm: tuple[float, ...]
+    margin: float
+    worst_margin: float
+    judged_at_rpm: float
+    required: float
+    worst_required: float
+    excitability: float | None
+    worst_excitability: float | None
+    verdict: Verdict
+    worst_verdict: Verdict
+    dismissed: Dismissal | None
+
+
+@dataclass(frozen=True)
+class StaleDismissal:
+    """A dismissal that was not applied, and why."""
+
+    dismissal: Dismissal
+    why: str
+
+
+@dataclass(frozen=True)
+class LinkDuty:
+    """Mean torque [N·m] and wind-up [rad] of a link under the rated power flow, at its first-named station.
+
+    None where the split is indeterminate (a closed loop of rigid meshes) or no power is given.
+    """
+
+    link: str
+    mean_torque_nm: float | None
+    wind_up_rad: float | None
+
+
+@dataclass(frozen=True)
+class SelfCheck:
+    """What every run proves of its own numbers."""
+
+    modes: int
+    all_proven: bool
+    relative_width: float
+    largest_residual: float
+    largest_energy_error: float
+
+
+@dataclass(frozen=True)
+class Flag:
+    """Something in the data that is odd or should be asked about; never changes a verdict."""
+
+    element: str
+    text: str
+
+
+@dataclass(frozen=True)
+class Screening:
+    """The whole result of screening a train.
+
+    judged_modes      numbers of the modes up to the highest source, margin included
+    interferences     every judged pair of continuous source and mode, in order of mode and source
+    verdict           of the worst pair not dismissed, nominal; worst_verdict over the tolerances
+    """
+
+    train: Train
+    graph: TorsionalGraph
+    network_modes: Modes
+    modes: tuple[ModeResult, ...]
+    judged_modes: tuple[int, ...]
+    sources: tuple[Source, ...]
+    sources_off: tuple[tuple[Source, str], ...]
+    interferences: tuple[Interference, ...]
+    stale_dismissals: tuple[StaleDismissal, ...]
+    duties: tuple[LinkDuty, ...]
+    flags: tuple[Flag, ...]
+    assumed: tuple[Assumed, ...]
+    self_check: SelfCheck
+    verdict: Verdict
+    worst_verdict: Verdict
+
+    def not_clear(self) -> tuple[Interference, ...]:
+        """Pairs not clear at the worst case, the worst first; dismissed ones after the others."""
+
+        def badness(pair: Interference) -> tuple[bool, int, int, float, float]:
+            return (
+                pair.dismissed is not None,
+                -SEVERITY[pair.worst_verdict],
+                -SEVERITY[pair.verdict],
+                abs(pair.margin),
+                -(pair.worst_excitability if pair.worst_excitability is not None else 1.0),
+            )
+
+        bad = [
+            pair for pair in self.interferences if pair.worst_verdict != "clear" or pair.verdict != "clear"
+        ]
+        return tuple(sorted(bad, key=badness))
+
+    def mode(self, number: int) -> ModeResult:
+        """A mode by its number. Raises IndexError where there is none."""
+        return self.modes[number - 1]
+
+    def source(self, name: str) -> Source:
+        """A source by any of its names. Raises KeyError where there is none."""
+        for source in self.sources:
+            if source.answers_to(name):
+                return source
+        raise KeyError(name)

@@ -1,0 +1,144 @@
+"""Each link of the train as a draft for the graph: its stations, stiffness and where it will stand."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from fractions import Fraction
+from typing import Literal
+
+from quillshaft.elements import shaft as shaft_formulas
+from quillshaft.elements.gear import mesh_stiffness_at_first, turning_members
+from quillshaft.graph.network import Ints
+from quillshaft.graph.torsional import Slot
+from quillshaft.train.model import Coupling, Epicyclic, GearMesh, Shaft, Tolerance, Train
+
+
+@dataclass(frozen=True)
+class LinkDraft:
+    """A link before nodes are merged; stiffness [N·m/rad] is actual, at the first-named station.
+
+    signed holds the coefficients of the signed station angles in the link's twist, for gears: the twist at
+    the first-named station is sum(signed · signed angle).
+    """
+
+    name: str
+    kind: Literal["shaft", "coupling", "mesh", "epicyclic", "tie"]
+    stations: tuple[int, ...]
+    stiffness: float | None
+    tolerance: Tolerance
+    loss_factor: float | None
+    slot: Slot
+    signed: tuple[Fraction, ...] = ()
+    ratio_text: str = ""
+
+    def station_coefficients(self, ratios: tuple[Fraction, ...]) -> tuple[Fraction, ...]:
+        """Coefficients of the referred station angles, scaled so that the torque is the referred one."""
+        if len(self.stations) == 1:
+            return (Fraction(1),)
+        if self.slot != "torque":
+            return (Fraction(1), Fraction(-1))
+        first = abs(ratios[self.stations[0]]) or Fraction(1)
+        pairs = zip(self.stations, self.signed, strict=True)
+        return tuple(coefficient * (ratios[station] or Fraction(1)) / first for station, coefficient in pairs)
+
+    def node_coefficients(self, node: Ints, ratios: tuple[Fraction, ...]) -> dict[int, Fraction]:
+        """The same by network node, without those that cancel."""
+        out: dict[int, Fraction] = {}
+        for station, coefficient in zip(self.stations, self.station_coefficients(ratios), strict=True):
+            number = int(node[station])
+            out[number] = out.get(number, Fraction(0)) + coefficient
+        return {number: value for number, value in out.items() if value}
+
+
+def draft_links(train: Train, names: tuple[str, ...], ratios: tuple[Fraction, ...]) -> list[LinkDraft]:
+    """Drafts of all links in file order: shafts, couplings, gears, ties."""
+    number = {name: index for index, name in enumerate(names)}
+    drafts = [_shaft(shaft, number, ratios) for shaft in train.shafts]
+    drafts += [_coupling(coupling, number, ratios) for coupling in train.couplings]
+    drafts += [
+        _mesh(gear, number, ratios) if isinstance(gear, GearMesh) else _stage(gear, number, ratios)
+        for gear in train.gears
+    ]
+    drafts += [
+        LinkDraft(
+            tie.name, "tie", (number[tie.at],), tie.stiffness_nm_rad, tie.tolerance, tie.loss_factor, "tie"
+        )
+        for tie in train.ties
+    ]
+    return drafts
+
+
+def _unreferred(
+    stiffness: float, referred_to: str | None, own: str, number: dict[str, int], ratios: tuple[Fraction, ...]
+) -> float:
+    """Actual stiffness [N·m/rad] of one that a sheet gives referred to another shaft."""
+    if referred_to is None:
+        return stiffness
+    other, here = ratios[number[referred_to]], ratios[number[own]]
+    return stiffness if not other or not here else stiffness * float(other / here) ** 2
+
+
+def shaft_stiffness(shaft: Shaft) -> float:
+    """Stiffness [N·m/rad] of a shaft however it is spelled."""
+    if shaft.stiffness_nm_rad is not None:
+        return shaft.stiffness_nm_rad
+    if shaft.material is None:
+        raise ValueError(f"shaft {shaft.name} has geometry but no material")
+    if shaft.equivalent is not None:
+        return shaft_formulas.equivalent_stiffness(shaft.equivalent, shaft.material)
+    return shaft_formulas.pieces_stiffness(shaft.pieces, shaft.material)
+
+
+def _shaft(shaft: Shaft, number: dict[str, int], ratios: tuple[Fraction, ...]) -> LinkDraft:
+    stiffness = _unreferred(shaft_stiffness(shaft), shaft.referred_to, shaft.between[0], number, ratios)
+    ends = (number[shaft.between[0]], number[shaft.between[1]])
+    return LinkDraft(shaft.name, "shaft", ends, stiffness, shaft.tolerance, shaft.loss_factor, "spring")
+
+
+def _coupling(coupling: Coupling, number: dict[str, int], ratios: tuple[Fraction, ...]) -> LinkDraft:
+    given, first = coupling.stiffness_nm_rad, coupling.between[0]
+    stiffness = _unreferred(given, coupling.referred_to, first, number, ratios)
+    ends = (number[first], number[coupling.between[1]])
+    return LinkDraft(
+        coupling.name, "coupling", ends, stiffness, coupling.tolerance, coupling.loss_factor, "spring"
+    )
+
+
+def _pair_slot(stiffness: float | None, ends: tuple[int, ...], ratios: tuple[Fraction, ...]) -> Slot:
+    if not all(ratios[end] for end in ends):
+        return "torque"
+    return "rigid" if stiffness is None else "spring"
+
+
+def _mesh(gear: GearMesh, number: dict[str, int], ratios: tuple[Fraction, ...]) -> LinkDraft:
+    ends = (number[gear.between[0]], number[gear.between[1]])
+    stiffness = mesh_stiffness_at_first(gear)
+    z1, z2 = gear.teeth
+    signed = (Fraction(1), Fraction(-z2 if gear.internal else z2, z1))
+    return LinkDraft(
+        gear.name,
+        "mesh",
+        ends,
+        stiffness,
+        gear.tolerance,
+        gear.loss_factor,
+        _pair_slot(stiffness, ends, ratios),
+        signed,
+        f"{z1} : {z2}" + (" internal" if gear.internal else ""),
+    )
+
+
+def _stage(gear: Epicyclic, number: dict[str, int], ratios: tuple[Fraction, ...]) -> LinkDraft:
+    """A stage with a fixed member is a pair; its stiffness at the sun is moved to the first turning member."""
+    members = turning_members(gear)
+    stations = tuple(number[name] for name, _ in members)
+    leading = members[0][1]
+    signed = tuple(Fraction(coefficient, leading) for _, coefficient in members)
+    stiffness = gear.mesh_nm_rad
+    if stiffness is not None:
+        stiffness *= float(Fraction(leading, gear.sun_teeth)) ** 2
+    slot: Slot = "torque" if len(members) == 3 else _pair_slot(stiffness, stations, ratios)
+    text = f"sun {gear.sun_teeth}, ring {gear.ring_teeth}, {gear.planets} planets"
+    return LinkDraft(
+        gear.name, "epicyclic", stations, stiffness, gear.tolerance, gear.loss_factor, slot, signed, text
+    )

@@ -1,0 +1,187 @@
+"""Solving with an elimination: angles, twists and torques for given torques, at every point.
+
+The angle of an unknown u follows from those eliminated after it, and its twist against a neighbour j of its
+own group never as the difference of two nearly equal angles (excess form: own derivation):
+
+    x_u = (f_u + Σ weight_ui · x_i) / d
+    twist_uj = (f_u − excess_u · x_j + Σ weight_ui · (x_i − x_j)) / d
+
+Differences on the right are twists found before.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from quillshaft.graph.network import Floats, Ints, Network
+from quillshaft.solve.elimination import (
+    CHUNK_POINTS,
+    CoreRecord,
+    ElementValues,
+    Elimination,
+    Numbers,
+    Value,
+    Values,
+    eliminate,
+)
+from quillshaft.solve.plan import NO_PAIR, Plan
+
+
+@dataclass(frozen=True)
+class Solution:
+    """Angles and torques at every point, referred.
+
+    angle          (nodes, F)   [rad]
+    spring_twist   (springs, F) angle of the first end less that of the second [rad]
+    tie_twist      (ties, F)    angle of the tied node [rad]
+    link_torque    (torque links, F) [N·m]
+    """
+
+    angle: Numbers
+    spring_twist: Numbers
+    tie_twist: Numbers
+    link_torque: Numbers
+
+
+def solve(elimination: Elimination, torque: Numbers, link_error: Numbers | None = None) -> Solution:
+    """Solve for the torques on the nodes (nodes, F) or (nodes, 1) [N·m] at every point.
+
+    link_error (torque links, F) [rad] is a given right-hand side of the links' equations
+    Σ coefficient · angle − compliance · T = link_error (a transmission error); left out, it is zero.
+    """
+    plan, pivot = elimination.plan, elimination.pivot
+    points = pivot.shape[1]
+    f = np.zeros((plan.nodes + plan.links, points), dtype=np.result_type(pivot, torque))
+    f[: plan.nodes] = torque
+    if link_error is not None:
+        f[plan.nodes :] = link_error
+    with np.errstate(all="ignore"):
+        _forward(elimination, f)
+        x, twist = _backward(elimination, f)
+    return _solution(plan, elimination.tie_node, x, twist)
+
+
+def _forward(elimination: Elimination, f: Numbers) -> None:
+    plan = elimination.plan
+    rows, scratch = list(f), np.empty(f.shape[1], dtype=f.dtype)
+    multiply, add = np.multiply, np.add
+    for node, parent, ratio in zip(plan.leaf, plan.parent, elimination.leaf_ratio, strict=True):
+        above = rows[parent]
+        multiply(ratio, rows[node], scratch)
+        add(above, scratch, above)
+    for record in elimination.core:
+        carried = rows[record.step.unknown] / record.pivot
+        for other, weight in zip(record.step.neighbours, record.weights, strict=True):
+            rows[other] += weight * carried
+
+
+def _backward(elimination: Elimination, f: Numbers) -> tuple[Numbers, Numbers]:
+    """Return all unknowns (unknowns, F) and the twists of all pairs (pairs, F)."""
+    plan, pivot = elimination.plan, elimination.pivot
+    x = np.divide(f, pivot)
+    twist = np.empty((plan.pair_count, f.shape[1]), dtype=f.dtype)
+    for record in reversed(elimination.core):
+        _back_core(plan, record, f, x, twist)
+    rows, scratch = list(x), np.empty(f.shape[1], dtype=f.dtype)
+    multiply, add = np.multiply, np.add
+    ratios = list(elimination.leaf_ratio)
+    for node, parent, ratio in zip(reversed(plan.leaf), reversed(plan.parent), reversed(ratios), strict=True):
+        here = rows[node]
+        multiply(ratio, rows[parent], scratch)
+        add(here, scratch, here)
+    if plan.leaf:
+        leaf = list(plan.leaf)
+        moved = f[leaf] - elimination.excess[leaf] * x[list(plan.parent)]
+        twist[list(plan.leaf_pair)] = moved / pivot[leaf]
+    return x, twist
+
+
+def respond(
+    network: Network,
+    plan: Plan,
+    omega2: Floats,
+    torque: Numbers,
+    values: ElementValues | None = None,
+) -> Solution:
+    """Eliminate and solve at many points, in chunks that stay in the cache.
+
+    omega2 (F,) [rad²/s²]; torque (nodes, F) or (nodes, 1) [N·m]; values as for `eliminate`.
+    """
+    parts = []
+    for start in range(0, max(len(omega2), 1), CHUNK_POINTS):
+        cut = slice(start, start + CHUNK_POINTS)
+        own = None if values is None else _cut(values, cut)
+        here = torque if torque.shape[1] == 1 else torque[:, cut]
+        parts.append(solve(eliminate(network, plan, omega2[cut], own), here))
+    if len(parts) == 1:
+        return parts[0]
+    return Solution(
+        angle=np.concatenate([part.angle for part in parts], axis=1),
+        spring_twist=np.concatenate([part.spring_twist for part in parts], axis=1),
+        tie_twist=np.concatenate([part.tie_twist for part in parts], axis=1),
+        link_torque=np.concatenate([part.link_torque for part in parts], axis=1),
+    )
+
+
+def _cut(values: ElementValues, cut: slice) -> ElementValues:
+    def part(of: Values | None) -> Values | None:
+        return None if of is None else [value[cut] if np.ndim(value) else value for value in of]
+
+    return ElementValues(
+        part(values.springs), part(values.ties), part(values.inertia), part(values.compliances)
+    )
+
+
+def _solution(plan: Plan, tie_node: Ints, x: Numbers, twist: Numbers) -> Solution:
+    signs = np.array(plan.spring_sign, dtype=float)
+    spring_twist = np.zeros((len(signs), x.shape[1]), dtype=x.dtype)
+    if len(signs):
+        joined = list(plan.spring_pair)
+        if NO_PAIR in joined:
+            here = [number for number, pair in enumerate(joined) if pair != NO_PAIR]
+            spring_twist[here] = twist[[joined[number] for number in here]] * signs[here, None]
+        else:
+            np.multiply(twist[joined], signs[:, None], spring_twist)
+    return Solution(x[: plan.nodes], spring_twist, x[tie_node], x[plan.nodes :])
+
+
+def _back_core(plan: Plan, record: CoreRecord, f: Numbers, x: Numbers, twist: Numbers) -> None:
+    """Angle (or torque) of one core unknown and its twists against the neighbours of its own group."""
+    step, weights = record.step, record.weights
+    groups = [plan.group[other] for other in step.neighbours]
+    own = plan.group[step.unknown]
+    base = f[step.unknown]
+    for group in sorted(set(groups) - {own} if own >= 0 else set(groups)):
+        base = base + _from_group(groups, group, record, x, twist)
+    mine = [position for position, group in enumerate(groups) if group == own >= 0]
+    total = base
+    excess = record.excess[own] if own >= 0 else None
+    parts: dict[int, Value] = {}
+    for position in mine:
+        at = x[step.neighbours[position]]
+        total = total + weights[position] * at
+        parts[position] = base if excess is None else base - excess * at
+    x[step.unknown] = total / record.pivot
+    for a, b, pair in step.fill:
+        if a in parts and b in parts:
+            parts[a] = parts[a] - weights[b] * twist[pair]
+            parts[b] = parts[b] + weights[a] * twist[pair]
+    for position, part in parts.items():
+        twist[step.pairs[position]] = part / record.pivot
+
+
+def _from_group(groups: list[int], group: int, record: CoreRecord, x: Numbers, twist: Numbers) -> Value:
+    """Σ weight · x over the neighbours of another group, by their twists against the first of them."""
+    step, weights = record.step, record.weights
+    members = [position for position, other in enumerate(groups) if other == group]
+    if group < 0 or len(members) == 1:
+        return sum(weights[position] * x[step.neighbours[position]] for position in members)
+    first = members[0]
+    excess = record.excess[group]
+    total: Value = 0.0 if excess is None else -excess * x[step.neighbours[first]]
+    for a, b, pair in step.fill:
+        if a == first and groups[b] == group:
+            total = total - weights[b] * twist[pair]
+    return total

@@ -1,0 +1,351 @@
+"""A train file as a document: read and parsed once, with the line of every key for the error messages."""
+
+from __future__ import annotations
+
+import hashlib
+import re
+import tomllib
+from collections.abc import Iterator
+from dataclasses import dataclass
+from functools import lru_cache
+from pathlib import Path
+from typing import Any
+
+from quillshaft.train.problems import Problem, TrainFileError
+
+KeyPath = tuple[str | int, ...]
+"""The way through the tables: keys, and list positions counted from 0."""
+
+
+@dataclass(frozen=True)
+class Document:
+    """One parsed file: base name, text without a byte order mark, tables, and the SHA-256 of the text.
+
+    The digest is that of the text as UTF-8, the same whether the document came from a file or from a text.
+    """
+
+    name: str
+    text: str
+    data: dict[str, Any]
+    sha256: str
+
+
+def read_document(path: str | Path) -> Document:
+    """Read and parse a TOML file in UTF-8, with or without a byte order mark.
+
+    Raises TrainFileError when the file cannot be opened, is not text in UTF-8, is empty, or is not TOML.
+    """
+    name = "".join(c for c in Path(path).name if c.isprintable()) or str(path)
+    try:
+        raw = Path(path).read_bytes()
+    except (OSError, ValueError) as error:
+        raise _failure(name, None, _why_unreadable(error), None) from None
+    if raw.startswith((b"\xff\xfe", b"\xfe\xff")):
+        raise _failure(name, None, "the file is saved as UTF-16", "UTF-8 text")
+    if b"\0" in raw:
+        line = raw.count(b"\n", 0, raw.index(b"\0")) + 1
+        raise _failure(name, line, "a NUL byte: the file is binary, or not saved as UTF-8", "UTF-8 text")
+    try:
+        text = raw.decode("utf-8-sig")
+    except UnicodeDecodeError as error:
+        line = raw.count(b"\n", 0, error.start) + 1
+        message = (
+            f"byte 0x{raw[error.start]:02x} is not UTF-8: the file is binary, or saved in another encoding"
+        )
+        raise _failure(name, line, message, "UTF-8 text") from None
+    return parse_document(text, name)
+
+
+def parse_document(text: str, name: str) -> Document:
+    """Parse the text of a TOML file; `name` is what messages call it.
+
+    Raises TrainFileError when the text is empty or not TOML, with the line and plain advice.
+    """
+    text = text.removeprefix("\ufeff")
+    if "\0" in text:
+        raise _failure(name, text.count("\n", 0, text.index("\0")) + 1, "a NUL character", "UTF-8 text")
+    try:
+        data = tomllib.loads(text)
+    except tomllib.TOMLDecodeError as error:
+        raise TrainFileError([_syntax_problem(name, text, str(error))]) from None
+    except RecursionError:
+        raise _failure(name, None, "brackets nested too deeply", None) from None
+    except ValueError:
+        long = re.search(r"[0-9_]{4000}", text)
+        line = text.count("\n", 0, long.start()) + 1 if long else None
+        raise _failure(name, line, "a number that cannot be read: too many digits", None) from None
+    if not data:
+        raise _failure(name, None, "the file is empty", "a train file, as `quillshaft new` writes one")
+    digest = hashlib.sha256(text.encode("utf-8", "surrogatepass")).hexdigest()
+    return Document(name, text, data, digest)
+
+
+def line_of(document: Document, path: KeyPath) -> int | None:
+    """The line, from 1, on which the path first stands: the shortest run of lines that already holds it.
+
+    A path that does not stand in the file gives the line of the longest part of it that does; None where not
+    even its first key stands. Never raises.
+    """
+    known = _index(document.text)
+    for length in range(len(path), 0, -1):
+        place = known.get(path[:length])
+        if place is not None:
+            return place.line + _line_within(place.chunk, path[place.depth : length])
+    return None
+
+
+def _failure(name: str, line: int | None, message: str, allowed: str | None) -> TrainFileError:
+    return TrainFileError([Problem(name, line, (), None, message, allowed)])
+
+
+def _why_unreadable(error: Exception) -> str:
+    reasons: tuple[tuple[type[Exception], str], ...] = (
+        (FileNotFoundError, "there is no such file"),
+        (IsADirectoryError, "this is a directory, not a file"),
+        (PermissionError, "no permission to read the file"),
+        (ValueError, "not a name a file can have"),
+    )
+    for kind, reason in reasons:
+        if isinstance(error, kind):
+            return reason
+    return f"the file cannot be read ({getattr(error, 'strerror', None) or type(error).__name__})"
+
+
+_TOKEN = re.compile(
+    r"""
+      \#[^\n]*                                          # a comment
+    | \"{3} (?:\\.|[^\\])*? (?P<basic>\"{3,5}|\Z)       # a text over several lines, perhaps not closed
+    | '{3} .*? (?P<literal>'{3,5}|\Z)
+    | \" (?:\\.|[^\"\\\n])* \"?                         # a text on one line
+    | ' [^'\n]* '?
+    | [\[\]{}\n]
+    """,
+    re.VERBOSE | re.DOTALL,
+)
+
+
+def _left_open(text: str) -> list[tuple[str, int]]:
+    """Brackets and long texts that are open at the end of the text, outermost first, with their offsets."""
+    stack: list[tuple[str, int]] = []
+    for match in _TOKEN.finditer(text):
+        token = match[0]
+        if token in ("[", "{"):
+            stack.append((token, match.start()))
+        elif token in ("]", "}"):
+            del stack[-1:]
+        elif "" in (match["basic"], match["literal"]):
+            stack.append((token[:3], match.start()))
+    return stack
+
+
+# Where every key stands. A statement (a header, or a key with its value) ends at a line end outside all
+# brackets and texts, so tomllib can read each alone; one over several lines is searched by its leading
+# lines, closed with the brackets and quotes they leave open.
+
+
+@dataclass(frozen=True)
+class _Place:
+    """The first line of a statement, its text where it runs over several lines, the depth of its table."""
+
+    line: int
+    chunk: str
+    depth: int
+
+
+@lru_cache(maxsize=16)
+def _index(text: str) -> dict[KeyPath, _Place]:
+    """Every path of the text with the statement in which it first stands; what cannot be read is left out."""
+    known: dict[KeyPath, _Place] = {}
+    counts: dict[KeyPath, int] = {}
+    table: KeyPath = ()
+    for line, chunk in _statements(text):
+        try:
+            data = tomllib.loads(chunk)
+            if chunk.lstrip().startswith("["):
+                table = _table_path(data, counts)
+                paths = [table[:length] for length in range(1, len(table) + 1)]
+            else:
+                paths = list(_paths(data, table))
+        except (ValueError, RecursionError):
+            continue
+        place = _Place(line, chunk if "\n" in chunk.rstrip("\n") else "", len(table))
+        for path in paths:
+            known.setdefault(path, place)
+    return known
+
+
+def _statements(text: str) -> Iterator[tuple[int, str]]:
+    """First line, from 1, and text of each statement, its line end with it."""
+    line, start, depth = 1, 0, 0
+    for match in _TOKEN.finditer(text + "\n"):
+        token = match[0]
+        depth = max(depth + (token in ("[", "{")) - (token in ("]", "}")), 0)
+        if token == "\n" and depth == 0:
+            chunk = text[start : match.end()]
+            if chunk.strip():
+                yield line, chunk
+            line, start = line + chunk.count("\n"), match.end()
+
+
+def _table_path(header: dict[str, Any], counts: dict[KeyPath, int]) -> KeyPath:
+    """The path a header opens; below an array of tables it leads through the array's latest member."""
+    path: KeyPath = ()
+    inner: Any = header
+    while isinstance(inner, dict) and inner:
+        if path in counts:
+            path += (counts[path] - 1,)
+        key, inner = next(iter(inner.items()))
+        path += (key,)
+    if isinstance(inner, list):
+        counts[path] = counts.get(path, 0) + 1
+        path += (counts[path] - 1,)
+    return path
+
+
+def _paths(value: Any, start: KeyPath) -> Iterator[KeyPath]:
+    """Every path within a value, itself left out."""
+    members = value.items() if isinstance(value, dict) else enumerate(value)
+    for key, member in members:
+        yield (*start, key)
+        if isinstance(member, dict | list):
+            yield from _paths(member, (*start, key))
+
+
+def _line_within(chunk: str, path: KeyPath) -> int:
+    """Lines of the statement before the one on which the path is first known."""
+    low, high = 0, chunk.count("\n")
+    while low < high:
+        middle = (low + high) // 2
+        if _holds(_leading_lines(chunk, middle + 1), path):
+            high = middle
+        else:
+            low = middle + 1
+    return low
+
+
+@lru_cache(maxsize=1024)
+def _leading_lines(chunk: str, count: int) -> dict[str, Any]:
+    """What tomllib reads from the first lines of a statement."""
+    text = "\n".join(chunk.split("\n")[:count]) + "\n"
+    closing = {"[": "]", "{": "}"}
+    text += "".join(closing.get(opened, opened) for opened, _ in reversed(_left_open(text)))
+    try:
+        return tomllib.loads(text)
+    except (ValueError, RecursionError):
+        return {}
+
+
+def _holds(value: Any, path: KeyPath) -> bool:
+    for key in path:
+        keys = range(len(value)) if isinstance(value, list) else value if isinstance(value, dict) else ()
+        if key not in keys:
+            return False
+        value = value[key]
+    return True
+
+
+# What is wrong with a text that is not TOML, in the words of someone who edits a train file.
+
+
+@dataclass(frozen=True)
+class _Slip:
+    """A usual slip: patterns on tomllib's message, the bracket around, the line before and after it."""
+
+    error: str
+    inside: str
+    before: str
+    after: str
+    message: str
+    allowed: str
+
+
+_ONE_LINE = (
+    "an inline table on one line; a longer element takes its own header, such as [shafts.pinion-shaft]"
+)
+_QUOTES = 'text, and a number with its unit, in quotes, such as "19.6 kg m^2"'
+_ENTRY = "key = value"
+_END = r"\s*(?:#.*)?$"
+_SLIPS = (
+    _Slip("Cannot declare", "", "", "",
+          "a second header of this name", "one header a table, with the lines of both under it"),
+    _Slip("Cannot|Duplicate", "", "", "",
+          "a key given twice, or once as a value and once as a table", "each key once"),
+    _Slip("Unescaped", "", "", "",
+          "a backslash in a text", "/ in file names, or the text in single quotes"),
+    _Slip(r"Illegal character '\\n'", "", "", "",
+          "a text without its closing quote", _QUOTES),
+    _Slip('Unterminated|Expected ["\']{3}', "", "", "",
+          "a long text that is never closed", "three quotes at both ends"),
+    _Slip(r"Expected '\]", "", "", "",
+          "a header without its closing bracket", "[table] or [table.name]"),
+    _Slip("initial character", "{", r",\s*$", r"\}",
+          "a comma after the last entry of an inline table", "commas between entries only"),
+    _Slip("", "{", "", _END,
+          "an inline table over two lines", _ONE_LINE),
+    _Slip("Expected '='", "", "", ":",
+          "a colon after a key", _ENTRY),
+    _Slip("Expected '='", "", "", '[\\w\\"\']',
+          "a name with a space in it, or no = after the key", 'a name with spaces in quotes: "pump 2x" = …'),
+    _Slip("Expected '='", "", "", "",
+          "a key without = and a value", _ENTRY),
+    _Slip("at end of document", r"\[", "", "",
+          "a bracket [ that is never closed", "] after the last member"),
+    _Slip("Invalid value", r"\[", "", r"[\w-]+\s*=",
+          "a bracket [ that is not closed before the next key", "] after the last member"),
+    _Slip("Invalid value", "", "", _END,
+          "a key without a value", _ENTRY),
+    _Slip("Invalid value", "", "", "[“”„‘’]",
+          "typographic quotes", 'straight quotes: "…"'),
+    _Slip("Invalid value", "", "", r"[+-]?\.\d",
+          "a number without a digit before its point", "0.5, not .5"),
+    _Slip("Invalid value", "", "", r"(?i:true|false)\b",
+          "true or false not in small letters", "true or false"),
+    _Slip("Expected newline", "", r"\d$", r",\d",
+          "a comma in a number", "a point as the decimal sign, and no grouping"),
+    _Slip("Expected newline|Unclosed", "", r"\b0$", r"\d",
+          "a number that begins with 0", "the number without leading zeros"),
+    _Slip("Expected newline|Unclosed", "", r"\d$", r"\.(?!\d)",
+          "a number that ends in its point", "5.0 or 5, not 5."),
+    _Slip("Unclosed", "", "", r"\s*[\w-]+\s*=",
+          "two entries without a comma between them", "commas between entries"),
+    _Slip("Expected newline", "", "", r"\s*[\w-]+\s*=",
+          "two entries on one line", "each entry on its own line"),
+    _Slip("Expected newline|Unclosed", "", '[\\"\']\\s*$', "",
+          "something after the closing quote", _QUOTES),
+    _Slip("Invalid value|Expected newline|Unclosed", "", "", r"\s*\S",
+          "text without quotes", _QUOTES),
+)  # fmt: skip
+
+
+def _syntax_problem(name: str, text: str, error: str) -> Problem:
+    """The problem behind a message of tomllib, with the advice of the first slip that fits."""
+    text = text.replace("\r\n", "\n")
+    line, column = _position(text, error)
+    lines = text.split("\n")
+    source = lines[line - 1]
+    before, after = source[: column - 1], source[column - 1 :]
+    opened = _left_open("\n".join([*lines[: line - 1], before]))
+    inside = opened[-1][0] if opened else ""
+    if "at end of document" in error:
+        inside, after = after[:1], after[1:]
+    slip = next((slip for slip in _SLIPS if _fits(slip, error, inside, before, after)), None)
+    seen = "`" + "".join(c if c.isprintable() else " " for c in source.strip()[:80]) + "`"
+    if slip is None:
+        plain = re.sub(r"\s*\(at .*\)$", "", error)
+        return Problem(name, line, (), seen, f"not valid TOML: {plain}", None)
+    return Problem(name, line, (), seen, slip.message, slip.allowed)
+
+
+def _fits(slip: _Slip, error: str, inside: str, before: str, after: str) -> bool:
+    anywhere = re.search(slip.error, error) and re.search(slip.before, before)
+    return bool(anywhere and re.match(slip.inside, inside) and re.match(slip.after, after))
+
+
+def _position(text: str, error: str) -> tuple[int, int]:
+    """Line and column, from 1, that tomllib names; at the end of the file, those of what was left open."""
+    match = re.search(r"\(at line (\d+), column (\d+)\)", error)
+    if match:
+        return int(match[1]), int(match[2])
+    opened = _left_open(text)
+    start = opened[-1][1] if opened else len(text.rstrip())
+    return text.count("\n", 0, start) + 1, start - text.rfind("\n", 0, start)

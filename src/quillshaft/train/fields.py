@@ -1,0 +1,250 @@
+"""Field types of the train file's rows: quantities, pairs, ranges and tolerances, read into SI floats.
+
+The validation context is `{"system": "SI" | "US", "notes": list[tuple[str, str]]}`; readings that need saying
+(lb read as lbf) are appended to `notes` with the key they belong to.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Annotated, Any
+
+from pydantic import BeforeValidator, Field, StrictInt, ValidationInfo
+from pydantic_core import CoreSchema, PydanticCustomError, core_schema
+
+from quillshaft.train.quantity import QuantityError, measure_help, read_quantity, read_tolerance
+
+NUMBER_OR_TEXT: dict[str, Any] = {"anyOf": [{"type": "string"}, {"type": "number"}]}
+
+
+def complain(message: str, allowed: str | None = None) -> PydanticCustomError:
+    """A validation error in our words; `allowed` is kept in its context."""
+    return PydanticCustomError("train_file", "{message}", {"message": message, "allowed": allowed})
+
+
+def kebab(name: str) -> str:
+    """A field's name as the file spells it."""
+    return name.replace("_", "-")
+
+
+def quantity_of(value: object, measure: str, info: ValidationInfo) -> float:
+    """`value` read as a quantity in SI. Raises PydanticCustomError with the reason."""
+    context: dict[str, Any] = info.context or {"system": "SI", "notes": []}
+    try:
+        reading = read_quantity(value, measure, context["system"])
+    except QuantityError as error:
+        raise complain(error.message, error.allowed) from None
+    if reading.note:
+        context["notes"].append((kebab(info.field_name or ""), f"{value}: {reading.note}"))
+    return reading.value
+
+
+@dataclass(frozen=True)
+class Measured:
+    """A quantity of a measure: above `low`, or at least `low` where `closed`."""
+
+    measure: str
+    low: float = 0.0
+    closed: bool = False
+
+    def read(self, value: object, info: ValidationInfo) -> float:
+        """The SI value. Raises PydanticCustomError when it is no such quantity or too low."""
+        number = quantity_of(value, self.measure, info)
+        if number < self.low or (number == self.low and not self.closed):
+            raise complain(f"must be {'at least' if self.closed else 'above'} {self.low:g}")
+        return number
+
+    def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
+        return core_schema.with_info_plain_validator_function(self.read)
+
+    def __get_pydantic_json_schema__(self, _schema: Any, _handler: Any) -> dict[str, Any]:
+        return {**NUMBER_OR_TEXT, "description": measure_help(self.measure, "SI")}
+
+
+@dataclass(frozen=True)
+class MeasuredPair:
+    """A list of two quantities; where `alone`, one value stands for both."""
+
+    item: Measured
+    alone: bool = True
+
+    def read(self, value: object, info: ValidationInfo) -> tuple[float, float]:
+        """The two SI values. Raises PydanticCustomError when there are not two."""
+        if not isinstance(value, list) and self.alone:
+            value = [value, value]
+        if not isinstance(value, list) or len(value) != 2:
+            raise complain(
+                "one value or a list of two is wanted" if self.alone else "a list of two is wanted"
+            )
+        return self.item.read(value[0], info), self.item.read(value[1], info)
+
+    def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
+        return core_schema.with_info_plain_validator_function(self.read)
+
+    def __get_pydantic_json_schema__(self, _schema: Any, _handler: Any) -> dict[str, Any]:
+        one = {**NUMBER_OR_TEXT, "description": measure_help(self.item.measure, "SI")}
+        two = {"type": "array", "items": one, "minItems": 2, "maxItems": 2}
+        return {"anyOf": [one, two]} if self.alone else two
+
+
+@dataclass(frozen=True)
+class AnyMeasure:
+    """A quantity with its unit, of whichever of several measures the unit belongs to."""
+
+    measures: tuple[str, ...]
+
+    def read(self, value: object, info: ValidationInfo) -> tuple[str, float]:
+        """(measure, SI value). Raises PydanticCustomError when it is of none of them, or bare."""
+        helps = [measure_help(measure, "SI") for measure in self.measures]
+        if not isinstance(value, str):
+            raise complain("a quantity with its unit is wanted", "; or ".join(helps))
+        for measure in self.measures:
+            try:
+                number = quantity_of(value, measure, info)
+            except PydanticCustomError:
+                continue
+            if number <= 0:
+                raise complain("must be above 0")
+            return measure, number
+        raise complain("this is none of the quantities that fit here", "; or ".join(helps))
+
+    def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
+        return core_schema.with_info_plain_validator_function(self.read)
+
+    def __get_pydantic_json_schema__(self, _schema: Any, _handler: Any) -> dict[str, Any]:
+        helps = [measure_help(measure, "SI") for measure in self.measures]
+        return {"type": "string", "description": "; or ".join(helps)}
+
+
+@dataclass(frozen=True)
+class Separation:
+    """Required separation: one share for all, or a table of shares per kind of source."""
+
+    def read(self, value: object, info: ValidationInfo) -> dict[str, float]:
+        """Share by kind; one share alone is {"default": share}. Raises PydanticCustomError otherwise."""
+        table = value if isinstance(value, dict) else {"default": value}
+        if not table:
+            raise complain("an empty table says nothing", '{ default = "10 %", engine = "5 %" }')
+        shares = {str(kind): quantity_of(share, "share", info) for kind, share in table.items()}
+        for kind, share in shares.items():
+            if not 0 <= share < 1:
+                raise complain(
+                    f"{kind}: a separation of {share:.0%} is out of range", "0 % up to below 100 %"
+                )
+        return shares
+
+    def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
+        return core_schema.with_info_plain_validator_function(self.read)
+
+    def __get_pydantic_json_schema__(self, _schema: Any, _handler: Any) -> dict[str, Any]:
+        table = {"type": "object", "additionalProperties": NUMBER_OR_TEXT}
+        return {"anyOf": [*NUMBER_OR_TEXT["anyOf"], table], "description": "a share, or shares per kind"}
+
+
+@dataclass(frozen=True)
+class Hubs:
+    """Hub engagements of a piece [m]: one length, or a list with one for each end."""
+
+    def read(self, value: object, info: ValidationInfo) -> tuple[float, ...]:
+        """One or two SI lengths. Raises PydanticCustomError otherwise."""
+        items = value if isinstance(value, list) else [value]
+        if not 1 <= len(items) <= 2:
+            raise complain("a hub engagement, or a list of two, is wanted")
+        return tuple(Measured("length").read(item, info) for item in items)
+
+    def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
+        return core_schema.with_info_plain_validator_function(self.read)
+
+    def __get_pydantic_json_schema__(self, _schema: Any, _handler: Any) -> dict[str, Any]:
+        return {"anyOf": [*NUMBER_OR_TEXT["anyOf"], {"type": "array", "maxItems": 2}]}
+
+
+@dataclass(frozen=True)
+class SpeedRanges:
+    """One range ["900 rpm", "1487 rpm"], or a list of such, read into rad/s and sorted."""
+
+    def read(self, value: object, info: ValidationInfo) -> tuple[tuple[float, float], ...]:
+        """The ranges [rad/s]. Raises PydanticCustomError when one does not rise or is not a pair."""
+        if not isinstance(value, list) or not value:
+            raise complain("a range is wanted", '["900 rpm", "1487 rpm"], or a list of such pairs')
+        pairs = value if isinstance(value[0], list) else [value]
+        return tuple(sorted(self._pair(pair, info) for pair in pairs))
+
+    @staticmethod
+    def _pair(pair: Any, info: ValidationInfo) -> tuple[float, float]:
+        if not isinstance(pair, list) or len(pair) != 2:
+            raise complain(f"{pair!r} is not a range", 'two speeds, for example ["900 rpm", "1487 rpm"]')
+        low, high = (quantity_of(end, "speed", info) for end in pair)
+        if not 0 < low < high:
+            raise complain(
+                f"the range {pair[0]!r} to {pair[1]!r} does not rise", "the lower speed first, above 0"
+            )
+        return low, high
+
+    def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
+        return core_schema.with_info_plain_validator_function(self.read)
+
+    def __get_pydantic_json_schema__(self, _schema: Any, _handler: Any) -> dict[str, Any]:
+        return {"type": "array", "description": '["900 rpm", "1487 rpm"], or a list of such pairs'}
+
+
+@dataclass(frozen=True)
+class RelativeTolerance:
+    """A relative tolerance: "5 %", 0.05 or ["-5 %", "+20 %"]."""
+
+    def read(self, value: object, _info: ValidationInfo) -> tuple[float, float]:
+        """(low, high) as fractions. Raises PydanticCustomError otherwise."""
+        try:
+            return read_tolerance(value)
+        except QuantityError as error:
+            raise complain(error.message, error.allowed) from None
+
+    def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
+        return core_schema.with_info_plain_validator_function(self.read)
+
+    def __get_pydantic_json_schema__(self, _schema: Any, _handler: Any) -> dict[str, Any]:
+        two = {"type": "array", "items": NUMBER_OR_TEXT, "minItems": 2, "maxItems": 2}
+        return {"anyOf": [*NUMBER_OR_TEXT["anyOf"], two], "description": '"5 %" or ["-5 %", "+20 %"]'}
+
+
+def _iso(value: Any) -> Any:
+    return value.isoformat() if hasattr(value, "isoformat") else value
+
+
+Inertia = Annotated[float, Measured("inertia", closed=True)]
+Wr2 = Annotated[float, Measured("wr2", closed=True)]
+Gd2 = Annotated[float, Measured("gd2", closed=True)]
+Stiffness = Annotated[float, Measured("stiffness")]
+Flexibility = Annotated[float, Measured("flexibility")]
+Torque = Annotated[float, Measured("torque")]
+Length = Annotated[float, Measured("length")]
+LengthOrZero = Annotated[float, Measured("length", closed=True)]
+Angle = Annotated[float, Measured("angle", closed=True)]
+SeparationField = Annotated[dict[str, float], Separation()]
+SignedSpeed = Annotated[float, Measured("speed", low=-1e9)]
+Speed = Annotated[float, Measured("speed", closed=True)]
+Frequency = Annotated[float, Measured("frequency")]
+SignedFrequency = Annotated[float, Measured("frequency", low=-1e9)]
+Mass = Annotated[float, Measured("mass")]
+Modulus = Annotated[float, Measured("modulus")]
+Density = Annotated[float, Measured("density")]
+Stress = Annotated[float, Measured("stress")]
+Share = Annotated[float, Measured("share", closed=True)]
+MeshStiffness = Annotated[
+    tuple[str, float], AnyMeasure(("mesh_stiffness_per_face", "linear_stiffness", "stiffness"))
+]
+ExcitationTorque = Annotated[tuple[str, float], AnyMeasure(("share", "torque"))]
+Ratio = Annotated[float, Field(gt=0, le=50, strict=True, allow_inf_nan=False)]
+Diameters = Annotated[tuple[float, float], MeasuredPair(Measured("length"))]
+Bores = Annotated[tuple[float, float], MeasuredPair(Measured("length", closed=True))]
+HalfInertias = Annotated[tuple[float, float], MeasuredPair(Measured("inertia", closed=True), alone=False)]
+HubLengths = Annotated[tuple[float, ...], Hubs()]
+Ranges = Annotated[tuple[tuple[float, float], ...], SpeedRanges()]
+ToleranceField = Annotated[tuple[float, float], RelativeTolerance()]
+Name = Annotated[str, Field(min_length=1, max_length=80, strict=True)]
+Text = Annotated[str, Field(max_length=2000, strict=True)]
+Date = Annotated[str, BeforeValidator(_iso), Field(max_length=40, strict=True)]
+Between = Annotated[list[Name], Field(min_length=2, max_length=2)]
+Teeth = Annotated[StrictInt, Field(ge=3, le=5000)]
+Count = Annotated[StrictInt, Field(ge=1, le=500)]
+Poles = Annotated[StrictInt, Field(ge=2, le=200, multiple_of=2)]

@@ -1,0 +1,125 @@
+"""[machines]: one row class for each kind of machine, chosen by `kind` before it is validated."""
+
+from __future__ import annotations
+
+from typing import Annotated, Literal
+
+from pydantic import Field, StrictBool, model_validator
+
+from quillshaft.train.fields import Angle, Count, Frequency, Name, Poles, SignedFrequency, complain
+from quillshaft.train.rows import ElementRow, Row
+
+
+class MachineRow(ElementRow):
+    """What every machine says: its kind and the station it sits at."""
+
+    kind: str
+    at: Name
+
+
+class InductionMotorRow(MachineRow):
+    """An induction motor on a fixed supply."""
+
+    kind: Literal["induction-motor"]
+    poles: Poles
+    supply: Frequency
+
+
+class SynchronousMotorRow(MachineRow):
+    """A synchronous motor on a fixed supply."""
+
+    kind: Literal["synchronous-motor"]
+    poles: Poles
+    supply: Frequency
+
+
+class ConverterFedMotorRow(MachineRow):
+    """A motor fed by a frequency converter: its output frequency follows the speed."""
+
+    kind: Literal["converter-fed-motor"]
+    poles: Poles
+    slip: SignedFrequency | None = None
+    line_side: StrictBool = False
+    supply: Frequency | None = None
+
+    @model_validator(mode="after")
+    def _line(self) -> ConverterFedMotorRow:
+        if self.line_side and self.supply is None:
+            raise complain("line-side = true needs the supply frequency", 'supply = "50 Hz"')
+        if self.supply is not None and not self.line_side:
+            raise complain("supply is used only with line-side = true: the shaft sees the converter's output")
+        return self
+
+
+class GeneratorRow(MachineRow):
+    """A generator; without `supply` its frequency follows its speed (island operation)."""
+
+    kind: Literal["generator"]
+    poles: Poles
+    supply: Frequency | None = None
+
+
+class CentrifugalPumpRow(MachineRow):
+    """A centrifugal pump."""
+
+    kind: Literal["centrifugal-pump"]
+    vanes: Count | None = None
+    diffuser_vanes: Count | None = None
+
+
+class CompressorRow(MachineRow):
+    """A turbo compressor or blower."""
+
+    kind: Literal["compressor"]
+    vanes: Count | None = None
+    diffuser_vanes: Count | None = None
+
+
+class FanRow(MachineRow):
+    """A fan."""
+
+    kind: Literal["fan"]
+    blades: Count | None = None
+
+
+class PropellerRow(MachineRow):
+    """A propeller."""
+
+    kind: Literal["propeller"]
+    blades: Count | None = None
+
+
+class OtherRow(MachineRow):
+    """Any other machine: `passes` lists its orders per turn."""
+
+    kind: Literal["other"]
+    passes: Annotated[list[Count], Field(max_length=50)] = []
+
+
+class CylinderRow(Row):
+    """One cylinder of an engine."""
+
+    at: Name
+    fires_at: Angle
+
+
+class ReciprocatingEngineRow(ElementRow):
+    """A reciprocating engine given by its cylinders, strokes and firing angles."""
+
+    kind: Literal["reciprocating-engine"]
+    strokes: Literal[2, 4]
+    cylinders: Annotated[list[CylinderRow], Field(min_length=1, max_length=64)]
+
+
+MACHINE_ROWS: dict[str, type[ElementRow]] = {
+    "induction-motor": InductionMotorRow,
+    "synchronous-motor": SynchronousMotorRow,
+    "converter-fed-motor": ConverterFedMotorRow,
+    "generator": GeneratorRow,
+    "centrifugal-pump": CentrifugalPumpRow,
+    "compressor": CompressorRow,
+    "fan": FanRow,
+    "propeller": PropellerRow,
+    "reciprocating-engine": ReciprocatingEngineRow,
+    "other": OtherRow,
+}

@@ -1,0 +1,103 @@
+"""The plain tables of the train file (no named rows): train, operation, power, criteria and the like."""
+
+from __future__ import annotations
+
+from typing import Annotated, Literal
+
+from pydantic import Field, model_validator
+
+from quillshaft.train.fields import (
+    Date,
+    Name,
+    Ranges,
+    SeparationField,
+    Share,
+    SignedSpeed,
+    Speed,
+    Text,
+    complain,
+)
+from quillshaft.train.rows import Row
+
+
+class TrainTable(Row):
+    """[train]: identification and what bare numbers mean."""
+
+    title: Annotated[Text, Field(min_length=1)]
+    tag: Text | None = None
+    units: Literal["SI", "US"]
+
+
+class OperationTable(Row):
+    """[operation]: the operating map; speeds are those of `speed-at`."""
+
+    speed_at: Name
+    rated: Speed
+    range: Ranges | None = None
+    idle: Speed | None = None
+    trip: Speed | None = None
+    barred: Ranges | None = None
+    barred_because: Text | None = None
+    speed_band: Share | None = None
+    supply_band: Share | None = None
+    speeds: dict[Name, SignedSpeed] = {}
+
+    @model_validator(mode="after")
+    def _order(self) -> OperationTable:
+        if self.rated <= 0:
+            raise complain("rated must be above zero")
+        top = max(high for _, high in self.range) if self.range else self.rated
+        if self.trip is not None and self.trip < max(top, self.rated) * (1 - 1e-9):
+            raise complain("trip lies below the rated speed or the top of the range")
+        if self.barred is not None and not self.barred_because:
+            raise complain("a barred range needs barred-because: who holds the train out of it, and why")
+        for band, key in ((self.speed_band, "speed-band"), (self.supply_band, "supply-band")):
+            if band is not None and band >= 0.5:
+                raise complain(f"{key} of {band:.0%} is no band", "a share well below 50 %")
+        return self
+
+
+class AssumptionsTable(Row):
+    """[assumptions]: where a default of the tool may be set for the whole train."""
+
+    tolerances: Literal["default", "none"] | None = None
+    own_inertia: Literal["ends", "none"] | None = None
+    hub_rule: Share | None = None
+    zeta: Annotated[list[Share], Field(min_length=2, max_length=2)] | None = None
+
+    @model_validator(mode="after")
+    def _rising(self) -> AssumptionsTable:
+        if self.zeta is not None and not 0 < self.zeta[0] <= self.zeta[1]:
+            raise complain('zeta wants the low value first, above zero: ["1 %", "2 %"]')
+        return self
+
+
+class CriteriaTable(Row):
+    """[criteria]: required separation, one share or a share per kind of source."""
+
+    separation: SeparationField | None = None
+    worst_case_separation: SeparationField | None = None
+    margin_on: Literal["excitation", "natural"] | None = None
+
+
+class RevisionRow(Row):
+    """One line of the history."""
+
+    revision: Text
+    date: Date
+    what: Text
+    by: Text | None = None
+
+
+class SignOffTable(Row):
+    """[sign-off]: what the report is called and who signs it."""
+
+    document: Text | None = None
+    revision: Text | None = None
+    date: Date | None = None
+    status: Literal["draft", "checked", "issued"] = "draft"
+    prepared: Text | None = None
+    checked: Text | None = None
+    approved: Text | None = None
+    client: Text | None = None
+    history: Annotated[list[RevisionRow], Field(max_length=100)] = []
