@@ -201,3 +201,30 @@ def _pick(matrix: mpmath.matrix, rows: list[int], columns: list[int]) -> mpmath.
         for j, column in enumerate(columns):
             picked[i, j] = matrix[row, column]
     return picked
+
+
+def dense_response(network, torque, omega2, springs=None, ties=None, inertia=None):
+    """Angles, spring twists and torques of the links by a dense solution with 50 digits."""
+    nodes, links = network.nodes, len(network.torque_links)
+    springs = network.spring_nm_rad.tolist() if springs is None else springs
+    ties = network.tie_nm_rad.tolist() if ties is None else ties
+    inertia = network.inertia_kgm2.tolist() if inertia is None else inertia
+    with mpmath.workdps(DIGITS):
+        matrix = mpmath.zeros(nodes + links)
+        for node, value in enumerate(inertia):
+            matrix[node, node] = -mpmath.mpf(float(omega2)) * mpmath.mpmathify(value)
+        for (a, b), value in zip(network.spring_ends.tolist(), springs, strict=True):
+            for i, j, sign in ((a, a, 1), (b, b, 1), (a, b, -1), (b, a, -1)):
+                matrix[i, j] += sign * mpmath.mpmathify(value)
+        for node, value in zip(network.tie_node.tolist(), ties, strict=True):
+            matrix[node, node] += mpmath.mpmathify(value)
+        for unknown, link in enumerate(network.torque_links, start=nodes):
+            matrix[unknown, unknown] = -mpmath.mpf(link.compliance_rad_per_nm)
+            for node, a in zip(link.nodes, link.coefficients, strict=True):
+                matrix[node, unknown] += mpmath.mpf(a)
+                matrix[unknown, node] += mpmath.mpf(a)
+        right = mpmath.matrix([mpmath.mpmathify(value) for value in torque] + [0] * links)
+        x = mpmath.lu_solve(matrix, right)
+        twist = [x[a] - x[b] for a, b in network.spring_ends.tolist()]
+        number = complex if any(isinstance(value, mpmath.mpc) for value in x) else float
+        return [[number(value) for value in part] for part in (x[:nodes], twist, x[nodes:])]

@@ -1,4 +1,4 @@
-"""How well a source can drive a mode: work per unit of transmitted torque, over the best place in the train."""
+"""How well a source can drive a mode: work per unit of transmitted torque, 1 at the best place."""
 
 from __future__ import annotations
 

@@ -22,8 +22,8 @@ def link_torques(
     load_nm    (cases, stations) referred torque that each station has to pass on: inertia torque ω² J θ in a
                mode, the mean torque in statics
 
-    A rigid mesh carries what is left over at the stations it joins. In a closed loop of rigid meshes the split
-    is open (nan).
+    A rigid mesh carries what is left over at the stations it joins. In a closed loop of rigid meshes the
+    split is open (nan).
     """
     torques = np.zeros((len(load_nm), len(graph.links)))
     give = np.zeros((len(graph.links), len(graph.stations)))

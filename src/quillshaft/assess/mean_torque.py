@@ -56,7 +56,7 @@ def _duty(index: int, referred_nm: float, graph: TorsionalGraph) -> LinkDuty:
 
 
 def _station_torque(train: Train, power: Power, graph: TorsionalGraph, findings: Findings) -> Floats | None:
-    """(stations,) referred mean torque [N·m], the balancing stations worked out so that no motion gains work."""
+    """(stations,) referred mean torque [N·m], balanced so that it does no work on any rigid-body motion."""
     torque = np.zeros(len(graph.stations))
     balance = []
     for name, watts in power.stations_w.items():

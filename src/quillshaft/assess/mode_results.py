@@ -27,7 +27,8 @@ def moved_angles(graph: TorsionalGraph, modes: Modes) -> Floats:
         members = modes.cluster == first
         if members.sum() > 1:
             size[members] = np.sqrt(np.sum(size[members] ** 2, axis=0))
-    return size[:, graph.node] / np.max(size, axis=1, initial=0.0)[:, None]
+    largest = np.max(size, axis=1, initial=0.0)
+    return np.asarray(size[:, graph.node] / largest[:, None])
 
 
 def mode_torques(graph: TorsionalGraph, network: Network, modes: Modes) -> Floats:

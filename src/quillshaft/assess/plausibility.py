@@ -26,7 +26,7 @@ def plausibility_flags(train: Train, graph: TorsionalGraph, duties: tuple[LinkDu
     return (
         *_disc_flags(train.stations),
         *_spread_flags(train, graph),
-        *_referral_flags(train, graph),
+        *_referral_flags(train),
         *_shaft_flags(train),
         *_coupling_flags(train),
         *_gear_flags(train),
@@ -76,7 +76,7 @@ def _spread_flags(train: Train, graph: TorsionalGraph) -> Iterator[Flag]:
             yield Flag(f"stations.{graph.stations[index]}", text)
 
 
-def _referral_flags(train: Train, graph: TorsionalGraph) -> Iterator[Flag]:
+def _referral_flags(train: Train) -> Iterator[Flag]:
     """A wheel lighter than its pinion hints at an inertia already referred to the other shaft."""
     inertia = {station.name: station for station in train.stations}
     for gear in train.gears:
@@ -94,16 +94,18 @@ def _referral_flags(train: Train, graph: TorsionalGraph) -> Iterator[Flag]:
             )
             yield Flag(f"stations.{wheel.name}", text)
         if math.gcd(*gear.teeth) > 1:
-            text = f"the teeth {gear.teeth[0]} : {gear.teeth[1]} share a factor: nominal ratio in place of tooth numbers?"
+            teeth = f"{gear.teeth[0]} : {gear.teeth[1]}"
+            text = f"the teeth {teeth} share a factor: a nominal ratio in place of tooth numbers?"
             yield Flag(f"gears.{gear.name}", text)
 
 
 def _shaft_flags(train: Train) -> Iterator[Flag]:
     for shaft in train.shafts:
-        modulus = shaft.material.shear_modulus_pa if shaft.material else None
-        if modulus is not None and shaft.material is not None:
-            if shaft.material.name.lower() in ("steel", "cr-mo") and not 77e9 <= modulus <= 85e9:
-                yield Flag(f"shafts.{shaft.name}", f"G = {modulus / 1e9:.4g} GPa; steel has 79 to 83 GPa")
+        material = shaft.material
+        if material is not None and material.density_kgm3 > 7000:
+            modulus = material.shear_modulus_pa / 1e9
+            if material.density_kgm3 < 8100 and not 60 <= modulus <= 85:
+                yield Flag(f"shafts.{shaft.name}", f"G = {modulus:.4g} GPa; steel has 79 to 83 GPa")
         if shaft.pieces and not any(piece.hub_m for piece in shaft.pieces):
             text = "no hub engagement on any piece: are both ends integral flanges or forged on?"
             yield Flag(f"shafts.{shaft.name}", text)
@@ -117,7 +119,8 @@ def _coupling_flags(train: Train) -> Iterator[Flag]:
             low, high = STIFFNESS_OVER_TORQUE[coupling.kind]
             ratio = coupling.stiffness_nm_rad / rated
             if not low <= ratio <= high:
-                text = f"stiffness over rated torque is {ratio:.3g} per rad; ordinary for this kind is {low:g} to {high:g}"
+                ordinary = f"ordinary for this kind is {low:g} to {high:g}"
+                text = f"stiffness over rated torque is {ratio:.3g} per rad; {ordinary}"
                 yield Flag(where, text)
         if coupling.kind == "elastomer" or (coupling.kind is None and coupling.loss_factor is not None):
             yield Flag(
@@ -151,7 +154,8 @@ def _duty_flags(train: Train, graph: TorsionalGraph, duties: tuple[LinkDuty, ...
         if coupling is None or coupling.rated_torque_nm is None or duty.mean_torque_nm is None:
             continue
         if abs(duty.mean_torque_nm) > coupling.rated_torque_nm:
-            text = f"mean torque {abs(duty.mean_torque_nm):.5g} N·m exceeds its rated {coupling.rated_torque_nm:.5g} N·m"
+            rating = f"its rated {coupling.rated_torque_nm:.5g} N·m"
+            text = f"mean torque {abs(duty.mean_torque_nm):.5g} N·m exceeds {rating}"
             yield Flag(f"couplings.{duty.link}", text)
 
 

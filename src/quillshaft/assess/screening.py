@@ -46,8 +46,8 @@ MATCH = 0.03
 def screen(train: Train) -> Screening:
     """Screen a train: natural frequencies, margins, critical speeds and verdicts.
 
-    Raises TrainFileError when the train cannot turn, is not connected, its power does not close, or a machine,
-    a criterion or a dismissal names what does not exist.
+    Raises TrainFileError when the train cannot turn, is not connected, its power does not close, or a
+    machine, a criterion or a dismissal names what does not exist.
     """
     graph = build_graph(train)
     sources = collect_sources(train, graph)

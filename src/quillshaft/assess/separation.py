@@ -1,4 +1,4 @@
-"""Separation of a natural frequency from a source over the judged range: margins, critical speeds, verdicts."""
+"""Separation of natural frequencies from sources over the judged range: margins and verdicts."""
 
 from __future__ import annotations
 
@@ -104,7 +104,7 @@ def separate(
 
 
 def required_separation(source: Source, table: dict[str, float]) -> float:
-    """Required share: for each origin the most specific entry, and of a merged source's origins the largest."""
+    """Required share: the most specific entry for each origin, the largest over merged origins."""
     return max(
         next(table[label] for label in (*chain, "default") if label in table) for chain in source.labels
     )
@@ -129,7 +129,7 @@ def highest_frequency(sources: tuple[Source, ...], operation: Operation, criteri
 def critical_speeds(
     source: Source, frequency_hz: float, operation: Operation
 ) -> tuple[tuple[float, ...], float | None]:
-    """All speeds [rpm] where mode and source meet, and the one that counts: in range nearest rated, else nearest.
+    """All speeds [rpm] where mode and source meet, and the one in range nearest rated, else nearest it.
 
     A source that does not follow speed has none.
     """

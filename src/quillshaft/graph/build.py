@@ -1,4 +1,4 @@
-"""Train -> TorsionalGraph: ratios, referral, merged nodes, and the networks at the corners of the tolerances."""
+"""Train -> TorsionalGraph: ratios, referral, merged nodes, and the networks at the tolerance corners."""
 
 from __future__ import annotations
 
@@ -21,8 +21,8 @@ from quillshaft.train.validate import Findings
 def build_graph(train: Train) -> TorsionalGraph:
     """The torsional graph of a train, referred to the speed of `speed-at`.
 
-    Raises TrainFileError when the train is not connected, cannot turn (a loop whose ratios disagree), leaves a
-    speed undetermined, or has a part without inertia and without stiffness to hold it.
+    Raises TrainFileError when the train is not connected, cannot turn (a loop whose ratios disagree), leaves
+    a speed undetermined, or has a part without inertia and without stiffness to hold it.
     """
     findings = Findings(train.file, train.cases)
     ratios = speed_ratios(train, findings)
@@ -191,7 +191,7 @@ def _network(
         if link.slot == "tie" and not (corner == "static" and turning[node[link.stations[0]]])
     ]
     torque_links = [
-        (_torque_link(link, coefficients[position], 1.0 / stiffness(link) if draft.stiffness else 0.0))
+        (_torque_link(coefficients[position], 1.0 / stiffness(link) if draft.stiffness else 0.0))
         for position, (link, draft) in enumerate(zip(links, drafts, strict=True))
         if link.slot == "torque"
     ]
@@ -210,7 +210,7 @@ def _network(
     )
 
 
-def _torque_link(link: GraphLink, coefficients: dict[int, Fraction], compliance: float) -> TorqueLink:
+def _torque_link(coefficients: dict[int, Fraction], compliance: float) -> TorqueLink:
     """Coefficients are normalised on the first-named station, so that T is the torque there, referred."""
     nodes = tuple(sorted(coefficients))
     return TorqueLink(nodes, tuple(float(coefficients[number]) for number in nodes), compliance)
@@ -232,7 +232,7 @@ def _rigid_meshes(names: tuple[str, ...], links: tuple[GraphLink, ...], dropped:
     incidence = np.zeros((len(numbers), len(names)))
     incidence[np.arange(len(numbers)), ends[:, 0]] = 1.0
     incidence[np.arange(len(numbers)), ends[:, 1]] = -1.0
-    recovery = np.linalg.pinv(incidence.T) if numbers else incidence
+    recovery = np.asarray(np.linalg.pinv(incidence.T) if numbers else incidence, dtype=np.float64)
     known = np.array(
         [_is_bridge(position, ends) and not dropped for position in range(len(numbers))], dtype=bool
     )

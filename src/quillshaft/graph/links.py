@@ -129,7 +129,7 @@ def _mesh(gear: GearMesh, number: dict[str, int], ratios: tuple[Fraction, ...]) 
 
 
 def _stage(gear: Epicyclic, number: dict[str, int], ratios: tuple[Fraction, ...]) -> LinkDraft:
-    """A stage with a fixed member is a pair; its stiffness at the sun is moved to the first turning member."""
+    """A stage with a fixed member is a pair; its stiffness moves from the sun to the first member."""
     members = turning_members(gear)
     stations = tuple(number[name] for name, _ in members)
     leading = members[0][1]

@@ -70,7 +70,7 @@ def rigid_motion_count(nodes: int, spring_ends: Ints, tie_node: Ints, rows: list
 
 
 def held_by_nothing(network: Network, rows: list[Terms]) -> set[int]:
-    """Nodes that neither inertia nor stiffness holds; `rows` are the exact torque links. Empty when all is well.
+    """Nodes that neither inertia nor stiffness holds; `rows` are the exact torque links.
 
     A motion that twists no link and moves no inertia has no frequency. It exists exactly when holding every
     node that has inertia still leaves a rigid-body motion.

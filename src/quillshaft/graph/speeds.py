@@ -32,11 +32,9 @@ class SpeedRow:
 def ratio_edges(train: Train) -> tuple[list[RatioEdge], list[SpeedRow]]:
     """Every link that ties two speeds, and the equations of epicyclic stages that tie three."""
     number = {station.name: index for index, station in enumerate(train.stations)}
-    edges = [
-        RatioEdge(number[link.between[0]], number[link.between[1]], Fraction(1), None)
-        for link in (*train.shafts, *train.couplings)
-    ]
-    rows = []
+    pairs = [*(shaft.between for shaft in train.shafts), *(coupling.between for coupling in train.couplings)]
+    edges = [RatioEdge(number[first], number[second], Fraction(1), None) for first, second in pairs]
+    rows: list[SpeedRow] = []
     for gear in train.gears:
         if isinstance(gear, GearMesh):
             first, second = (number[name] for name in gear.between)
@@ -181,7 +179,7 @@ def speed_ratios(train: Train, findings: Findings) -> tuple[Fraction, ...] | Non
     open_roots = sorted(set(root) - set(solved))
     if open_roots:
         loose = ", ".join(names[station] for station in open_roots)
-        message = f"the speed of {loose} is not determined by the gears: a free epicyclic stage needs a second speed"
+        message = f"the gears leave the speed of {loose} open: a free epicyclic stage needs a second speed"
         findings.add(
             ("operation",), message, None, f'[operation.speeds] with {names[open_roots[0]]} = "… rpm"'
         )

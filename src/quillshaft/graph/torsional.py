@@ -57,7 +57,7 @@ class RigidMeshes:
 
     links     (meshes,) link numbers
     ends      (meshes, 2) station numbers
-    recovery  (meshes, stations): referred mesh torques [N·m] = recovery @ torque that each station must pass on
+    recovery  (meshes, stations): referred mesh torques = recovery @ torques that stations must pass on
     known     (meshes,) False where a closed loop of rigid meshes leaves the split open
     """
 
@@ -104,7 +104,7 @@ class TorsionalGraph:
 
     @property
     def split_open(self) -> bool:
-        """True where rigid stages form a closed loop, so that no unique split of torque exists between them."""
+        """True where rigid stages form a closed loop: the split of torque between them is open."""
         return any(link.slot == "slack" and link.stiffness_nm_rad is None for link in self.links)
 
     def link(self, name: str) -> GraphLink:

@@ -1,7 +1,7 @@
 """Numbers only: elimination on the graph, statics, natural modes and response of a `Network`."""
 
 from quillshaft.solve.elimination import ElementValues, Elimination, count_below, eliminate
-from quillshaft.solve.modes import Modes, natural_modes
+from quillshaft.solve.modes import Modes, natural_frequencies, natural_modes
 from quillshaft.solve.plan import Plan, plan_elimination
 from quillshaft.solve.statics import Statics, static_torques
 from quillshaft.solve.substitution import Solution, respond, solve
@@ -15,6 +15,7 @@ __all__ = [
     "Statics",
     "count_below",
     "eliminate",
+    "natural_frequencies",
     "natural_modes",
     "plan_elimination",
     "respond",

@@ -15,11 +15,12 @@ from quillshaft.graph.network import Bools, Floats, Ints, Network
 from quillshaft.solve.elimination import count_below
 from quillshaft.solve.factor import factorise
 from quillshaft.solve.plan import Plan, plan_elimination
-from quillshaft.solve.shapes import combine, kinetic_rows, refine, refine_cluster, strain_rows
+from quillshaft.solve.shapes import combine, kinetic_rows, refine, refine_group, strain_rows
 from quillshaft.solve.substitution import Solution
 
 BRACKET = 1e-11  # relative half-width of the bracket that proves a frequency
 CLUSTER_GAP = 2e-11  # relative gap of frequencies that brackets cannot keep apart, rounding included
+NEAR_GAP = 1e-8  # relative gap below which neighbours are refined together
 SIGN_TOLERANCE = 1e-6
 
 
@@ -38,7 +39,7 @@ class Modes:
     below, above    (m,) number of elastic modes just below and just above the frequency
     proven          (m,) True where below and above are what the position of the mode says
     cluster         (m,) position of the first mode of its cluster; modes of one cluster have frequencies that
-                    the proof cannot tell apart: their shapes are one basis of many (see `refine_cluster`),
+                    the proof cannot tell apart: their shapes are one basis of many (see `refine_group`),
                     their shares the average over the cluster
     residual        (m,) largest imbalance of torques at a node over the largest torque in a link
     relative_width  (m,) half-width of the bracket of the proof over the frequency
@@ -68,14 +69,10 @@ def natural_modes(network: Network, plan: Plan | None = None) -> Modes:
     inertia nor stiffness to hold it.
     """
     plan = plan or plan_elimination(network)
-    factor = factorise(network)
-    count = factor.elastic_modes
-    if count == 0:
+    start = _first_modes(network)
+    if start is None:
         return _no_modes(network)
-    _, omega, vectors = np.linalg.svd(factor.matrix, full_matrices=False)
-    omega = omega[:count][::-1]
-    momentum = (vectors[:count][::-1] @ factor.momentum).T
-    omega, solution, cluster = _refined(network, plan, momentum, omega)
+    omega, solution, cluster = _refined(network, plan, *start)
     strain, kinetic = _shares(network, solution, cluster)
     springs, links = len(network.spring_ends), strain.shape[1] - len(network.torque_links)
     below, above, proven, width = _proof(network, plan, omega, cluster)
@@ -96,6 +93,27 @@ def natural_modes(network: Network, plan: Plan | None = None) -> Modes:
         residual=_residual(network, solution, omega),
         relative_width=width,
     )
+
+
+def natural_frequencies(network: Network, plan: Plan | None = None) -> Floats:
+    """Return the elastic natural frequencies (m,) [rad/s]: the same numbers as `natural_modes`, unproven.
+
+    Raises what `natural_modes` raises.
+    """
+    start = _first_modes(network)
+    if start is None:
+        return np.zeros(0)
+    return _refined(network, plan or plan_elimination(network), *start)[0]
+
+
+def _first_modes(network: Network) -> tuple[Floats, Floats] | None:
+    """Momentum (nodes, m) and frequencies (m,), ascending, by the singular value decomposition."""
+    factor = factorise(network)
+    count = factor.elastic_modes
+    if count == 0:
+        return None
+    _, omega, vectors = np.linalg.svd(factor.matrix, full_matrices=False)
+    return (vectors[:count][::-1] @ factor.momentum).T, omega[:count][::-1]
 
 
 def _no_modes(network: Network) -> Modes:
@@ -131,21 +149,38 @@ def _refined(network: Network, plan: Plan, momentum: Floats, omega: Floats) -> t
     kinetic = (kinetic_rows(network, solution) ** 2).sum(axis=0)
     refined = np.sqrt(strain / kinetic)
     solution = combine(solution, _signs(solution.angle) / np.sqrt(kinetic))
-    close = (np.diff(omega) <= CLUSTER_GAP * omega[1:]) | (np.diff(refined) <= CLUSTER_GAP * refined[1:])
-    if not close.any():
-        return refined, solution, np.arange(len(omega))
-    first = np.concatenate([[True], ~close])
-    cluster = np.flatnonzero(first)[np.cumsum(first) - 1]
-    for start in np.unique(cluster[1:][close]):
-        here = np.flatnonzero(cluster == start)
-        omega2, shapes = refine_cluster(network, plan, momentum[:, here], omega[here] ** 2)
-        shapes = combine(shapes, _signs(shapes.angle))
-        refined[here] = np.sqrt(omega2)
-        solution.angle[:, here] = shapes.angle
-        solution.spring_twist[:, here] = shapes.spring_twist
-        solution.tie_twist[:, here] = shapes.tie_twist
-        solution.link_torque[:, here] = shapes.link_torque
-    return refined, solution, cluster
+    near = (np.diff(omega) <= NEAR_GAP * omega[1:]) | (np.diff(refined) <= NEAR_GAP * refined[1:])
+    if near.any():
+        for run in _runs(near):
+            refined[run] = _refine_run(network, plan, (momentum[:, run], refined[run]), run, solution)
+    return refined, solution, _starts(np.diff(refined) <= CLUSTER_GAP * refined[1:])
+
+
+def _starts(joined: Bools) -> Ints:
+    """Position of the first member of each mode's run, from flags that join each mode to the next."""
+    first = np.concatenate([[True], ~joined])
+    starts: Ints = np.flatnonzero(first)[np.cumsum(first) - 1]
+    return starts
+
+
+def _runs(joined: Bools) -> list[slice]:
+    """Runs of two and more modes that the flags join."""
+    starts = _starts(joined)
+    return [slice(start, start + size) for start, size in enumerate(np.bincount(starts).tolist()) if size > 1]
+
+
+def _refine_run(
+    network: Network, plan: Plan, found: tuple[Floats, Floats], run: slice, solution: Solution
+) -> Floats:
+    """Refine a run of modes, of given momentum and frequencies, as a group: into `solution`; return ω."""
+    momentum, omega = found
+    omega2, shapes = refine_group(network, plan, momentum, np.sort(omega) ** 2)
+    shapes = combine(shapes, _signs(shapes.angle))
+    solution.angle[:, run] = shapes.angle
+    solution.spring_twist[:, run] = shapes.spring_twist
+    solution.tie_twist[:, run] = shapes.tie_twist
+    solution.link_torque[:, run] = shapes.link_torque
+    return np.sqrt(omega2)
 
 
 def _signs(angle: Floats) -> Floats:
@@ -162,10 +197,9 @@ def _shares(network: Network, solution: Solution, cluster: Ints) -> tuple[Floats
         energy = rows**2
         energy /= energy.sum(axis=0)
         both.append(energy.T)
-    for start in np.unique(cluster[cluster != np.arange(len(cluster))]).tolist():
-        here = cluster == start
+    for run in _runs(cluster[1:] != np.arange(1, len(cluster))):
         for share in both:
-            share[here] = share[here].mean(axis=0)
+            share[run] = share[run].mean(axis=0)
     return both[0], both[1]
 
 

@@ -1,4 +1,4 @@
-"""Mode shapes refined on the elimination: inverse iteration, clusters of equal frequencies, energies.
+"""Mode shapes refined on the elimination: inverse iteration, groups of neighbouring modes, energies.
 
 One step of inverse iteration takes the angles and twists of a mode from the elimination, where a twist is
 never the difference of two nearly equal angles; the frequency is then a quotient of two sums of positive
@@ -16,9 +16,10 @@ from quillshaft.solve.substitution import Solution, solve
 
 SHIFT = 3e-15  # relative distance of the shift from the mode in ω²
 ATTEMPTS = 12
-CLUSTER_SHIFT = 1e-12  # the same for a cluster, wide enough that its members stay independent
-CLUSTER_SPREADS = 30.0
-SIGNIFICANT_ANGLE = 1e-6  # of the largest angle in the cluster
+GROUP_SHIFT = 1e-12  # the same for a group of neighbouring modes, beside its spread
+GROUP_SPREADS = 30.0
+EQUAL_GAP = 1e-13  # relative gap in ω² below which shapes count as one subspace
+SIGNIFICANT_ANGLE = 1e-6  # of the largest angle in the subspace
 
 
 def refine(network: Network, plan: Plan, momentum: Floats, omega2: Floats) -> Solution:
@@ -82,23 +83,34 @@ def combine(solution: Solution, factors: Floats) -> Solution:
     )
 
 
-def refine_cluster(network: Network, plan: Plan, momentum: Floats, omega2: Floats) -> tuple[Floats, Solution]:
-    """Refine the members of a cluster together: squared frequencies (c,) and M-orthonormal shapes.
+def refine_group(network: Network, plan: Plan, momentum: Floats, omega2: Floats) -> tuple[Floats, Solution]:
+    """Refine neighbouring modes together: squared frequencies (c,) [rad²/s²] and M-orthonormal shapes.
 
-    Shapes of equal frequency are not unique. The basis is chosen by elimination in node order: the second
-    shape is zero at the first node that moves, the third there and at the next node that moves among those
-    left, and so on. Frequencies are the Ritz values of the subspace, ascending.
+    Two steps of inverse iteration at one shift, far enough from all of them that they stay independent, then
+    the Ritz values and vectors of their subspace. Shapes of equal frequency are not unique; their basis is
+    chosen by elimination in node order: the second shape is zero at the first node that moves, the third
+    there and at the next node that moves among those left, and so on.
     """
     spread = omega2[-1] / omega2[0] - 1.0
-    shift = np.full(len(omega2), omega2.mean() * (1 + CLUSTER_SPREADS * spread + CLUSTER_SHIFT))
-    solution = solve(eliminate(network, plan, shift), momentum)
+    shift = np.full(len(omega2), omega2.mean() * (1 + GROUP_SPREADS * spread + GROUP_SHIFT))
+    elimination = eliminate(network, plan, shift)
+    solution = _orthonormal(network, solve(elimination, momentum))
+    solution = solve(elimination, network.inertia_kgm2[:, None] * solution.angle)
+    solution = _orthonormal(network, solution)
+    strain = strain_rows(network, solution)
+    ritz, vectors = np.linalg.eigh(strain.T @ strain)
+    solution = combine(solution, vectors)
+    rotation = np.eye(len(ritz))
+    edges = np.flatnonzero(np.diff(ritz) > EQUAL_GAP * ritz[1:]) + 1
+    for equal in np.split(np.arange(len(ritz)), edges):
+        rotation[np.ix_(equal, equal)] = _node_order_basis(solution.angle[:, equal])
+    return ritz.astype(float), combine(solution, rotation)
+
+
+def _orthonormal(network: Network, solution: Solution) -> Solution:
     solution = combine(solution, 1.0 / np.sqrt((kinetic_rows(network, solution) ** 2).sum(axis=0)))
     kinetic = kinetic_rows(network, solution)
-    lower = np.linalg.cholesky(kinetic.T @ kinetic)
-    solution = combine(solution, np.linalg.inv(lower).T)
-    strain = strain_rows(network, solution)
-    ritz: Floats = np.linalg.eigvalsh(strain.T @ strain).astype(float)
-    return ritz, combine(solution, _node_order_basis(solution.angle))
+    return combine(solution, np.linalg.inv(np.linalg.cholesky(kinetic.T @ kinetic)).T)
 
 
 def _node_order_basis(angle: Floats) -> Floats:

@@ -1,4 +1,4 @@
-"""All sources of a train: implied and given, merged where they are one line, switched off where the file says."""
+"""All sources of a train: implied and given, merged where they are one line, without those off."""
 
 from __future__ import annotations
 
@@ -11,21 +11,11 @@ from quillshaft.train.model import Excitation, Train
 from quillshaft.train.problems import TrainFileError, did_you_mean
 from quillshaft.train.validate import Findings
 
-FAMILIES = (
-    "default",
-    "shaft",
-    "1x",
-    "2x",
-    "gear",
-    "mesh",
-    "planet-pass",
-    "line",
-    "line-1x",
-    "line-2x",
-    "converter",
+FAMILIES: tuple[str, ...] = (
+    *("default", "shaft", "1x", "2x", "gear", "mesh", "planet-pass", "line", "line-1x", "line-2x"),
+    *("converter", "out-1x", "out-2x", "out-6x", "out-12x", "pass", "vane-pass", "vane-pass 2x"),
+    *("blade-pass", "blade-pass 2x", "diffuser-pass", "engine", "excitation"),
 )
-FAMILIES += ("out-1x", "out-2x", "out-6x", "out-12x", "pass", "vane-pass", "vane-pass 2x", "blade-pass")
-FAMILIES += ("blade-pass 2x", "diffuser-pass", "engine", "excitation")
 
 
 @dataclass(frozen=True)
@@ -39,8 +29,8 @@ class SourceSet:
 def collect_sources(train: Train, graph: TorsionalGraph) -> SourceSet:
     """Every source of the train.
 
-    Raises TrainFileError where a machine contradicts the speeds, or [excitations-off] or [criteria] name what is
-    not there.
+    Raises TrainFileError where a machine contradicts the speeds, or [excitations-off] or [criteria] name
+    what is not there.
     """
     findings = Findings(train.file, train.cases)
     sources = [

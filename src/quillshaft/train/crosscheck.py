@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from itertools import pairwise
 from typing import Any
 
 from quillshaft.train.materials import BUILT_IN
@@ -110,7 +111,7 @@ def _operation(findings: Findings, rows: Rows) -> None:
         _station(findings, rows, ("operation", "speeds", station), station)
     if operation.range:
         ranges = operation.range
-        for (_, high), (low, _) in zip(ranges, ranges[1:], strict=False):
+        for (_, high), (low, _) in pairwise(ranges):
             if low <= high:
                 findings.add(("operation", "range"), "two ranges overlap: write them as one", None)
 

@@ -93,7 +93,7 @@ class OtherRow(MachineRow):
     """Any other machine: `passes` lists its orders per turn."""
 
     kind: Literal["other"]
-    passes: Annotated[list[Count], Field(max_length=50)] = []
+    passes: Annotated[list[Count], Field(max_length=50, default_factory=list)]
 
 
 class CylinderRow(Row):

@@ -1,4 +1,4 @@
-"""What the user wrote, as frozen records: SI units, radians and seconds, every default resolved and listed."""
+"""What the user wrote, as frozen records: SI units, radians and seconds, every default resolved."""
 
 from __future__ import annotations
 

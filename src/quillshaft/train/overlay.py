@@ -123,7 +123,7 @@ def lay_cases(document: Document, names: tuple[str, ...]) -> Data:
 
 
 def written_at(document: Document, cases: tuple[str, ...], path: PathParts) -> PathParts:
-    """Where in the file a value of the overlaid data was written: in the last case that states it, or the base.
+    """Where a value of the overlaid data was written: in the last case that states it, or the base.
 
     Follows the longest part of `path` that a case states below its table.
     """

@@ -240,7 +240,7 @@ def _mesh_tolerance(row: Any, element: str, said: Assumptions) -> Tolerance:
 def _mesh(name: str, row: Any, said: Assumptions) -> GearMesh:
     element = f"gears.{name}"
     measure, value = row.mesh_stiffness or (None, 0.0)
-    linear = {"linear_stiffness": 1.0, "mesh_stiffness_per_face": row.face}.get(measure)
+    linear = {"linear_stiffness": 1.0, "mesh_stiffness_per_face": row.face}.get(measure or "")
     geometry = None
     if row.module is not None:
         helix, angle = row.helix, row.pressure_angle

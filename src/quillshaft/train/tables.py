@@ -40,7 +40,7 @@ class OperationTable(Row):
     barred_because: Text | None = None
     speed_band: Share | None = None
     supply_band: Share | None = None
-    speeds: dict[Name, SignedSpeed] = {}
+    speeds: Annotated[dict[Name, SignedSpeed], Field(default_factory=dict)]
 
     @model_validator(mode="after")
     def _order(self) -> OperationTable:
@@ -100,4 +100,4 @@ class SignOffTable(Row):
     checked: Text | None = None
     approved: Text | None = None
     client: Text | None = None
-    history: Annotated[list[RevisionRow], Field(max_length=100)] = []
+    history: Annotated[list[RevisionRow], Field(max_length=100, default_factory=list)]

@@ -12,11 +12,11 @@ from itertools import zip_longest
 from typing import Any, Literal, get_args
 
 from reportlab.lib.colors import Color, white
-from reportlab.platypus import Flowable, KeepTogether, ListFlowable, ListItem, Paragraph, Table
+from reportlab.platypus import Flowable, KeepTogether, Paragraph, Table
 
 from quillshaft.present.pdf.fonts import SANS
 from quillshaft.present.pdf.pieces import paragraph_pieces
-from quillshaft.present.pdf.style import ACCENT, BODY_PT, QUIET, RULE, TEXT_WIDTH_PT, TINT, styles
+from quillshaft.present.pdf.style import ACCENT, QUIET, RULE, TEXT_WIDTH_PT, TINT, styles
 from quillshaft.present.pdf.text import cut, escaped, one_line
 
 Tone = Literal["pass", "restriction", "fail"]
@@ -92,19 +92,9 @@ def captioned(block: Flowable, text: str) -> KeptTogether:
     return KeptTogether([block, Paragraph(escaped(text), styles().caption)])
 
 
-def bullets(items: Sequence[str]) -> ListFlowable:
-    """A list of items with bullets, which may run over pages."""
-    entries = [ListItem(Paragraph(escaped(item), styles().bullet), spaceAfter=0) for item in items]
-    return ListFlowable(
-        entries,
-        bulletType="bullet",
-        start="•",
-        leftIndent=14,
-        bulletFontName=SANS,
-        bulletFontSize=BODY_PT,
-        bulletColor=ACCENT,
-        spaceAfter=5,
-    )
+def bullets(items: Sequence[str]) -> list[Paragraph]:
+    """One paragraph with a bullet per item; the list may stand in a story as it is."""
+    return [Paragraph(escaped(item), styles().bullet, bulletText="•") for item in items]
 
 
 def key_values(pairs: Sequence[tuple[str, str]], label_width_pt: float = 130.0) -> Table:

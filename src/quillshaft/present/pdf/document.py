@@ -113,8 +113,8 @@ class ReportCanvas(Canvas):  # type: ignore[misc]
         super().save()
 
 
-def build_pdf(story: Sequence[Flowable], frame: PageFrame) -> bytes:
-    """Lay out the blocks of `story` on pages within `frame`; A4 or letter portrait.
+def build_pdf(story: Sequence[Flowable | Sequence[Flowable]], frame: PageFrame) -> bytes:
+    """Lay out the blocks of `story`, singly or in lists, on pages within `frame`; A4 or letter portrait.
 
     The bytes depend on the arguments and the library versions alone: no clock, time zone or hash seed
     enters. Raises reportlab's LayoutError when a block of the caller's own making fits on no page.
@@ -144,10 +144,14 @@ def build_pdf(story: Sequence[Flowable], frame: PageFrame) -> bytes:
         creator=PRODUCT,
         displayDocTitle=1,
     )
-    blocks = list(story) or [Spacer(1, 1)]
+    blocks = [part for block in story for part in _parts(block)] or [Spacer(1, 1)]
     _reserve_room(blocks)
     document.build(blocks, canvasmaker=_canvas_maker(frame))
     return buffer.getvalue()
+
+
+def _parts(block: Flowable | Sequence[Flowable]) -> list[Flowable]:
+    return list(block) if isinstance(block, (list, tuple)) else [block]
 
 
 def _canvas_maker(frame: PageFrame) -> Any:

@@ -80,7 +80,7 @@ class CanvasRenderer(RendererBase):
         width = fonts.text_width_pt(self._label(s, font, ismath), font, size)
         return width, (fonts.ASCENT_EM + fonts.DESCENT_EM) * size, fonts.DESCENT_EM * size
 
-    def draw_text(  # noqa: PLR0917
+    def draw_text(
         self,
         gc: GraphicsContextBase,
         x: float,

@@ -67,7 +67,16 @@ def styles() -> Styles:
             "caption", body, fontName=SANS_OBLIQUE, fontSize=8, leading=10.5, textColor=QUIET, spaceAfter=8
         ),
         note=ParagraphStyle("note", body, fontSize=8, leading=10.8, spaceAfter=3),
-        bullet=ParagraphStyle("bullet", body, spaceAfter=2.5),
+        bullet=ParagraphStyle(
+            "bullet",
+            body,
+            leftIndent=14,
+            bulletIndent=3,
+            bulletFontName=SANS,
+            bulletFontSize=BODY_PT,
+            bulletColor=ACCENT,
+            spaceAfter=2.5,
+        ),
         cells=_cell_styles(body, SANS, TEXT),
         head_cells=_cell_styles(body, SANS_BOLD, ACCENT),
         bold_cells=_cell_styles(body, SANS_BOLD, TEXT),

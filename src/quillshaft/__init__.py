@@ -1,0 +1,61 @@
+"""Quillshaft: torsional analysis of drivetrains, from the train file to a report ready for sign-off.
+
+import quillshaft
+screening = quillshaft.screen(quillshaft.load("train.toml"))
+print(screening.worst_verdict, [mode.frequency_hz for mode in screening.modes])
+"""
+
+from __future__ import annotations
+
+import importlib
+from typing import TYPE_CHECKING
+
+if TYPE_CHECKING:
+    from quillshaft.assess.results import Interference, ModeResult, Screening
+    from quillshaft.assess.screening import screen
+    from quillshaft.graph.build import build_graph
+    from quillshaft.graph.torsional import TorsionalGraph
+    from quillshaft.present.report import report_pdf
+    from quillshaft.present.results_json import screening_json
+    from quillshaft.train.model import Train
+    from quillshaft.train.problems import Problem, TrainFileError
+    from quillshaft.train.read import load
+
+__version__ = "0.1.0"
+
+__all__ = [
+    "Interference",
+    "ModeResult",
+    "Problem",
+    "Screening",
+    "TorsionalGraph",
+    "Train",
+    "TrainFileError",
+    "build_graph",
+    "load",
+    "report_pdf",
+    "screen",
+    "screening_json",
+]
+
+_HOME = {
+    "Interference": "assess.results",
+    "ModeResult": "assess.results",
+    "Problem": "train.problems",
+    "Screening": "assess.results",
+    "TorsionalGraph": "graph.torsional",
+    "Train": "train.model",
+    "TrainFileError": "train.problems",
+    "build_graph": "graph.build",
+    "load": "train.read",
+    "report_pdf": "present.report",
+    "screen": "assess.screening",
+    "screening_json": "present.results_json",
+}
+
+
+def __getattr__(name: str) -> object:
+    """Import a public name when it is first used, so that the command starts quickly."""
+    if name not in _HOME:
+        raise AttributeError(f"module {__name__!r} has no attribute {name!r}")
+    return getattr(importlib.import_module(f"{__name__}.{_HOME[name]}"), name)
