@@ -8,8 +8,9 @@ import pytest
 from networks import chain, dense_response, make, random_network
 
 from quillshaft.graph.network import TorqueLink
-from quillshaft.solve.elimination import CHUNK_POINTS, ElementValues, count_below, eliminate
+from quillshaft.solve.elimination import CHUNK_POINTS, ElementValues, eliminate
 from quillshaft.solve.plan import plan_elimination
+from quillshaft.solve.precise import count_below
 from quillshaft.solve.substitution import respond, solve
 
 GROVER = chain([100.0, 50.0, 10.0, 50.0], [1e4, 1e4, 2e4])

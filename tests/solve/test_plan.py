@@ -96,7 +96,7 @@ def test_a_spring_with_both_ends_on_one_node_carries_nothing():
 
 
 def test_a_long_chain_is_eliminated_to_the_right_pivot():
-    # Statically the pivots of a chain tied at one end are the flexibilities in series: ties seen from the root.
+    # At rest the last pivot of a chain tied at its other end is the stiffness of all springs in series.
     network = make([1.0] * 3, [(0, 1, 2.0), (1, 2, 3.0)], ties=[(0, 6.0)])
     plan = plan_elimination(network, last=(2,))
     pivot = eliminate(network, plan, np.zeros(1)).pivot

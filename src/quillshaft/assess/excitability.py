@@ -11,9 +11,7 @@ from quillshaft.solve.modes import Modes
 from quillshaft.sources.line import Source
 
 
-def excitabilities(
-    graph: TorsionalGraph, network: Network, modes: Modes, sources: tuple[Source, ...]
-) -> Floats:
+def excitabilities(graph: TorsionalGraph, network: Network, modes: Modes, sources: tuple[Source, ...]) -> Floats:
     """(sources, modes), each 0 to 1; nan where a rigid loop leaves the torque at the source open.
 
     A point: |referred angle| there over the largest of the mode. Several points: |Σ θ exp(j n φ)| over their

@@ -41,9 +41,7 @@ def mean_torques(train: Train, graph: TorsionalGraph) -> tuple[LinkDuty, ...]:
         solution.link_torque[None, :],
         load[None, :],
     )[0]
-    return tuple(
-        _duty(link_index, float(torques[link_index]), graph) for link_index in range(len(graph.links))
-    )
+    return tuple(_duty(link_index, float(torques[link_index]), graph) for link_index in range(len(graph.links)))
 
 
 def _duty(index: int, referred_nm: float, graph: TorsionalGraph) -> LinkDuty:
@@ -75,9 +73,7 @@ def _station_torque(train: Train, power: Power, graph: TorsionalGraph, findings:
         matrix = motions[:, balance]
         if len(balance) != needed or abs(np.linalg.det(matrix)) < 1e-9:
             given = ", ".join(graph.stations[station] for station in balance)
-            message = (
-                f'{needed} "balance" needed, one for each motion the train is free to make; given at {given}'
-            )
+            message = f'{needed} "balance" needed, one for each motion the train is free to make; given at {given}'
             findings.add(("power",), message)
             return None
         torque[balance] = np.linalg.solve(matrix, -work)

@@ -42,17 +42,13 @@ def _disc_flags(stations: tuple[Station, ...]) -> Iterator[Flag]:
         disc = station.mass_kg * station.diameter_m**2 / 8.0
         share = station.inertia_kgm2 / disc
         where = f"stations.{station.name}"
-        text = (
-            f"its inertia is {share:.3g} × that of a plain disc of its mass and diameter ({disc:.4g} kg·m²)"
-        )
+        text = f"its inertia is {share:.3g} × that of a plain disc of its mass and diameter ({disc:.4g} kg·m²)"
         if 3.2 <= share <= 5.0:
             yield Flag(where, f"{text}: a GD² value given as inertia would be 4 ×")
         elif share > 2.0:
             yield Flag(where, f"{text}: more than all its mass at the rim")
         elif share < 0.2:
-            yield Flag(
-                where, f"{text}: a quarter would be GD² divided by four twice; ask what the sheet means"
-            )
+            yield Flag(where, f"{text}: a quarter would be GD² divided by four twice; ask what the sheet means")
 
 
 def _spread_flags(train: Train, graph: TorsionalGraph) -> Iterator[Flag]:
@@ -123,9 +119,7 @@ def _coupling_flags(train: Train) -> Iterator[Flag]:
                 text = f"stiffness over rated torque is {ratio:.3g} per rad; {ordinary}"
                 yield Flag(where, text)
         if coupling.kind == "elastomer" or (coupling.kind is None and coupling.loss_factor is not None):
-            yield Flag(
-                where, "rubber: is this the dynamic stiffness, at what temperature and at what mean torque?"
-            )
+            yield Flag(where, "rubber: is this the dynamic stiffness, at what temperature and at what mean torque?")
 
 
 def _gear_flags(train: Train) -> Iterator[Flag]:
@@ -135,9 +129,7 @@ def _gear_flags(train: Train) -> Iterator[Flag]:
         if gear.geometry.face_m:
             unit = gear.mesh_n_m / gear.geometry.face_m / 1e9
             if not 8.0 <= unit <= 30.0:
-                yield Flag(
-                    f"gears.{gear.name}", f"mesh stiffness {unit:.3g} N/(mm·µm); steel gears have 10 to 25"
-                )
+                yield Flag(f"gears.{gear.name}", f"mesh stiffness {unit:.3g} N/(mm·µm); steel gears have 10 to 25")
 
 
 def _duty_flags(train: Train, graph: TorsionalGraph, duties: tuple[LinkDuty, ...]) -> Iterator[Flag]:

@@ -167,9 +167,7 @@ class Screening:
                 -(pair.worst_excitability if pair.worst_excitability is not None else 1.0),
             )
 
-        bad = [
-            pair for pair in self.interferences if pair.worst_verdict != "clear" or pair.verdict != "clear"
-        ]
+        bad = [pair for pair in self.interferences if pair.worst_verdict != "clear" or pair.verdict != "clear"]
         return tuple(sorted(bad, key=badness))
 
     def mode(self, number: int) -> ModeResult:

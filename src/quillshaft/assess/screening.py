@@ -92,9 +92,7 @@ def _check_dismissals(train: Train, sources: tuple[Source, ...]) -> None:
         if not train.cases and not any(source.answers_to(dismissal.source) for source in sources):
             hint = did_you_mean(dismissal.source, [source.name for source in sources])
             path = ("dismissals", dismissal.name, "source")
-            findings.add(
-                path, f"there is no source of this name{hint}", dismissal.source, "as `check` lists it"
-            )
+            findings.add(path, f"there is no source of this name{hint}", dismissal.source, "as `check` lists it")
     if findings.problems:
         raise TrainFileError(tuple(findings.problems))
 
@@ -142,9 +140,7 @@ def _pair(
     nominal = separate(source, (mode.frequency_hz, mode.frequency_hz), ranges, required, on)
     worst = separate(source, mode.bounds_hz, ranges, worst_required, on)
     speeds, chosen = critical_speeds(source, mode.frequency_hz, train.operation)
-    dismissed = next(
-        (item for item in applied if item.mode == mode.mode and source.answers_to(item.source)), None
-    )
+    dismissed = next((item for item in applied if item.mode == mode.mode and source.answers_to(item.source)), None)
     own, largest = (None if math.isnan(value) else float(value) for value in excitable)
     return Interference(
         source.name,
@@ -177,9 +173,7 @@ def _sort_dismissals(
     return tuple(applied), tuple(stale)
 
 
-def _why_stale(
-    item: Dismissal, train: Train, modes: tuple[ModeResult, ...], sources: tuple[Source, ...]
-) -> str | None:
+def _why_stale(item: Dismissal, train: Train, modes: tuple[ModeResult, ...], sources: tuple[Source, ...]) -> str | None:
     if not any(source.answers_to(item.source) for source in sources):
         return f"there is no source {item.source} in this train as it stands"
     if not set(train.cases) <= set(item.cases):

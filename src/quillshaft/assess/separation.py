@@ -63,11 +63,7 @@ def _margin(natural: Range, band: Range, margin_on: str) -> float:
 
 def _nearest_speed(source: Source, stretch: JudgedRange, natural_hz: float) -> float:
     """Speed [rad/s] in a stretch at which the source's line is nearest a natural frequency."""
-    inside = [
-        speed
-        for speed in meeting_speeds(source, natural_hz)
-        if stretch.low_rad_s <= speed <= stretch.high_rad_s
-    ]
+    inside = [speed for speed in meeting_speeds(source, natural_hz) if stretch.low_rad_s <= speed <= stretch.high_rad_s]
     if inside:
         return inside[0]
     low = sum(frequencies_over(source, stretch.low_rad_s, stretch.low_rad_s)) / 2.0
@@ -105,9 +101,7 @@ def separate(
 
 def required_separation(source: Source, table: dict[str, float]) -> float:
     """Required share: the most specific entry for each origin, the largest over merged origins."""
-    return max(
-        next(table[label] for label in (*chain, "default") if label in table) for chain in source.labels
-    )
+    return max(next(table[label] for label in (*chain, "default") if label in table) for chain in source.labels)
 
 
 def highest_frequency(sources: tuple[Source, ...], operation: Operation, criteria: Criteria) -> float:
@@ -120,9 +114,7 @@ def highest_frequency(sources: tuple[Source, ...], operation: Operation, criteri
             required_separation(source, criteria.separation), required_separation(source, criteria.worst_case)
         )
         highest = max(frequencies_over(source, low, high)[1] for low, high in operation.ranges_rad_s)
-        tops.append(
-            highest * (1 + required) if criteria.margin_on == "excitation" else highest / (1 - required)
-        )
+        tops.append(highest * (1 + required) if criteria.margin_on == "excitation" else highest / (1 - required))
     return max(tops)
 
 

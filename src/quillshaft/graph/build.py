@@ -40,9 +40,7 @@ def _assemble(train: Train, ratios: tuple[Fraction, ...], findings: Findings) ->
     parts = _inertia_parts(train, names, scale, ratios, findings)
     drafts = draft_links(train, names, ratios)
     node = _merge(len(names), drafts)
-    coefficients = [
-        draft.node_coefficients(node, ratios) if draft.slot == "torque" else {} for draft in drafts
-    ]
+    coefficients = [draft.node_coefficients(node, ratios) if draft.slot == "torque" else {} for draft in drafts]
     rigid_rows = [i for i, draft in enumerate(drafts) if draft.slot == "torque" and draft.stiffness is None]
     kept = independent_rows([coefficients[i] for i in rigid_rows])
     dropped = {i for i, keep in zip(rigid_rows, kept, strict=True) if not keep}
@@ -89,9 +87,7 @@ def _inertia_parts(
         if shaft.own_inertia == "ends" and shaft.material is not None:
             ends = shaft_formulas.end_inertias(shaft.pieces, shaft.material)
             for name, inertia in zip(shaft.between, ends, strict=True):
-                parts.append(
-                    InertiaPart(number[name], f"shafts.{shaft.name}", inertia, shaft.inertia_tolerance)
-                )
+                parts.append(InertiaPart(number[name], f"shafts.{shaft.name}", inertia, shaft.inertia_tolerance))
     for coupling in train.couplings:
         for name, inertia in zip(coupling.between, coupling.half_inertias_kgm2, strict=True):
             if inertia:
@@ -186,9 +182,7 @@ def _network(
 
     springs = [link for link in links if link.slot == "spring"]
     ties = [
-        link
-        for link in links
-        if link.slot == "tie" and not (corner == "static" and turning[node[link.stations[0]]])
+        link for link in links if link.slot == "tie" and not (corner == "static" and turning[node[link.stations[0]]])
     ]
     torque_links = [
         (_torque_link(coefficients[position], 1.0 / stiffness(link) if draft.stiffness else 0.0))
@@ -233,9 +227,7 @@ def _rigid_meshes(names: tuple[str, ...], links: tuple[GraphLink, ...], dropped:
     incidence[np.arange(len(numbers)), ends[:, 0]] = 1.0
     incidence[np.arange(len(numbers)), ends[:, 1]] = -1.0
     recovery = np.asarray(np.linalg.pinv(incidence.T) if numbers else incidence, dtype=np.float64)
-    known = np.array(
-        [_is_bridge(position, ends) and not dropped for position in range(len(numbers))], dtype=bool
-    )
+    known = np.array([_is_bridge(position, ends) and not dropped for position in range(len(numbers))], dtype=bool)
     return RigidMeshes(np.array(numbers, dtype=np.intp), ends, recovery, known)
 
 
@@ -265,7 +257,6 @@ def _lines(train: Train, names: tuple[str, ...]) -> tuple[tuple[int, ...], ...]:
 def without_damping_words(graph: TorsionalGraph, low_zeta: float) -> TorsionalGraph:
     """The graph with a loss factor 2ζ on every link that states none (low value of `zeta`)."""
     links = tuple(
-        replace(link, loss_factor=2.0 * low_zeta) if link.loss_factor is None else link
-        for link in graph.links
+        replace(link, loss_factor=2.0 * low_zeta) if link.loss_factor is None else link for link in graph.links
     )
     return replace(graph, links=links)

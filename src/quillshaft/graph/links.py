@@ -60,9 +60,7 @@ def draft_links(train: Train, names: tuple[str, ...], ratios: tuple[Fraction, ..
         for gear in train.gears
     ]
     drafts += [
-        LinkDraft(
-            tie.name, "tie", (number[tie.at],), tie.stiffness_nm_rad, tie.tolerance, tie.loss_factor, "tie"
-        )
+        LinkDraft(tie.name, "tie", (number[tie.at],), tie.stiffness_nm_rad, tie.tolerance, tie.loss_factor, "tie")
         for tie in train.ties
     ]
     return drafts
@@ -99,9 +97,7 @@ def _coupling(coupling: Coupling, number: dict[str, int], ratios: tuple[Fraction
     given, first = coupling.stiffness_nm_rad, coupling.between[0]
     stiffness = _unreferred(given, coupling.referred_to, first, number, ratios)
     ends = (number[first], number[coupling.between[1]])
-    return LinkDraft(
-        coupling.name, "coupling", ends, stiffness, coupling.tolerance, coupling.loss_factor, "spring"
-    )
+    return LinkDraft(coupling.name, "coupling", ends, stiffness, coupling.tolerance, coupling.loss_factor, "spring")
 
 
 def _pair_slot(stiffness: float | None, ends: tuple[int, ...], ratios: tuple[Fraction, ...]) -> Slot:
@@ -139,6 +135,4 @@ def _stage(gear: Epicyclic, number: dict[str, int], ratios: tuple[Fraction, ...]
         stiffness *= float(Fraction(leading, gear.sun_teeth)) ** 2
     slot: Slot = "torque" if len(members) == 3 else _pair_slot(stiffness, stations, ratios)
     text = f"sun {gear.sun_teeth}, ring {gear.ring_teeth}, {gear.planets} planets"
-    return LinkDraft(
-        gear.name, "epicyclic", stations, stiffness, gear.tolerance, gear.loss_factor, slot, signed, text
-    )
+    return LinkDraft(gear.name, "epicyclic", stations, stiffness, gear.tolerance, gear.loss_factor, slot, signed, text)

@@ -71,9 +71,7 @@ def unconnected(count: int, start: int, edges: list[RatioEdge], rows: list[Speed
     return [station for station in range(count) if station not in seen]
 
 
-def _spread(
-    count: int, edges: list[RatioEdge]
-) -> tuple[list[int], list[Fraction], list[tuple[RatioEdge, list[str]]]]:
+def _spread(count: int, edges: list[RatioEdge]) -> tuple[list[int], list[Fraction], list[tuple[RatioEdge, list[str]]]]:
     """Root and factor of every station (speed = factor · root's speed), and the edges that disagree."""
     beside: list[list[tuple[int, Fraction, RatioEdge]]] = [[] for _ in range(count)]
     for edge in edges:
@@ -133,10 +131,7 @@ def _reduce(rows: list[tuple[dict[int, Fraction], Fraction]]) -> tuple[dict[int,
         for other, (row, row_value) in list(pivots.items()):
             weight = row.get(pivot, Fraction(0))
             if weight:
-                mixed = {
-                    key: row.get(key, Fraction(0)) - weight * left.get(key, Fraction(0))
-                    for key in {*row, *left}
-                }
+                mixed = {key: row.get(key, Fraction(0)) - weight * left.get(key, Fraction(0)) for key in {*row, *left}}
                 pivots[other] = (
                     {key: number for key, number in mixed.items() if number},
                     row_value - weight * value,
@@ -156,9 +151,7 @@ def speed_ratios(train: Train, findings: Findings) -> tuple[Fraction, ...] | Non
     edges, rows = ratio_edges(train)
     apart = unconnected(len(names), start, edges, rows)
     for station in apart:
-        findings.add(
-            ("stations", names[station]), f"no link joins {names[station]} to {train.operation.speed_at}"
-        )
+        findings.add(("stations", names[station]), f"no link joins {names[station]} to {train.operation.speed_at}")
     root, factor, wrong = _spread(len(names), edges)
     for edge, gears in wrong:
         where = ("gears", edge.gear) if edge.gear else ("stations", names[edge.first])
@@ -180,9 +173,7 @@ def speed_ratios(train: Train, findings: Findings) -> tuple[Fraction, ...] | Non
     if open_roots:
         loose = ", ".join(names[station] for station in open_roots)
         message = f"the gears leave the speed of {loose} open: a free epicyclic stage needs a second speed"
-        findings.add(
-            ("operation",), message, None, f'[operation.speeds] with {names[open_roots[0]]} = "… rpm"'
-        )
+        findings.add(("operation",), message, None, f'[operation.speeds] with {names[open_roots[0]]} = "… rpm"')
         return None
     return tuple(factor[station] * solved[root[station]] for station in range(len(names)))
 
@@ -201,6 +192,4 @@ def _inconsistent(train: Train, findings: Findings) -> None:
         message = f"the speeds given for {given} disagree with the tooth ratios"
         findings.add(("operation", "speeds"), message, None, "as many speeds as the gears leave free")
     else:
-        findings.add(
-            ("gears",), f"the train cannot turn: the tooth ratios of {stages or 'its gears'} disagree"
-        )
+        findings.add(("gears",), f"the train cannot turn: the tooth ratios of {stages or 'its gears'} disagree")

@@ -1,8 +1,9 @@
 """Numbers only: elimination on the graph, statics, natural modes and response of a `Network`."""
 
-from quillshaft.solve.elimination import ElementValues, Elimination, count_below, eliminate
+from quillshaft.solve.elimination import ElementValues, Elimination, eliminate
 from quillshaft.solve.modes import Modes, natural_frequencies, natural_modes
 from quillshaft.solve.plan import Plan, plan_elimination
+from quillshaft.solve.precise import count_below, solve_at
 from quillshaft.solve.statics import Statics, static_torques
 from quillshaft.solve.substitution import Solution, respond, solve
 
@@ -20,5 +21,6 @@ __all__ = [
     "plan_elimination",
     "respond",
     "solve",
+    "solve_at",
     "static_torques",
 ]

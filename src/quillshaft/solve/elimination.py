@@ -16,6 +16,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from decimal import Decimal
 from typing import Any
 
 import numpy as np
@@ -29,7 +30,6 @@ Value = Any  # a number or an array over the points
 Values = Numbers | Sequence[Value]
 
 CHUNK_POINTS = 1024
-TINY_PIVOT = 1e-200  # stands for a pivot that is exactly zero when counting; its inverse squared stays finite
 
 
 @dataclass(frozen=True)
@@ -68,6 +68,8 @@ class Elimination:
     excess        (nodes, F)    excess of the own group when the node was eliminated
     leaf_ratio    (leaves, F)   weight over pivot of each leaf
     core          records of the core, in order
+    growth        (F,) largest ratio of the magnitudes that form a pivot of the core to the pivot, which
+                  magnifies rounding where loops or torque links join unknowns left; 1 if not watched
     """
 
     plan: Plan
@@ -76,56 +78,62 @@ class Elimination:
     excess: Numbers
     leaf_ratio: Numbers
     core: tuple[CoreRecord, ...]
+    growth: Floats
 
 
 def eliminate(
-    network: Network, plan: Plan, omega2: Floats, values: ElementValues | None = None
+    network: Network,
+    plan: Plan,
+    omega2: Numbers,
+    values: ElementValues | None = None,
+    watch: bool = False,
 ) -> Elimination:
     """Eliminate K − ω²M at the points omega2 (F,) [rad²/s²], with other values than the network's if given.
 
-    Pivots that are exactly zero make the results infinite or undefined there; nothing is raised.
+    Pivots that are exactly zero make the results infinite or undefined there; nothing is raised. With `watch`
+    the growth is recorded. Points of dtype object must be exact numbers, and then all values with them.
     """
-    return _eliminate(network, plan, omega2, values or OWN_VALUES, mend_zeros=False)
-
-
-def count_below(network: Network, plan: Plan, omega2: Floats) -> Ints:
-    """Return the number of elastic modes below each omega2 (F,) [rad²/s²], as (F,) integers.
-
-    Negative pivots less torque links less rigid motions (Sylvester's law of inertia).
-    """
-    counts = [
-        _count_chunk(network, plan, omega2[start : start + CHUNK_POINTS])
-        for start in range(0, len(omega2), CHUNK_POINTS)
-    ]
-    return np.concatenate(counts) if counts else np.zeros(0, dtype=np.intp)
-
-
-def _eliminate(
-    network: Network, plan: Plan, omega2: Floats, values: ElementValues, mend_zeros: bool
-) -> Elimination:
+    values = values or OWN_VALUES
     excess = _first_excess(network, omega2, values)
-    weights = _first_weights(network, plan, values)
-    diagonal = _link_diagonals(network, values)
-    excess = excess.astype(_common_type(excess, values), copy=False)
-    pivot = np.empty((plan.nodes + plan.links, len(omega2)), dtype=excess.dtype)
-    ratio = np.empty((len(plan.leaf), len(omega2)), dtype=excess.dtype)
+    exact = omega2.dtype == object
+    dtype = np.dtype(object) if exact else _common_type(excess, values)
+    excess = excess.astype(dtype, copy=False)
+    pivot = np.empty((plan.nodes + plan.links, len(omega2)), dtype=dtype)
+    ratio = np.empty((len(plan.leaf), len(omega2)), dtype=dtype)
+    coefficients = [[Decimal(a) if exact else a for a in link.coefficients] for link in network.torque_links]
+    work = _Work(
+        excess=excess,
+        pivot=pivot,
+        weights=_first_weights(network, plan, values, coefficients),
+        diagonal=_link_diagonals(network, values),
+        states=[],
+        growth=np.ones(len(omega2)),
+        watch=watch,
+        formed=[0.0] * plan.links,
+    )
     with np.errstate(all="ignore"):
-        _peel_leaves(plan, _Work(excess, pivot, weights, diagonal, [], mend_zeros), ratio)
-        work = _Work(excess, pivot, weights, diagonal, _states(network, plan, excess), mend_zeros)
+        _peel_leaves(plan, work, ratio)
+        work.states = _states(network, plan, excess, coefficients)
         core = tuple([_core_record(plan, step, work) for step in plan.core])
-    return Elimination(plan, network.tie_node, pivot, excess, ratio, core)
+    return Elimination(plan, network.tie_node, pivot, excess, ratio, core, work.growth)
 
 
 @dataclass
 class _Work:
-    """The matrix while it is being eliminated; states[group][unknown] are the excesses of the core."""
+    """The matrix while it is being eliminated.
+
+    states[group][unknown] are the excesses of the core; formed[link] is the sum of the magnitudes that make
+    up the diagonal of a torque link.
+    """
 
     excess: Numbers
     pivot: Numbers
     weights: list[Value]
     diagonal: list[Value]
     states: list[list[Value | None]]
-    mend_zeros: bool
+    growth: Floats
+    watch: bool
+    formed: list[Value]
 
 
 def _common_type(excess: Numbers, values: ElementValues) -> np.dtype[Any]:
@@ -141,7 +149,9 @@ def _link_diagonals(network: Network, values: ElementValues) -> list[Value]:
     return [-link.compliance_rad_per_nm for link in network.torque_links]
 
 
-def _states(network: Network, plan: Plan, excess: Numbers) -> list[list[Value | None]]:
+def _states(
+    network: Network, plan: Plan, excess: Numbers, coefficients: list[list[Value]]
+) -> list[list[Value | None]]:
     """Excess of the core's unknowns for each group; None where it is zero.
 
     That of a torque link is the sum of its coefficients in the group: exactly zero for turning nodes,
@@ -152,10 +162,10 @@ def _states(network: Network, plan: Plan, excess: Numbers) -> list[list[Value | 
         if step.unknown < plan.nodes:
             states[plan.group[step.unknown]][step.unknown] = excess[step.unknown]
     if plan.resting_group >= 0:
-        for unknown, link in enumerate(network.torque_links, start=plan.nodes):
-            coefficients = zip(link.nodes, link.coefficients, strict=True)
-            resting = [a for node, a in coefficients if not network.turning[node]]
-            states[plan.resting_group][unknown] = sum(resting) if resting else None
+        for number, link in enumerate(network.torque_links):
+            terms = zip(link.nodes, coefficients[number], strict=True)
+            resting = [a for node, a in terms if not network.turning[node]]
+            states[plan.resting_group][plan.nodes + number] = sum(resting) if resting else None
     return states
 
 
@@ -173,7 +183,9 @@ def _first_excess(network: Network, omega2: Floats, values: ElementValues) -> Nu
     return excess
 
 
-def _first_weights(network: Network, plan: Plan, values: ElementValues) -> list[Value]:
+def _first_weights(
+    network: Network, plan: Plan, values: ElementValues, coefficients: list[list[Value]]
+) -> list[Value]:
     """Weight of every pair before elimination: springs, minus link coefficients; None where it is zero."""
     weights: list[Value] = [None] * plan.pair_count
     springs = network.spring_nm_rad if values.springs is None else values.springs
@@ -182,8 +194,8 @@ def _first_weights(network: Network, plan: Plan, values: ElementValues) -> list[
         if pair != NO_PAIR:
             before = weights[pair]
             weights[pair] = spring if before is None else before + spring
-    for link, pairs in zip(network.torque_links, plan.link_pairs, strict=True):
-        for pair, coefficient in zip(pairs, link.coefficients, strict=True):
+    for own, pairs in zip(coefficients, plan.link_pairs, strict=True):
+        for pair, coefficient in zip(pairs, own, strict=True):
             before = weights[pair]
             weights[pair] = -coefficient if before is None else before - coefficient
     return weights
@@ -196,8 +208,6 @@ def _peel_leaves(plan: Plan, work: _Work, ratio: Numbers) -> None:
     for node, parent, pair, r in zip(plan.leaf, plan.parent, plan.leaf_pair, ratios, strict=True):
         weight, here, above, d = work.weights[pair], rows[node], rows[parent], pivots[node]
         add(here, weight, d)
-        if work.mend_zeros:
-            d[d == 0] = -TINY_PIVOT
         divide(weight, d, r)
         multiply(r, here, scratch)
         add(above, scratch, above)
@@ -212,8 +222,8 @@ def _core_record(plan: Plan, step: CoreStep, work: _Work) -> CoreRecord:
     for other, weight in zip(step.neighbours, here, strict=True):
         if group >= 0 and plan.group[other] == group:
             d = d + weight
-    if work.mend_zeros:
-        d = np.where(d == 0, -TINY_PIVOT, d)
+    if work.watch and here:
+        _record_growth(plan, step, work, (d, states, here))
     work.pivot[u] = d
     if group >= 0:
         work.excess[u] = states[group]
@@ -222,20 +232,33 @@ def _core_record(plan: Plan, step: CoreStep, work: _Work) -> CoreRecord:
         work.weights[pair] = _sum(work.weights[pair], ratios[a] * here[b])
     for other, weight, ratio in zip(step.neighbours, here, ratios, strict=True):
         if plan.group[other] < 0:
-            work.diagonal[other - plan.nodes] = work.diagonal[other - plan.nodes] - ratio * weight
+            less = ratio * weight
+            work.diagonal[other - plan.nodes] = work.diagonal[other - plan.nodes] - less
+            if work.watch:
+                work.formed[other - plan.nodes] = work.formed[other - plan.nodes] + np.abs(less)
         for of_group, state in zip(work.states, states, strict=True):
             if state is not None:
                 of_group[other] = _sum(of_group[other], ratio * state)
     return CoreRecord(step, d, here, states)
 
 
+def _record_growth(
+    plan: Plan, step: CoreStep, work: _Work, at: tuple[Value, tuple[Value | None, ...], tuple[Value, ...]]
+) -> None:
+    """Note how far the magnitudes that form a pivot exceed it: its inverse magnifies rounding so much."""
+    d, states, weights = at
+    group = plan.group[step.unknown]
+    magnitude: Value
+    if group < 0:
+        magnitude = work.formed[step.unknown - plan.nodes]
+    else:
+        excess: Value = states[group]
+        magnitude = np.abs(excess)
+        for other, weight in zip(step.neighbours, weights, strict=True):
+            if plan.group[other] == group:
+                magnitude = magnitude + np.abs(weight)
+    work.growth = np.maximum(work.growth, magnitude / np.abs(d))
+
+
 def _sum(before: Value | None, more: Value) -> Value:
     return more if before is None else before + more
-
-
-def _count_chunk(network: Network, plan: Plan, omega2: Floats) -> Ints:
-    pivot = _eliminate(network, plan, omega2, OWN_VALUES, mend_zeros=False).pivot
-    if not pivot.all() or not np.isfinite(pivot).all():
-        pivot = _eliminate(network, plan, omega2, OWN_VALUES, mend_zeros=True).pivot
-    negative: Ints = np.count_nonzero(pivot < 0, axis=0)
-    return negative - (plan.links + network.rigid_motions)

@@ -12,9 +12,9 @@ from dataclasses import dataclass
 import numpy as np
 
 from quillshaft.graph.network import Bools, Floats, Ints, Network
-from quillshaft.solve.elimination import count_below
 from quillshaft.solve.factor import factorise
 from quillshaft.solve.plan import Plan, plan_elimination
+from quillshaft.solve.precise import count_below, put
 from quillshaft.solve.shapes import combine, kinetic_rows, refine, refine_group, strain_rows
 from quillshaft.solve.substitution import Solution
 
@@ -176,10 +176,7 @@ def _refine_run(
     momentum, omega = found
     omega2, shapes = refine_group(network, plan, momentum, np.sort(omega) ** 2)
     shapes = combine(shapes, _signs(shapes.angle))
-    solution.angle[:, run] = shapes.angle
-    solution.spring_twist[:, run] = shapes.spring_twist
-    solution.tie_twist[:, run] = shapes.tie_twist
-    solution.link_torque[:, run] = shapes.link_torque
+    put(solution, run, shapes)
     return np.sqrt(omega2)
 
 

@@ -10,9 +10,9 @@ from __future__ import annotations
 import numpy as np
 
 from quillshaft.graph.network import Bools, Floats, Network
-from quillshaft.solve.elimination import eliminate
 from quillshaft.solve.plan import Plan
-from quillshaft.solve.substitution import Solution, solve
+from quillshaft.solve.precise import put, solve_at
+from quillshaft.solve.substitution import Solution
 
 SHIFT = 3e-15  # relative distance of the shift from the mode in ω²
 ATTEMPTS = 12
@@ -30,18 +30,14 @@ def refine(network: Network, plan: Plan, momentum: Floats, omega2: Floats) -> So
     gives finite angles.
     """
     shift = SHIFT
-    solution = solve(eliminate(network, plan, omega2 * (1 + shift)), momentum)
+    solution = solve_at(network, plan, omega2 * (1 + shift), momentum)
     for _ in range(ATTEMPTS):
         finite = _finite(solution)
         if finite.all():
             return solution
         shift *= 2
         again = np.flatnonzero(~finite)
-        redone = solve(eliminate(network, plan, omega2[again] * (1 + shift)), momentum[:, again])
-        solution.angle[:, again] = redone.angle
-        solution.spring_twist[:, again] = redone.spring_twist
-        solution.tie_twist[:, again] = redone.tie_twist
-        solution.link_torque[:, again] = redone.link_torque
+        put(solution, again, solve_at(network, plan, omega2[again] * (1 + shift), momentum[:, again]))
     raise ArithmeticError(f"no finite shape near ω² = {omega2[~finite]}")
 
 
@@ -93,10 +89,9 @@ def refine_group(network: Network, plan: Plan, momentum: Floats, omega2: Floats)
     """
     spread = omega2[-1] / omega2[0] - 1.0
     shift = np.full(len(omega2), omega2.mean() * (1 + GROUP_SPREADS * spread + GROUP_SHIFT))
-    elimination = eliminate(network, plan, shift)
-    solution = _orthonormal(network, solve(elimination, momentum))
-    solution = solve(elimination, network.inertia_kgm2[:, None] * solution.angle)
-    solution = _orthonormal(network, solution)
+    solution = _orthonormal(network, solve_at(network, plan, shift, momentum))
+    again = network.inertia_kgm2[:, None] * solution.angle
+    solution = _orthonormal(network, solve_at(network, plan, shift, again))
     strain = strain_rows(network, solution)
     ritz, vectors = np.linalg.eigh(strain.T @ strain)
     solution = combine(solution, vectors)

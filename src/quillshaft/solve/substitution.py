@@ -135,7 +135,7 @@ def _cut(values: ElementValues, cut: slice) -> ElementValues:
 
 
 def _solution(plan: Plan, tie_node: Ints, x: Numbers, twist: Numbers) -> Solution:
-    signs = np.array(plan.spring_sign, dtype=float)
+    signs = np.array(plan.spring_sign, dtype=np.intp)
     spring_twist = np.zeros((len(signs), x.shape[1]), dtype=x.dtype)
     if len(signs):
         joined = list(plan.spring_pair)
@@ -180,7 +180,7 @@ def _from_group(groups: list[int], group: int, record: CoreRecord, x: Numbers, t
         return sum(weights[position] * x[step.neighbours[position]] for position in members)
     first = members[0]
     excess = record.excess[group]
-    total: Value = 0.0 if excess is None else -excess * x[step.neighbours[first]]
+    total: Value = 0 if excess is None else -excess * x[step.neighbours[first]]
     for a, b, pair in step.fill:
         if a == first and groups[b] == group:
             total = total - weights[b] * twist[pair]

@@ -59,9 +59,7 @@ def _given(excitation: Excitation, graph: TorsionalGraph, findings: Findings) ->
         station = graph.link(excitation.at).stations[0]
         action = Action("link", link=excitation.at)
     if excitation.order and graph.speed_ratio[station] == 0:
-        findings.add(
-            ("excitations", excitation.name, "order"), "an order needs a station that turns", excitation.at
-        )
+        findings.add(("excitations", excitation.name, "order"), "an order needs a station that turns", excitation.at)
     torque = None
     if excitation.torque_share is not None:
         torque = f"{excitation.torque_share * 100:.3g} % of mean torque"

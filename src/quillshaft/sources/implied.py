@@ -70,9 +70,7 @@ def gear_sources(train: Train, graph: TorsionalGraph) -> Iterator[Source]:
             station = graph.number(gear.between[0])
             if graph.speed_ratio[station] != 0:
                 labels = ("mesh", "gear")
-                yield _source(
-                    graph, f"{gear.name} mesh", labels, station, gear.teeth[0], action=action, at=gear.name
-                )
+                yield _source(graph, f"{gear.name} mesh", labels, station, gear.teeth[0], action=action, at=gear.name)
         else:
             yield from _stage_sources(gear, graph, action)
 
@@ -157,9 +155,7 @@ def _engine_sources(machine: Machine, graph: TorsionalGraph, findings: Findings)
         )
 
 
-def _check_supply(
-    machine: Machine, station: int, train: Train, graph: TorsionalGraph, findings: Findings
-) -> None:
+def _check_supply(machine: Machine, station: int, train: Train, graph: TorsionalGraph, findings: Findings) -> None:
     """A machine on a fixed supply runs near its synchronous speed, and only there."""
     if machine.supply_hz is None or machine.poles is None or machine.kind == "converter-fed-motor":
         return
@@ -174,9 +170,7 @@ def _check_supply(
         )
         findings.add(("machines", machine.name, "poles"), message, machine.poles, "poles and supply that fit")
         return
-    low, high = (
-        edge * ratio for edge in (train.operation.ranges_rad_s[0][0], train.operation.ranges_rad_s[-1][1])
-    )
+    low, high = (edge * ratio for edge in (train.operation.ranges_rad_s[0][0], train.operation.ranges_rad_s[-1][1]))
     band = train.operation.speed_band
     if low < min(rated, synchronous) * (1 - band) * 0.9999 or high > synchronous * (1 + band) * 1.0001:
         message = (

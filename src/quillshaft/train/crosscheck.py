@@ -69,17 +69,13 @@ def _gears(findings: Findings, rows: Rows) -> None:
         if measure == "mesh_stiffness_per_face" and row.face is None:
             findings.add(path, "mesh-stiffness per unit face needs the face width", None, 'face = "200 mm"')
         if measure in ("mesh_stiffness_per_face", "linear_stiffness") and row.module is None:
-            findings.add(
-                path, "this mesh-stiffness needs the base radius", None, 'module = "6 mm" (normal module)'
-            )
+            findings.add(path, "this mesh-stiffness needs the base radius", None, 'module = "6 mm" (normal module)')
         if row.internal and row.teeth[0] == row.teeth[1]:
             findings.add((*path, "teeth"), "an internal mesh has unequal tooth numbers", row.teeth)
         for key, most in (("helix", 1.05), ("pressure_angle", 0.7)):
             value = getattr(row, key)
             if value is not None and value >= most:
-                findings.add(
-                    (*path, key.replace("_", "-")), f"{value * 57.29578:.0f}° is no gear", None, "degrees"
-                )
+                findings.add((*path, key.replace("_", "-")), f"{value * 57.29578:.0f}° is no gear", None, "degrees")
 
 
 def _machines(findings: Findings, rows: Rows) -> None:
@@ -97,9 +93,7 @@ def _machines(findings: Findings, rows: Rows) -> None:
     for name, row in rows.keyed["excitations"].items():
         if row.at not in places:
             hint = did_you_mean(row.at, sorted(places))
-            findings.add(
-                ("excitations", name, "at"), f"there is no station or link of this name{hint}", row.at
-            )
+            findings.add(("excitations", name, "at"), f"there is no station or link of this name{hint}", row.at)
 
 
 def _operation(findings: Findings, rows: Rows) -> None:
@@ -124,9 +118,7 @@ def _materials(findings: Findings, rows: Rows) -> None:
             path = ("shafts", name, "material")
             findings.add(path, f"there is no material of this name{hint}", row.material, ", ".join(known))
         if row.material is not None and (row.stiffness is not None or row.flexibility is not None):
-            findings.add(
-                ("shafts", name, "material"), "a stiffness as given does not use a material", row.material
-            )
+            findings.add(("shafts", name, "material"), "a stiffness as given does not use a material", row.material)
 
 
 def _dismissals(findings: Findings, rows: Rows, cases: tuple[str, ...]) -> None:
@@ -134,9 +126,7 @@ def _dismissals(findings: Findings, rows: Rows, cases: tuple[str, ...]) -> None:
         for index, case in enumerate(row.cases):
             if case not in cases:
                 hint = did_you_mean(case, cases)
-                findings.add(
-                    ("dismissals", name, "cases", index), f"there is no case of this name{hint}", case
-                )
+                findings.add(("dismissals", name, "cases", index), f"there is no case of this name{hint}", case)
 
 
 def crosscheck(findings: Findings, rows: Rows, cases: tuple[str, ...]) -> None:
@@ -167,9 +157,7 @@ def read_power(
         if name == "law":
             continue
         _station(findings, rows, ("power", name), name)
-        stations[name] = (
-            None if value == BALANCE else _read(value, "power", system, ("power", name), findings)
-        )
+        stations[name] = None if value == BALANCE else _read(value, "power", system, ("power", name), findings)
     return stations, _read_law(data.get("law"), system, findings)
 
 
@@ -208,7 +196,5 @@ def read_off(data: Any, findings: Findings) -> dict[str, str]:
         return {}
     for name, reason in data.items():
         if not isinstance(reason, str) or len(reason.strip()) < 3:
-            findings.add(
-                ("excitations-off", name), "a source is switched off with a reason", reason, "a sentence"
-            )
+            findings.add(("excitations-off", name), "a source is switched off with a reason", reason, "a sentence")
     return {name: str(reason) for name, reason in data.items()}

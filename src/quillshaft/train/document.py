@@ -49,9 +49,7 @@ def read_document(path: str | Path) -> Document:
         text = raw.decode("utf-8-sig")
     except UnicodeDecodeError as error:
         line = raw.count(b"\n", 0, error.start) + 1
-        message = (
-            f"byte 0x{raw[error.start]:02x} is not UTF-8: the file is binary, or saved in another encoding"
-        )
+        message = f"byte 0x{raw[error.start]:02x} is not UTF-8: the file is binary, or saved in another encoding"
         raise _failure(name, line, message, "UTF-8 text") from None
     return parse_document(text, name)
 
@@ -259,9 +257,7 @@ class _Slip:
     allowed: str
 
 
-_ONE_LINE = (
-    "an inline table on one line; a longer element takes its own header, such as [shafts.pinion-shaft]"
-)
+_ONE_LINE = "an inline table on one line; a longer element takes its own header, such as [shafts.pinion-shaft]"
 _QUOTES = 'text, and a number with its unit, in quotes, such as "19.6 kg m^2"'
 _ENTRY = "key = value"
 _END = r"\s*(?:#.*)?$"

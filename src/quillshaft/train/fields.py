@@ -73,9 +73,7 @@ class MeasuredPair:
         if not isinstance(value, list) and self.alone:
             value = [value, value]
         if not isinstance(value, list) or len(value) != 2:
-            raise complain(
-                "one value or a list of two is wanted" if self.alone else "a list of two is wanted"
-            )
+            raise complain("one value or a list of two is wanted" if self.alone else "a list of two is wanted")
         return self.item.read(value[0], info), self.item.read(value[1], info)
 
     def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
@@ -128,9 +126,7 @@ class Separation:
         shares = {str(kind): quantity_of(share, "share", info) for kind, share in table.items()}
         for kind, share in shares.items():
             if not 0 <= share < 1:
-                raise complain(
-                    f"{kind}: a separation of {share:.0%} is out of range", "0 % up to below 100 %"
-                )
+                raise complain(f"{kind}: a separation of {share:.0%} is out of range", "0 % up to below 100 %")
         return shares
 
     def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
@@ -176,9 +172,7 @@ class SpeedRanges:
             raise complain(f"{pair!r} is not a range", 'two speeds, for example ["900 rpm", "1487 rpm"]')
         low, high = (quantity_of(end, "speed", info) for end in pair)
         if not 0 < low < high:
-            raise complain(
-                f"the range {pair[0]!r} to {pair[1]!r} does not rise", "the lower speed first, above 0"
-            )
+            raise complain(f"the range {pair[0]!r} to {pair[1]!r} does not rise", "the lower speed first, above 0")
         return low, high
 
     def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
@@ -230,9 +224,7 @@ Modulus = Annotated[float, Measured("modulus")]
 Density = Annotated[float, Measured("density")]
 Stress = Annotated[float, Measured("stress")]
 Share = Annotated[float, Measured("share", closed=True)]
-MeshStiffness = Annotated[
-    tuple[str, float], AnyMeasure(("mesh_stiffness_per_face", "linear_stiffness", "stiffness"))
-]
+MeshStiffness = Annotated[tuple[str, float], AnyMeasure(("mesh_stiffness_per_face", "linear_stiffness", "stiffness"))]
 ExcitationTorque = Annotated[tuple[str, float], AnyMeasure(("share", "torque"))]
 Ratio = Annotated[float, Field(gt=0, le=50, strict=True, allow_inf_nan=False)]
 Diameters = Annotated[tuple[float, float], MeasuredPair(Measured("length"))]

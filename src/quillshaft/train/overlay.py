@@ -8,9 +8,7 @@ from typing import Any
 from quillshaft.train.document import Document, line_of
 from quillshaft.train.problems import Problem, TrainFileError, did_you_mean
 
-PLAIN_TABLES = frozenset(
-    ("train", "operation", "power", "excitations-off", "criteria", "assumptions", "sign-off")
-)
+PLAIN_TABLES = frozenset(("train", "operation", "power", "excitations-off", "criteria", "assumptions", "sign-off"))
 KEYED_TABLES = frozenset(
     ("stations", "shafts", "couplings", "gears", "ties", "machines", "excitations", "dismissals", "materials")
 )
@@ -68,9 +66,7 @@ def _case_problems(document: Document, name: str, case: Any, base: Data) -> list
                 out.append(problem((*path, table), repr(rows), "because is a sentence", "a string"))
         elif table not in PLAIN_TABLES | KEYED_TABLES:
             hint = did_you_mean(table, sorted(PLAIN_TABLES | KEYED_TABLES))
-            out.append(
-                problem((*path, table), None, f"a case cannot change a table of this name{hint}", None)
-            )
+            out.append(problem((*path, table), None, f"a case cannot change a table of this name{hint}", None))
         elif table in KEYED_TABLES and isinstance(rows, dict):
             out += [
                 problem((*path, table, element), None, f"there is no {element} to leave out", None)
@@ -92,9 +88,7 @@ def lay_cases(document: Document, names: tuple[str, ...]) -> Data:
             where: PathParts = ("cases", name)
             allowed = ", ".join(known) or "this file has no cases"
             message = f"there is no case {name!r}{did_you_mean(name, known)}"
-            raise TrainFileError(
-                (Problem(document.name, line_of(document, where), where, None, message, allowed),)
-            )
+            raise TrainFileError((Problem(document.name, line_of(document, where), where, None, message, allowed),))
         case = data["cases"][name]
         problems = _case_problems(document, name, case, data)
         if problems:

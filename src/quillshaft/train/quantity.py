@@ -154,9 +154,7 @@ _PREFIXES = {"k": "kilo", "M": "mega", "G": "giga", "da": "deca", "c": "centi", 
 _PREFIXED = {"m", "g", "N", "W", "Pa", "rad", "s", "Hz", "bar", "psi", "lbf"}
 _OFTEN = ("Nm", "kNm", "MNm", "mm", "um", "kg", "kN", "MN", "kW", "MW", "MPa", "GPa", "kgm", "Mpsi", "ftlb")
 
-_NUMBER = re.compile(
-    r"([+\-−]?)\s*((?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][+\-−]?[0-9]+)?)\s*(.*)", re.DOTALL
-)
+_NUMBER = re.compile(r"([+\-−]?)\s*((?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][+\-−]?[0-9]+)?)\s*(.*)", re.DOTALL)
 _FACTOR = re.compile(r'([A-Za-zμ°%"]+)(?:\^\(?([+-]?[0-9])\)?|(-?[0-9]))?')
 _GLUED = re.compile(r"(da|[kMGm])?(N|kgf?|kp|lb[fm]?|slug)(mm|cm|m|ft|in)(s)?|(ft|in)(lbf?)")
 _TIMES = re.compile(r"\s*(?:[·*×]|[.\-](?![0-9]))\s*|\s+")
@@ -315,9 +313,7 @@ def _read(number: Fraction, unit: str, spec: Measure, system: str) -> Reading:
 def _to_si(number: Fraction, unit: str, spec: Measure) -> tuple[Fraction, str | None]:
     units = _parse(unit)
     if units == (("minute", -1),):
-        raise _RefusalError(
-            f'"{unit}" does not say what is counted: write rpm for a speed, cpm for a frequency'
-        )
+        raise _RefusalError(f'"{unit}" does not say what is counted: write rpm for a speed, cpm for a frequency')
     fitted = _fit(units, spec)
     if fitted is None:
         raise _RefusalError(_mismatch(unit, units, spec))
@@ -414,17 +410,13 @@ def _product(part: str, text: str, *, grouped: bool) -> list[tuple[str, int]]:
         inner, grouped = inner[1:-1].strip(), True
     pieces = _TIMES.split(inner)
     if len(pieces) > 1 and not grouped:
-        raise _RefusalError(
-            f'"{text}" can be read in two ways: put what divides in parentheses, as N/(mm um)'
-        )
+        raise _RefusalError(f'"{text}" can be read in two ways: put what divides in parentheses, as N/(mm um)')
     units: list[tuple[str, int]] = []
     for piece in pieces:
         match = _FACTOR.fullmatch(piece)
         if match is None:
             number = re.fullmatch(r"[-+]?[0-9.]+", piece)
-            raise _RefusalError(
-                "two numbers: write one decimal number" if number else f'cannot read "{text}"'
-            )
+            raise _RefusalError("two numbers: write one decimal number" if number else f'cannot read "{text}"')
         *front, last = _names(match[1])
         units += [(name, 1) for name in front] + [(last, int(match[2] or match[3] or 1))]
     return units

@@ -108,9 +108,7 @@ def _operation(rows: Rows, said: Assumptions) -> Operation:
     row = rows.plain["operation"]
     speed_words = "no range is given: judged at rated speed and this band about it"
     speed_band = _band(row.speed_band, "speed-band", speed_words, row.range is None, said)
-    supplied = any(
-        getattr(machine, "supply", None) is not None for machine in rows.keyed["machines"].values()
-    )
+    supplied = any(getattr(machine, "supply", None) is not None for machine in rows.keyed["machines"].values())
     supply_band = _band(row.supply_band, "supply-band", "variation of the supply frequency", supplied, said)
     ranges = row.range or ((row.rated * (1 - speed_band), row.rated * (1 + speed_band)),)
     return Operation(

@@ -130,9 +130,7 @@ def shafts(rows: Rows, said: Assumptions) -> tuple[Shaft, ...]:
         own_inertia = row.own_inertia or settings.own_inertia
         if row.pieces is not None and own_inertia is None:
             own_inertia = "ends"
-            said.add(
-                element, "own-inertia", "ends", "default for shafts given by pieces: lumped at both ends"
-            )
+            said.add(element, "own-inertia", "ends", "default for shafts given by pieces: lumped at both ends")
         out.append(
             Shaft(
                 name,

@@ -207,9 +207,7 @@ class EpicyclicTeethRow(Row):
         if self.ring <= self.sun:
             raise complain(f"the ring ({self.ring} teeth) must have more teeth than the sun ({self.sun})")
         if self.planet is not None and abs(self.sun + 2 * self.planet - self.ring) > 2:
-            raise complain(
-                f"sun + 2 · planet should equal ring: {self.sun} + 2 · {self.planet} ≠ {self.ring}"
-            )
+            raise complain(f"sun + 2 · planet should equal ring: {self.sun} + 2 · {self.planet} ≠ {self.ring}")
         return self
 
 

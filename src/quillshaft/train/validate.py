@@ -82,9 +82,7 @@ def shown(value: Any) -> str:
     elif isinstance(value, dict):
         text = "{ " + ", ".join(f"{key} = …" for key in list(value)[:4]) + " }"
     else:
-        text = (
-            str(value) if not isinstance(value, int) or abs(value) < 10**30 else "a number of over 30 digits"
-        )
+        text = str(value) if not isinstance(value, int) or abs(value) < 10**30 else "a number of over 30 digits"
     return text if len(text) <= 80 else text[:77] + "…"
 
 
@@ -164,9 +162,7 @@ def validate(data: dict[str, Any], findings: Findings) -> Rows:
             findings.add((table,), f"there is no table of this name{did_you_mean(table, TOP_LEVEL)}", None)
     schema = data.get("schema")
     if schema != 1 or isinstance(schema, bool):
-        findings.add(
-            ("schema",), "is missing" if schema is None else "is not a schema this version reads", schema, "1"
-        )
+        findings.add(("schema",), "is missing" if schema is None else "is not a schema this version reads", schema, "1")
     train = data.get("train")
     units = train.get("units") if isinstance(train, dict) else None
     system = units if units in ("SI", "US") else "SI"
@@ -175,17 +171,13 @@ def validate(data: dict[str, Any], findings: Findings) -> Rows:
         if table not in data and table in ("train", "operation"):
             findings.add((table,), "this table is missing", None, f"[{table}] with {_needed(row_class)}")
             continue
-        plain[table] = _validate(
-            row_class, data.get(table, {}), (table,), findings, {"system": system, "notes": []}
-        )
+        plain[table] = _validate(row_class, data.get(table, {}), (table,), findings, {"system": system, "notes": []})
     keyed: dict[str, dict[str, Any]] = {}
     notes: list[tuple[str, str, str]] = []
     for table in sorted(KEYED_TABLES):
         keyed[table], said = _keyed_table(table, data.get(table, {}), system, findings)
         notes += said
-    declared = {
-        table: tuple(data[table]) if isinstance(data.get(table), dict) else () for table in KEYED_TABLES
-    }
+    declared = {table: tuple(data[table]) if isinstance(data.get(table), dict) else () for table in KEYED_TABLES}
     return Rows(keyed, plain, declared, tuple(notes))
 
 

@@ -105,9 +105,7 @@ def write_figure_pdf(figure: Figure, path_or_stream: str | Path | BinaryIO, titl
     """
     fonts.register_fonts()
     buffer = io.BytesIO()
-    canvas = Canvas(
-        buffer, pagesize=figure_size_pt(figure), invariant=1, pageCompression=1, initialFontName=fonts.SANS
-    )
+    canvas = Canvas(buffer, pagesize=figure_size_pt(figure), invariant=1, pageCompression=1, initialFontName=fonts.SANS)
     canvas.setTitle(one_line(title))
     canvas.setAuthor("")
     canvas.setSubject("")

@@ -41,9 +41,7 @@ def hatch_lines(pattern: str, box: Box) -> list[Segment]:
     families: Counter[int] = Counter()
     for symbol in pattern:
         families.update(_DIRECTIONS_DEG.get(symbol, ()))
-    return [
-        line for angle, count in families.items() for line in _family(angle, LINE_SPACING_PT / count, box)
-    ]
+    return [line for angle, count in families.items() for line in _family(angle, LINE_SPACING_PT / count, box)]
 
 
 def _family(angle_deg: int, spacing: float, box: Box) -> Iterator[Segment]:

@@ -33,7 +33,7 @@ def _greatest_height(text: str, style: ParagraphStyle, width_pt: float) -> float
 
 
 def _windows(text: str, style: ParagraphStyle, width_pt: float) -> Iterator[str]:
-    """Stretches of about 200 lines each: the time to split a paragraph grows with the square of its length."""
+    """Stretches of about 200 lines each, since splitting a paragraph takes time quadratic in its length."""
     length = int(_WINDOW_LINES * max(1.0, width_pt / (_USUAL_CHARACTER_EM * style.fontSize)))
     start = 0
     while start < len(text):

@@ -72,9 +72,7 @@ class CanvasRenderer(RendererBase):
         """Ordinates grow upward."""
         return False
 
-    def get_text_width_height_descent(
-        self, s: str, prop: FontProperties, ismath: Any
-    ) -> tuple[float, float, float]:
+    def get_text_width_height_descent(self, s: str, prop: FontProperties, ismath: Any) -> tuple[float, float, float]:
         """Width, height and depth below the baseline, in points, in the font that will be drawn."""
         font, size = font_for(prop), prop.get_size_in_points()
         width = fonts.text_width_pt(self._label(s, font, ismath), font, size)
@@ -104,14 +102,10 @@ class CanvasRenderer(RendererBase):
             self.canvas.setFont(font, round(size, 3))
             self.canvas.drawString(0, 0, self._label(s, font, ismath))
 
-    def draw_path(
-        self, gc: GraphicsContextBase, path: Path, transform: Transform, rgbFace: Any = None
-    ) -> None:
+    def draw_path(self, gc: GraphicsContextBase, path: Path, transform: Transform, rgbFace: Any = None) -> None:
         """Stroke, fill and hatch one path. `rgbFace` is None or a colour of three or four parts."""
         window = None if rgbFace is not None or gc.get_hatch() else (0.0, 0.0, self.width, self.height)
-        segments = list(
-            path.iter_segments(transform, clip=window, simplify=path.should_simplify and rgbFace is None)
-        )
+        segments = list(path.iter_segments(transform, clip=window, simplify=path.should_simplify and rgbFace is None))
         if not segments:
             return
         face = None if rgbFace is None else _rgba(rgbFace, gc)
@@ -129,9 +123,7 @@ class CanvasRenderer(RendererBase):
             if stroked:
                 self._set_stroke(gc, edge)
             if filled or stroked:
-                self.canvas.drawPath(
-                    self._trace(segments), stroke=int(stroked), fill=int(filled), fillMode=_NONZERO
-                )
+                self.canvas.drawPath(self._trace(segments), stroke=int(stroked), fill=int(filled), fillMode=_NONZERO)
 
     def draw_image(self, gc: Any, x: float, y: float, im: Any, transform: Any = None) -> None:
         """Refuse rasters. Raises NotImplementedError always."""

@@ -98,9 +98,7 @@ def _head_row(head: Sequence[str], align: str, widths: Sequence[float]) -> list[
 
 def _body_rows(row: Sequence[Cell], align: str, widths: Sequence[float], bold: bool) -> list[list[Any]]:
     wrapped = styles().bold_cells if bold else styles().cells
-    columns = [
-        _cell_pieces(cell, wrapped[side], width) for cell, side, width in zip(row, align, widths, strict=True)
-    ]
+    columns = [_cell_pieces(cell, wrapped[side], width) for cell, side, width in zip(row, align, widths, strict=True)]
     count = max(len(pieces) for pieces in columns)
     return [[pieces[i] if i < len(pieces) else "" for pieces in columns] for i in range(count)]
 

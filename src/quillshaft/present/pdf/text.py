@@ -6,6 +6,7 @@ Right-to-left scripts are drawn in reading order of the file, without reordering
 from __future__ import annotations
 
 import unicodedata
+from bisect import bisect_right
 from xml.sax.saxutils import escape
 
 from quillshaft.present.pdf.fonts import MONO, SANS, drawable_codes, text_width_pt
@@ -57,10 +58,10 @@ def fitted(text: str, font: str, size_pt: float, width_pt: float) -> str:
     line = one_line(text, font)
     if text_width_pt(line, font, size_pt) <= width_pt:
         return line
-    line = line[:1000]
-    while line and text_width_pt(line + "…", font, size_pt) > width_pt:
-        line = line[:-1]
-    return line.rstrip() + "…"
+    fits = bisect_right(
+        range(len(line)), width_pt, key=lambda length: text_width_pt(line[:length] + "…", font, size_pt)
+    )
+    return line[: max(fits - 1, 0)].rstrip() + "…"
 
 
 def source_line(line: str) -> str:

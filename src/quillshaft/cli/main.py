@@ -1,0 +1,155 @@
+"""The command line: parse, call, print."""
+
+from __future__ import annotations
+
+import sys
+from pathlib import Path
+from typing import Annotated
+
+import typer
+
+from quillshaft.cli.output import check_target, console, refuse, write_many, write_whole
+
+app = typer.Typer(
+    help="Torsional analysis of drivetrains, from the train file to a report ready for sign-off.",
+    no_args_is_help=True,
+    add_completion=False,
+    pretty_exceptions_enable=False,
+)
+
+TrainPath = Annotated[Path, typer.Argument(help="The train file (TOML).", show_default=False)]
+Cases = Annotated[
+    list[str] | None,
+    typer.Option("--case", metavar="NAME", help="Lay this case over the file; several are laid in turn."),
+]
+JsonPath = Annotated[
+    str | None,
+    typer.Option("--json", metavar="PATH", help="Write the numbers as JSON; - is standard output."),
+]
+
+
+@app.callback(invoke_without_command=True)
+def main(
+    context: typer.Context,
+    version: Annotated[bool, typer.Option("--version", help="Print the version.")] = False,
+) -> None:
+    """Torsional analysis of drivetrains, from the train file to a report ready for sign-off."""
+    if version:
+        from quillshaft import __version__
+
+        typer.echo(f"quillshaft {__version__}")
+        raise typer.Exit
+    if context.invoked_subcommand is None:
+        typer.echo(context.get_help())
+        raise typer.Exit
+
+
+@app.command()
+def new(
+    out: Annotated[Path, typer.Argument(help="The train file to write.", show_default=False)],
+    kind: Annotated[str, typer.Option(help="pump | generator-set | fan")] = "pump",
+    schema: Annotated[
+        Path | None,
+        typer.Option(metavar="PATH", help="Also write the JSON schema, for editors that complete it."),
+    ] = None,
+    force: Annotated[bool, typer.Option(help="Replace an existing file.")] = False,
+) -> None:
+    """Write a commented train file that screens as it stands."""
+    from quillshaft.train.problems import did_you_mean
+    from quillshaft.train.starters import KINDS, schema_text, starter_text
+
+    if kind not in KINDS:
+        refuse(f"--kind {kind}: there is no such kind{did_you_mean(kind, KINDS)}. Allowed: {' | '.join(KINDS)}")
+    for target in (out, schema):
+        if target is not None:
+            check_target(target)
+            if target.exists() and not force:
+                refuse(f"{target}: exists already; --force replaces it")
+    write_whole(out, starter_text(kind).encode())
+    if schema is not None:
+        write_whole(schema, schema_text().encode())
+    console().print(f"Wrote {out}. Next: quillshaft check {out}")
+
+
+@app.command()
+def check(train: TrainPath, case: Cases = None) -> None:
+    """Show what the file says: the equivalent system, mean torques, sources, what was assumed, what is odd."""
+    from quillshaft.cli.show import show_check
+    from quillshaft.cli.work import check_all_cases, screened
+
+    screening = screened(train, case)
+    if not case:
+        check_all_cases(train)
+    show_check(screening, console())
+
+
+@app.command()
+def screen(
+    train: TrainPath,
+    case: Cases = None,
+    json: JsonPath = None,
+    charts: Annotated[Path | None, typer.Option(metavar="DIR", help="Write the charts as PDF files.")] = None,
+    every: Annotated[bool, typer.Option("--all", help="Show every pair of mode and source.")] = False,
+    strict: Annotated[bool, typer.Option(help="Exit with 3 when the worst case is not clear.")] = False,
+) -> None:
+    """Natural frequencies, margins, critical speeds and verdicts."""
+    from quillshaft.cli.show import show_screening
+    from quillshaft.cli.work import chart_makers, put_json, screened
+
+    if json not in (None, "-"):
+        check_target(Path(json or ""))
+    screening = screened(train, case)
+    if json != "-":
+        show_screening(screening, console(), every)
+    if charts is not None:
+        for path in write_many(charts, chart_makers(screening)):
+            console(quiet=json == "-").print(f"Wrote {path}")
+    if json is not None:
+        put_json(screening, json)
+    if strict and screening.worst_verdict != "clear":
+        raise typer.Exit(3)
+
+
+@app.command()
+def report(
+    train: TrainPath,
+    case: Cases = None,
+    out: Annotated[
+        Path | None,
+        typer.Option(metavar="FILE.pdf", help="Default: reports/, named after document and revision."),
+    ] = None,
+    json: JsonPath = None,
+    strict: Annotated[bool, typer.Option(help="Exit with 3 when the worst case is not clear.")] = False,
+) -> None:
+    """Write the report as PDF."""
+    from quillshaft.cli.work import put_json, report_bytes, report_path, screened
+
+    screening = screened(train, case)
+    target = out or report_path(screening)
+    check_target(target)
+    if json not in (None, "-"):
+        check_target(Path(json or ""))
+    write_whole(target, report_bytes(screening))
+    if json is not None:
+        put_json(screening, json)
+    from quillshaft.present.words import verdict_sentence
+
+    said = console(quiet=json == "-")
+    said.print(f"Nominal: {verdict_sentence(screening, worst=False)}")
+    said.print(f"Over the tolerances: {verdict_sentence(screening, worst=True)}")
+    said.print(f"Wrote {target}")
+    if strict and screening.worst_verdict != "clear":
+        raise typer.Exit(3)
+
+
+def run() -> None:
+    """Entry point of the command; a closed pipe ends it quietly."""
+    try:
+        app()
+    except BrokenPipeError:
+        sys.stderr.close()
+        raise SystemExit(1) from None
+
+
+if __name__ == "__main__":
+    run()

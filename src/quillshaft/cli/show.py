@@ -1,0 +1,60 @@
+"""What the commands print."""
+
+from __future__ import annotations
+
+from rich.console import Console
+
+from quillshaft.assess.results import Screening
+from quillshaft.present import tables
+from quillshaft.present.words import range_words, verdict_sentence
+
+
+def _head(screening: Screening, out: Console) -> None:
+    train = screening.train
+    tag = f" ({train.tag})" if train.tag else ""
+    case = f", case {' + '.join(train.cases)}" if train.cases else ""
+    out.print(f"{train.title}{tag}{case}", style="bold")
+    out.print(f"Judged range: {range_words(screening)}")
+
+
+def show_screening(screening: Screening, out: Console, every: bool) -> None:
+    """What is not clear, worst first; then the natural frequencies; every pair where asked."""
+    _head(screening, out)
+    out.print(f"Nominal:             {verdict_sentence(screening, worst=False)}")
+    out.print(f"Over the tolerances: {verdict_sentence(screening, worst=True)}")
+    out.print()
+    attention = tables.attention_lines(screening)
+    out.print("Not clear, worst first" if attention else "Nothing is unclear.", style="bold")
+    for line in attention:
+        out.print(line)
+    for item in screening.stale_dismissals:
+        out.print(f"Dismissal {item.dismissal.name} was not applied: {item.why}.")
+    out.print()
+    out.print(tables.modes_table(screening))
+    beyond = len(screening.modes) - len(screening.judged_modes)
+    if beyond:
+        out.print(f"{beyond} modes above the highest source are listed and not judged.")
+    if every:
+        out.print()
+        out.print(tables.matrix_table(screening))
+    out.print()
+    check = screening.self_check
+    proven = "all proven by counting" if check.all_proven else "NOT all proven"
+    out.print(
+        f"{check.modes} modes, {proven}; {len(screening.assumed)} values assumed, "
+        f"{len(screening.flags)} questions about the data (see `quillshaft check`)."
+    )
+    if not every:
+        out.print("The full matrix of pairs: --all.")
+
+
+def show_check(screening: Screening, out: Console) -> None:
+    """The equivalent system, actual and referred; sources; assumptions; what is odd."""
+    _head(screening, out)
+    for table in (tables.stations_table, tables.links_table, tables.sources_table, tables.assumed_table):
+        out.print()
+        out.print(table(screening))
+    out.print()
+    out.print(f"Questions about the data ({len(screening.flags)})", style="bold")
+    for flag in screening.flags:
+        out.print(f"- {flag.element}: {flag.text}")

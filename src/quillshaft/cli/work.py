@@ -1,0 +1,80 @@
+"""Calls that several commands share, with problems of the input turned into lines and exit code 2."""
+
+from __future__ import annotations
+
+import re
+import sys
+from collections.abc import Callable
+from pathlib import Path
+
+from quillshaft.assess.results import Screening
+from quillshaft.assess.screening import screen
+from quillshaft.cli.output import refuse, write_whole
+from quillshaft.train.document import read_document
+from quillshaft.train.overlay import case_names
+from quillshaft.train.problems import TrainFileError
+from quillshaft.train.read import load, train_of
+
+
+def screened(path: Path, cases: list[str] | None) -> Screening:
+    """Load and screen; leaves with exit code 2 and every problem on standard error when the file is bad."""
+    try:
+        return screen(load(path, tuple(cases or ())))
+    except TrainFileError as error:
+        refuse(str(error))
+
+
+def check_all_cases(path: Path) -> None:
+    """Read and screen every case of the file too; leaves with exit code 2 where one is bad."""
+    document = read_document(path)
+    problems: list[str] = []
+    for name in case_names(document.data):
+        try:
+            screen(train_of(document, (name,)))
+        except TrainFileError as error:
+            problems.append(f"In case {name}:\n{error}")
+    if problems:
+        refuse("\n".join(problems))
+
+
+def put_json(screening: Screening, target: str) -> None:
+    """Write the numbers to a file, or to standard output for "-"."""
+    from quillshaft.present.results_json import screening_json
+
+    text = screening_json(screening)
+    if target == "-":
+        sys.stdout.write(text)
+    else:
+        write_whole(Path(target), text.encode())
+
+
+def report_bytes(screening: Screening) -> bytes:
+    """The report as PDF."""
+    from quillshaft.present.report import report_pdf
+
+    return report_pdf(screening)
+
+
+def chart_makers(screening: Screening) -> dict[str, Callable[[], bytes]]:
+    """File name -> function that makes the chart's PDF."""
+    from quillshaft.present.charts import chart_files
+    from quillshaft.present.pdf.figure import figure_pdf
+
+    def maker(name: str, figure: object) -> Callable[[], bytes]:
+        return lambda: figure_pdf(figure, f"{screening.train.title}: {name}")
+
+    return {name: maker(name, figure) for name, figure in chart_files(screening).items()}
+
+
+def report_path(screening: Screening) -> Path:
+    """reports/ and a name from document or tag, revision and cases."""
+    train = screening.train
+    words = [train.sign_off.document or train.tag or train.title]
+    if train.sign_off.revision:
+        words.append(f"rev {train.sign_off.revision}")
+    words += train.cases
+    name = re.sub(r"[^A-Za-z0-9._-]+", "-", " ".join(words)).strip("-.") or "report"
+    folder = Path("reports")
+    if not folder.exists():
+        folder.mkdir()
+    return folder / f"{name}.pdf"

@@ -1,0 +1,233 @@
+"""The train as a diagram: discs on shafts, one row for each shaft line at its own speed."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from quillshaft.assess.results import Screening
+from quillshaft.present.charts import look, symbols
+from quillshaft.present.charts.blocks import Block, Row, joint_text, row_heights, text_blocks
+from quillshaft.present.charts.lanes import GROUND, Joint, Lanes, take_apart
+from quillshaft.present.charts.phrases import RPM, train_title
+from quillshaft.present.charts.placing import Plan, place
+
+if TYPE_CHECKING:
+    from matplotlib.axes import Axes
+    from matplotlib.figure import Figure
+
+SPEED_MM = 16.0
+WIDEST_PITCH_MM = 26.0
+LETTERS = "ABCDEFGHIJKLMNOPQRSTUVWXYZabcdefghijklmnopqrstuvwxyz"
+
+
+@dataclass(frozen=True)
+class Sheet:
+    """All that the drawing needs: parts, plan, rows, text, and the width of a column [mm]."""
+
+    parts: Lanes
+    plan: Plan
+    rows: list[Row]
+    blocks: list[Block]
+    joint_labels: list[tuple[Joint, list[str], float, str]]
+    pitch_mm: float
+    numbers: bool
+
+    @property
+    def height_mm(self) -> float:
+        """Height of all rows."""
+        last = self.rows[-1]
+        return last.below - last.shaft_y
+
+    def x(self, column: float) -> float:
+        """Abscissa [mm] of a column."""
+        return SPEED_MM + (column + 0.5) * self.pitch_mm
+
+
+def train_diagram(screening: Screening) -> Figure:
+    """The train: stations sized by inertia, shafts, couplings, gears and ties, with numbers where they fit."""
+    for widest, numbers in ((8, True), (9, True), (11, False), (14, False)):
+        sheet = _lay_out(screening, widest, numbers)
+        if sheet.height_mm < look.TALLEST_MM - 25.0:
+            break
+    note_lines = _note_lines(screening, sheet)
+    foot = len(note_lines) * look.line_mm() + 3.0
+    made = look.frame(train_title(screening), sheet.height_mm + foot)
+    axes = look.millimetre_axes(made, 0.0, made.top_mm)
+    for row in sheet.rows:
+        row.shaft_y += made.top_mm
+    _draw(axes, screening, sheet)
+    look.notes(axes, foot - 1.5, note_lines)
+    return made.figure
+
+
+def _lay_out(screening: Screening, widest: int, numbers: bool) -> Sheet:
+    parts = take_apart(screening.graph, widest)
+    plan = place(parts, widest)
+    cut = any(joint.cut for joint in parts.joints)
+    room = look.WIDTH_MM - SPEED_MM
+    pitch = min(WIDEST_PITCH_MM, room / (plan.columns + (0.5 if cut else 0.0)))
+    blocks = text_blocks(screening, parts, plan, pitch, numbers)
+    labels = _joint_labels(screening, plan, pitch)
+    gaps: dict[int, int] = {}
+    for joint, lines, _, _ in labels:
+        row = min(plan.spot(end)[0] for end in joint.ends)
+        gaps[row] = max(gaps.get(row, 0), len(lines))
+    return Sheet(parts, plan, row_heights(plan, blocks, gaps), blocks, labels, pitch, numbers)
+
+
+def _joint_labels(screening: Screening, plan: Plan, pitch: float) -> list[tuple[Joint, list[str], float, str]]:
+    """(joint, lines, offset from its column [mm], alignment): on the side with more room up to the next joint."""
+    labels = []
+    for joint in plan.straight:
+        row, column = min(plan.spot(end) for end in joint.ends)
+        others = sorted(
+            plan.spot(end)[1]
+            for other in plan.straight
+            if other != joint
+            for end in other.ends[:1]
+            if min(plan.spot(e)[0] for e in other.ends) == row
+        )
+        right = next((c for c in others if c > column), None)
+        left = next((c for c in reversed(others) if c < column), None)
+        here = SPEED_MM + (column + 0.5) * pitch
+        room_right = (right - column) * pitch - 4.0 if right is not None else look.WIDTH_MM - here - 2.5
+        room_left = (column - left) * pitch / 2 - 4.0 if left is not None else here - 2.5
+        room_right = room_right if right is None else min(room_right, max(room_right / 2, room_right - 4.0))
+        text = joint_text(screening, joint)
+        if look.width_mm(text) > room_right and room_left > room_right:
+            labels.append((joint, look.wrap(text, room_left), -2.2, "right"))
+        else:
+            labels.append((joint, look.wrap(text, room_right), 2.2, "left"))
+    return labels
+
+
+def _draw(axes: Axes, screening: Screening, sheet: Sheet) -> None:
+    for number in range(len(sheet.parts.lanes)):
+        _draw_lane(axes, screening, sheet, number)
+    for joint in sheet.plan.straight:
+        _draw_joint(axes, screening, sheet, joint)
+    for joint, lines, offset, align in sheet.joint_labels:
+        _write_joint(axes, sheet, joint, lines, offset, align)
+    for joint, name in zip(sheet.plan.lettered, LETTERS * 4, strict=False):
+        _draw_lettered(axes, sheet, joint, name)
+    for block in sheet.blocks:
+        _write_block(axes, sheet, block)
+
+
+def _draw_lane(axes: Axes, screening: Screening, sheet: Sheet, number: int) -> None:
+    graph, lane, placed = screening.graph, sheet.parts.lanes[number], sheet.plan.placed[number]
+    y = sheet.rows[placed.row].shaft_y
+    spots = [(sheet.x(column), y) for column in placed.columns]
+    for k, link in enumerate(lane.links):
+        draw = {"coupling": symbols.coupling, "tie": symbols.spring}.get(graph.links[link].kind, symbols.shaft)
+        draw(axes, spots[k], spots[k + 1])
+    largest = float(max(graph.inertia_kgm2))
+    geared = {s for link in graph.links if link.kind in ("mesh", "epicyclic") for s in link.stations}
+    for bead, spot in zip(lane.beads, spots, strict=True):
+        if bead == GROUND:
+            symbols.ground(axes, spot)
+            continue
+        height = symbols.disc_height(float(graph.inertia_kgm2[bead]), largest)
+        symbols.disc(axes, spot, height, bead in geared)
+    station = next((bead for bead in lane.beads if bead != GROUND), None)
+    if station is not None:
+        left = sheet.x(min(placed.columns)) - sheet.pitch_mm / 2
+        _write_speed(axes, screening, station, (min(left, left - 1.0), y))
+
+
+def _write_speed(axes: Axes, screening: Screening, station: int, at: tuple[float, float]) -> None:
+    ratio = screening.graph.speed_ratio[station]
+    rpm = abs(float(ratio)) * screening.train.operation.rated_rad_s * RPM
+    lines = [f"{rpm:.4g} rpm" if rpm < 1e4 else f"{rpm:.0f} rpm"] if ratio else ["at rest"]
+    if ratio < 0:
+        lines.append("reversed")
+    for index, text in enumerate(lines):
+        y = at[1] + (len(lines) - 1 - 2 * index) * look.line_mm() / 2
+        look.put(axes, at[0], y, text, ha="right", color=look.ACCENT, fontweight="bold" if not index else "normal")
+
+
+def _half_height(screening: Screening, sheet: Sheet, end: tuple[int, int]) -> float:
+    bead = sheet.parts.lanes[end[0]].beads[end[1]]
+    if bead == GROUND:
+        return 0.0
+    inertia = screening.graph.inertia_kgm2
+    return symbols.disc_height(float(inertia[bead]), float(max(inertia))) / 2
+
+
+def _draw_joint(axes: Axes, screening: Screening, sheet: Sheet, joint: Joint) -> None:
+    upper, lower = sorted(joint.ends, key=lambda end: sheet.plan.spot(end)[0])
+    (row, column), (low_row, _) = sheet.plan.spot(upper), sheet.plan.spot(lower)
+    x = sheet.x(column)
+    start = (x, sheet.rows[row].shaft_y - _half_height(screening, sheet, upper))
+    end = (x, sheet.rows[low_row].shaft_y + _half_height(screening, sheet, lower))
+    kinds = {
+        "mesh": symbols.teeth,
+        "epicyclic": symbols.planets,
+        "tie": symbols.spring,
+        "coupling": symbols.coupling,
+        "shaft": symbols.shaft,
+    }
+    kinds[screening.graph.links[joint.link].kind](axes, start, end)
+
+
+def _write_joint(
+    axes: Axes, sheet: Sheet, joint: Joint, lines: list[str], offset: float, align: str
+) -> None:
+    row, column = min(sheet.plan.spot(end) for end in joint.ends)
+    middle = sheet.rows[row].shaft_y - sheet.rows[row].below - sheet.rows[row].gap / 2
+    for index, text in enumerate(lines):
+        y = middle + (len(lines) - 1 - 2 * index) * look.line_mm() / 2
+        look.put(axes, sheet.x(column) + offset, y, text, ha=align, color=look.ACCENT, gid="joint")
+
+
+def _draw_lettered(axes: Axes, sheet: Sheet, joint: Joint, name: str) -> None:
+    for end, outward in zip(joint.ends, (1, -1), strict=True):
+        row, column = sheet.plan.spot(end)
+        x, y = sheet.x(column), sheet.rows[row].shaft_y
+        if not joint.cut:
+            symbols.letter(axes, (x, y), name)
+            continue
+        columns = sheet.plan.placed[end[0]].columns
+        sign = -outward if columns[-1] < columns[0] else outward
+        far = x + sign * min(0.42 * sheet.pitch_mm, 7.0)
+        symbols.shaft(axes, (x, y), (far, y))
+        symbols.letter(axes, (far, y), name)
+
+
+def _write_block(axes: Axes, sheet: Sheet, block: Block) -> None:
+    row = sheet.rows[block.row]
+    reach = symbols.TALLEST_DISC_MM / 2 + 0.8 + (row.near[block.side] if block.far else 0.0)
+    x = sheet.x(block.column)
+    for index, (text, bold) in enumerate(block.lines):
+        if block.side == "below":
+            y = row.shaft_y - reach - (index + 0.5) * look.line_mm()
+        else:
+            y = row.shaft_y + reach + (len(block.lines) - index - 0.5) * look.line_mm()
+        color = look.INK if block.kind == "station" else look.QUIET
+        weight = "bold" if bold else "normal"
+        look.put(axes, x, y, text, color=color, fontweight=weight, gid=block.kind)
+
+
+def _note_lines(screening: Screening, sheet: Sheet) -> list[str]:
+    """How to read the diagram, and what the letters join."""
+    graph = screening.graph
+    text = (
+        "Discs: height as the fourth root of inertia (solid discs of one thickness), dark where they carry teeth. "
+        "Double line: shaft. Crossed box: coupling. Ladder: gear mesh."
+    )
+    if any(link.kind == "tie" for link in graph.links):
+        text += " Zigzag: tie to ground."
+    text += f" Speeds at rated; softest link (bold) as referred to {screening.train.operation.speed_at}."
+    text += " Inertia and stiffness are actual." if sheet.numbers else " Values stand in the data tables."
+    lines = look.wrap(text, look.WIDTH_MM - 2.0)
+    for joint, name in zip(sheet.plan.lettered, LETTERS * 4, strict=False):
+        if not joint.cut:
+            ends = " and ".join(_bead_name(screening, sheet, end) for end in joint.ends)
+            lines += look.wrap(f"{name}: {joint_text(screening, joint)}, joins {ends}.", look.WIDTH_MM - 2.0)
+    return lines
+
+
+def _bead_name(screening: Screening, sheet: Sheet, end: tuple[int, int]) -> str:
+    bead = sheet.parts.lanes[end[0]].beads[end[1]]
+    return "ground" if bead == GROUND else screening.graph.stations[bead]

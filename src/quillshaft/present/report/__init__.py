@@ -1,0 +1,38 @@
+"""The report: a screening as a PDF for sign-off."""
+
+from __future__ import annotations
+
+from quillshaft.assess.results import Screening
+
+
+def report_pdf(screening: Screening) -> bytes:
+    """The report of a screening as PDF bytes; the same input gives the same bytes.
+
+    Dates come from the train file, never from the clock.
+    """
+    from quillshaft.present.pdf.document import PageFrame, build_pdf
+    from quillshaft.present.report.closing import closing_parts
+    from quillshaft.present.report.data import data_parts
+    from quillshaft.present.report.findings import finding_parts
+    from quillshaft.present.report.front import front_parts, report_title
+
+    sign = screening.train.sign_off
+    frame = PageFrame(
+        document=sign.document or screening.train.tag or "",
+        revision=sign.revision or "",
+        status=sign.status,
+        title=report_title(screening),
+        date=sign.date or "",
+        caution=(
+            "Screening of torsional vibration only; no approval by any class society or purchaser. "
+            "Valid only for the parts, data and limits listed. Local codes and site rules come first."
+        ),
+        author=sign.prepared or "",
+    )
+    story = [
+        *front_parts(screening),
+        *data_parts(screening),
+        *finding_parts(screening),
+        *closing_parts(screening),
+    ]
+    return build_pdf(story, frame)

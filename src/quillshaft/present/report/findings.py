@@ -1,0 +1,224 @@
+"""Modes, interference diagram, margins, sources and damping."""
+
+from __future__ import annotations
+
+import math
+from typing import Any
+
+from quillshaft.assess.results import Interference, ModeResult, Screening
+from quillshaft.present.pdf.document import (
+    FigureFlowable,
+    bullets,
+    data_table,
+    heading,
+    note,
+    paragraph,
+)
+from quillshaft.present.rows import pair_row, source_rows
+from quillshaft.present.words import hertz, mode_words, pair_sentence, plain
+
+RPM = 30.0 / math.pi
+SHAPES_A_FIGURE = 2
+MOST_SHAPES = 8
+
+
+def finding_parts(screening: Screening) -> list[Any]:
+    """Modes, interferences, excitations and damping as blocks of a report."""
+    return [
+        *_modes(screening),
+        *_shapes(screening),
+        *_interferences(screening),
+        *_excitations(screening),
+        *_damping(screening),
+    ]
+
+
+def _modes(screening: Screening) -> list[Any]:
+    rows = [
+        (
+            f"{mode.mode}",
+            hertz(mode.frequency_hz),
+            f"{mode.cycles_per_min:.1f}",
+            f"{hertz(mode.bounds_hz[0])} – {hertz(mode.bounds_hz[1])}",
+            f"{mode.damping_ratio:.4f}",
+            mode_words(mode) + _cluster_words(mode),
+        )
+        for mode in screening.modes
+    ]
+    head = ("Mode", "Hz", "cycles/min", "over tolerances, Hz", "damping ratio", "what it does")
+    beyond = len(screening.modes) - len(screening.judged_modes)
+    text = (
+        "Undamped natural frequencies. The range is the exact lowest and highest value over all stiffness and "
+        "inertia tolerances together: frequencies rise with every stiffness and fall with every inertia. Where "
+        "ranges of neighbouring modes overlap, the shape may change inside them."
+    )
+    if beyond:
+        text += f" The {beyond} highest lie above every source and are listed without being judged."
+    table = data_table(head, rows, column_widths=(8, 13, 17, 27, 14, 62), align="rrrrrl")
+    return [heading("Natural frequencies and modes"), paragraph(text), table]
+
+
+def _cluster_words(mode: ModeResult) -> str:
+    return "" if len(mode.cluster) == 1 else f" (one basis of {len(mode.cluster)} modes of equal frequency)"
+
+
+def _shapes(screening: Screening) -> list[Any]:
+    from quillshaft.present.charts import mode_shapes
+
+    shown = screening.judged_modes[:MOST_SHAPES]
+    parts: list[Any] = [heading("Mode shapes", 2)] if shown else []
+    for first in range(0, len(shown), SHAPES_A_FIGURE):
+        numbers = shown[first : first + SHAPES_A_FIGURE]
+        words = " and ".join(f"mode {number}" for number in numbers)
+        parts.append(FigureFlowable(mode_shapes(screening, numbers), bookmark_alt=f"Shape of {words}"))
+    parts += _shape_tables(screening, shown)
+    return parts
+
+
+def _shape_tables(screening: Screening, shown: tuple[int, ...]) -> list[Any]:
+    if not shown:
+        return []
+    columns = shown[:6]
+    head = ("Station", *(f"mode {number}" for number in columns))
+    angles = [
+        (name, *(f"{screening.mode(number).shape[name]:+.4f}" for number in columns))
+        for name in screening.graph.stations
+    ]
+    links = [link for link in screening.graph.links if link.stiffness_nm_rad is not None]
+    shares = [
+        (link.name, *(f"{screening.mode(number).strain_energy[link.name] * 100:.1f}" for number in columns))
+        for link in links
+    ]
+    kinetic = [
+        (name, *(f"{screening.mode(number).kinetic_energy[name] * 100:.1f}" for number in columns))
+        for name in screening.graph.stations
+    ]
+    align = "l" + "r" * len(columns)
+    widths = (30, *([18] * len(columns)))
+    return [
+        heading("Angles at the stations (actual, largest = 1)", 3),
+        data_table(head, angles, column_widths=widths, align=align),
+        heading("Strain energy by link, %", 3),
+        data_table(("Link", *head[1:]), shares, column_widths=widths, align=align),
+        heading("Kinetic energy by station, %", 3),
+        data_table(head, kinetic, column_widths=widths, align=align),
+        note(
+            "A share of strain energy is twice the relative change of the frequency per relative change of that "
+            "stiffness; a share of kinetic energy minus twice that per relative change of that inertia."
+        ),
+    ]
+
+
+def _interferences(screening: Screening) -> list[Any]:
+    from quillshaft.present.charts import interference_diagram
+
+    criteria = screening.train.criteria
+    base = "source" if criteria.margin_on == "excitation" else "natural"
+    required = ", ".join(f"{kind} {plain(share)}" for kind, share in criteria.separation.items())
+    worst = ", ".join(f"{kind} {plain(share)}" for kind, share in criteria.worst_case.items())
+    parts: list[Any] = [
+        heading("Interference diagram and margins"),
+        FigureFlowable(interference_diagram(screening), bookmark_alt="Interference diagram"),
+        paragraph(
+            f"Margin = (f natural − f source) / f {base}, the smallest over the judged range; it is zero where "
+            f"they meet there. Required nominally: {required}; over the tolerances: {worst}."
+        ),
+        heading("What is not clear, worst first", 2),
+    ]
+    counted = [pair for pair in screening.not_clear() if pair.dismissed is None]
+    parts += bullets([pair_sentence(screening, pair) for pair in counted]) or [paragraph("Nothing.")]
+    parts += [heading("Critical speeds", 2), *_critical(screening)]
+    return parts
+
+
+def _critical(screening: Screening) -> list[Any]:
+    """Where modes and sources meet between standstill and a little above the highest speed."""
+    operation = screening.train.operation
+    top = 1.2 * max(operation.trip_rad_s or 0.0, operation.ranges_rad_s[-1][1]) * RPM
+    found = [
+        (speed, pair)
+        for pair in screening.interferences
+        for speed in pair.critical_speeds_rpm
+        if speed <= top and _counts(screening, pair)
+    ]
+    if not found:
+        return [paragraph(f"No mode meets a source that follows speed below {top:.0f} rpm.")]
+    rows = [
+        (
+            f"{speed:.0f}",
+            f"{pair.mode}",
+            hertz(screening.mode(pair.mode).frequency_hz),
+            pair.source,
+            "–" if pair.excitability is None else f"{pair.excitability:.3f}",
+            "in range" if _in_range(screening, speed) else "passed on the way or not reached",
+        )
+        for speed, pair in sorted(found, key=lambda item: item[0])
+    ]
+    head = ("rpm", "mode", "Hz", "source", "excitability", "judged range")
+    text = f"All meetings up to {top:.0f} rpm, in order of speed; minor engine orders only in the judged range."
+    return [data_table(head, rows, align="rrrlrl"), note(text)]
+
+
+def _counts(screening: Screening, pair: Interference) -> bool:
+    minor = screening.source(pair.source).major is False
+    return not minor or pair.verdict in ("crossing", "barred")
+
+
+def _in_range(screening: Screening, speed_rpm: float) -> bool:
+    ranges = screening.train.operation.ranges_rad_s
+    return any(low * RPM <= speed_rpm <= high * RPM for low, high in ranges)
+
+
+def _excitations(screening: Screening) -> list[Any]:
+    head = ("Source", "at", "line", "speed ratio", "when", "order", "amplitude or remark")
+    return [
+        heading("Excitations"),
+        paragraph(
+            "Every source that shafts, gears and machines imply, and those the file gives. Screening asks only "
+            "where they are; a source without an amplitude is judged by separation alone."
+        ),
+        data_table(head, source_rows(screening), align="lllrlll"),
+    ]
+
+
+def _damping(screening: Screening) -> list[Any]:
+    train = screening.train
+    stated = [
+        (link.name, f"{link.loss_factor:.4f}", f"{link.loss_factor * 2 * math.pi:.3f}", "stated")
+        for link in screening.graph.links
+        if link.loss_factor is not None
+    ]
+    low, high = train.zeta
+    rows = [
+        *stated,
+        ("every other link", f"{2 * low:.4f}", f"{4 * math.pi * low:.3f}", "assumed for the train"),
+    ]
+    return [
+        heading("Damping"),
+        paragraph(
+            f"Links that state no damping take a loss factor 2ζ with ζ = {plain(low)} to {plain(high)}; the low "
+            "value is used. The damping ratio of a mode is half its links' loss factors weighted by their shares "
+            "of strain energy. Damping does not enter the verdicts of this screening."
+        ),
+        data_table(("Link", "loss factor η", "ψ = 2π η", "where from"), rows, align="lrrl"),
+    ]
+
+
+def margin_matrix(screening: Screening) -> list[Any]:
+    """Every judged pair, for the appendix."""
+    head = (
+        "Mode",
+        "Hz",
+        "source",
+        "critical, rpm",
+        "margin",
+        "over tol.",
+        "required",
+        "excit.",
+        "nominal",
+        "over tolerances",
+    )
+    rows = [pair_row(screening, pair) for pair in screening.interferences]
+    if not rows:
+        return [paragraph("No mode lies in the reach of any source.")]
+    return [data_table(head, rows, column_widths=(9, 14, 34, 15, 15, 15, 15, 12, 16, 22), align="rrlrrrrrll")]

@@ -1,0 +1,175 @@
+"""Page one: identification, verdict, what governs it and how sure it is; then train and operating map."""
+
+from __future__ import annotations
+
+import math
+from typing import Any
+
+from quillshaft.assess.results import Screening, Verdict
+from quillshaft.present.pdf.document import (
+    FigureFlowable,
+    Tone,
+    bullets,
+    data_table,
+    heading,
+    key_values,
+    note,
+    paragraph,
+    stamp,
+)
+from quillshaft.present.units import SHOWN
+from quillshaft.present.words import (
+    hertz,
+    number,
+    pair_sentence,
+    percent,
+    plain,
+    range_words,
+    verdict_sentence,
+)
+
+RPM = 30.0 / math.pi
+MOST_ON_PAGE_ONE = 4
+TONES: dict[Verdict, Tone] = {"clear": "pass", "barred": "restriction", "close": "fail", "crossing": "fail"}
+STAMPS: dict[Verdict, str] = {
+    "clear": "PASS: no interference within the required separation",
+    "barred": "PASS WITH RESTRICTION: barred speed ranges must be kept",
+    "close": "NOT CLEAR: forced response or a change of design is needed",
+    "crossing": "NOT CLEAR: forced response or a change of design is needed",
+}
+
+
+def report_title(screening: Screening) -> str:
+    """Title of the document."""
+    train = screening.train
+    case = f", case {' + '.join(train.cases)}" if train.cases else ""
+    return f"Torsional screening: {train.title}{case}"
+
+
+def front_parts(screening: Screening) -> list[Any]:
+    """Page one and the train page as blocks of a report."""
+    return [*_identification(screening), *_verdict(screening), *_train(screening), *_operating_map(screening)]
+
+
+def _identification(screening: Screening) -> list[Any]:
+    from quillshaft import __version__
+
+    train, sign = screening.train, screening.train.sign_off
+    pairs = [
+        ("Train", train.title + (f" ({train.tag})" if train.tag else "")),
+        ("Document", f"{sign.document or 'not numbered'}, revision {sign.revision or 'not stated'}"),
+        ("Date and status", f"{sign.date or 'not dated'}, {sign.status}"),
+    ]
+    if sign.client:
+        pairs.append(("Client", sign.client))
+    for name, because in zip(train.cases, train.cases_because, strict=True):
+        pairs.append(("Case", f"{name}: {because}" if because else name))
+    pairs += [
+        ("Input", f"{train.file.name}, SHA-256 {train.file.sha256}"),
+        ("Made with", f"Quillshaft {__version__}"),
+    ]
+    return [heading(report_title(screening)), key_values(pairs)]
+
+
+def _verdict(screening: Screening) -> list[Any]:
+    counted = [pair for pair in screening.not_clear() if pair.dismissed is None]
+    dismissed = [pair for pair in screening.interferences if pair.dismissed is not None]
+    detail = f"Over the tolerances: {verdict_sentence(screening, worst=True)}"
+    detail += f"\nNominal: {verdict_sentence(screening, worst=False)}"
+    parts: list[Any] = [stamp(STAMPS[screening.worst_verdict], TONES[screening.worst_verdict], detail)]
+    pairs = []
+    if counted:
+        governing = counted[0]
+        mode = screening.mode(governing.mode)
+        low, high = mode.bounds_hz
+        pairs += [
+            ("Governing item", f"mode {mode.mode} and {governing.source}"),
+            (
+                "Its margin",
+                f"{percent(governing.margin, True)} nominal, {percent(governing.worst_margin, True)} over the "
+                f"tolerances; {plain(governing.required)} required",
+            ),
+            (
+                "Its uncertainty",
+                f"natural frequency {hertz(mode.frequency_hz)} Hz, {hertz(low)} to {hertz(high)} Hz over all "
+                "tolerances together",
+            ),
+        ]
+    pairs += [
+        ("Judged range", range_words(screening)),
+        (
+            "Assumed",
+            f"{len(screening.assumed)} values that the file does not state (listed under Assumptions); "
+            f"{len(screening.flags)} questions about the data",
+        ),
+        (
+            "Dismissed",
+            f"{len(dismissed)} interferences accepted by name; {len(screening.stale_dismissals)} dismissals "
+            "stated but not applied",
+        ),
+        ("Numerical proof", proof_sentence(screening)),
+    ]
+    parts.append(key_values(pairs))
+    if counted:
+        parts.append(heading("What is not clear, worst first", 2))
+        parts += bullets([pair_sentence(screening, pair) for pair in counted[:MOST_ON_PAGE_ONE]])
+        if len(counted) > MOST_ON_PAGE_ONE:
+            left = len(counted) - MOST_ON_PAGE_ONE
+            parts.append(note(f"{left} more under Interferences."))
+    return parts
+
+
+def proof_sentence(screening: Screening) -> str:
+    """Whether every frequency is bracketed and none is missed."""
+    check = screening.self_check
+    if check.modes == 0:
+        return "the train has no elastic mode"
+    if not check.all_proven:
+        return "NOT all natural frequencies could be proven by counting: do not use these results"
+    return f"{check.modes} natural frequencies, each bracketed by counting the modes below it; none is missed"
+
+
+def _train(screening: Screening) -> list[Any]:
+    from quillshaft.present.charts import train_diagram
+
+    figure = FigureFlowable(train_diagram(screening), bookmark_alt="The train as a diagram")
+    return [heading("Train"), figure]
+
+
+def _operating_map(screening: Screening) -> list[Any]:
+    train, operation = screening.train, screening.train.operation
+    rows = [("Rated speed", f"{operation.rated_rad_s * RPM:.1f} rpm at {operation.speed_at}")]
+    rows.append(("Judged range", range_words(screening)))
+    if operation.idle_rad_s is not None:
+        rows.append(("Idle", f"{operation.idle_rad_s * RPM:.0f} rpm"))
+    if operation.trip_rad_s is not None:
+        rows.append(("Trip", f"{operation.trip_rad_s * RPM:.0f} rpm"))
+    for low, high in operation.barred_rad_s:
+        rows.append(("Barred", f"{low * RPM:.0f} to {high * RPM:.0f} rpm: {operation.barred_because}"))
+    for name, speed in operation.speeds_rad_s.items():
+        rows.append((f"Speed of {name}", f"{speed * RPM:.1f} rpm at rated, in proportion elsewhere"))
+    if any(machine.supply_hz for machine in train.machines):
+        rows.append(("Supply band", f"±{plain(operation.supply_band)}"))
+    parts: list[Any] = [heading("Operating map", 2), key_values(rows)]
+    parts += [heading("Mean power at rated speed", 3), *_power(screening)]
+    return parts
+
+
+def _power(screening: Screening) -> list[Any]:
+    power = screening.train.power
+    if power is None:
+        return [paragraph("No power is given: mean torques and wind-up are not worked out.")]
+    units, graph = SHOWN[screening.train.units], screening.graph
+    rows = []
+    for name, watts in power.stations_w.items():
+        ratio = graph.speed_ratio[graph.number(name)]
+        speed = screening.train.operation.rated_rad_s * abs(float(ratio))
+        shown = "balance" if watts is None else f"{number(watts / 1e3 * units.per_kw)} {units.power}"
+        torque = "–" if watts is None else f"{number(watts / speed * units.per_nm)} {units.torque}"
+        rows.append((name, shown, f"{speed * RPM:.1f}", torque))
+    table = data_table(("Station", "mean power, + drives", "rpm", "mean torque there"), rows, align="lrrr")
+    law = power.law
+    if law is None:
+        return [table]
+    words = law if isinstance(law, str) else ", ".join(f"{n * RPM:.0f} rpm {plain(s)}" for n, s in law)
+    return [table, note(f"Load law: {words}.")]

@@ -1,0 +1,84 @@
+"""The JSON schema of the train file, made from the rows that read it."""
+
+from __future__ import annotations
+
+import copy
+import json
+from typing import Any
+
+from pydantic import BaseModel
+from pydantic.json_schema import models_json_schema
+
+from quillshaft.train.fields import NUMBER_OR_TEXT
+from quillshaft.train.machine_rows import MACHINE_ROWS
+from quillshaft.train.overlay import KEYED_TABLES
+from quillshaft.train.validate import GEAR_ROWS, PLAIN, ROWS
+
+Schema = dict[str, Any]
+
+
+def _reference(row: type[BaseModel]) -> Schema:
+    return {"$ref": f"#/$defs/{row.__name__}"}
+
+
+def _keyed(table: str) -> Schema:
+    classes = {"machines": MACHINE_ROWS, "gears": GEAR_ROWS}.get(table)
+    row = _reference(ROWS[table]) if classes is None else {"anyOf": [_reference(item) for item in classes.values()]}
+    return {"type": "object", "additionalProperties": row}
+
+
+def _power() -> Schema:
+    law = {"description": "square | constant-torque | constant-power, or shares of rated power by speed"}
+    described = {**NUMBER_OR_TEXT, "description": 'mean power at rated speed, + drives, - absorbs; or "balance"'}
+    return {"type": "object", "properties": {"law": law}, "additionalProperties": described}
+
+
+def _tables() -> Schema:
+    tables: Schema = {table: _reference(row) for table, row in PLAIN.items()}
+    tables["power"] = _power()
+    tables["excitations-off"] = {"type": "object", "additionalProperties": {"type": "string"}}
+    tables.update({table: _keyed(table) for table in sorted(KEYED_TABLES)})
+    return tables
+
+
+def _partial(node: Any) -> Any:
+    """The same schema with nothing required, and its references to the partial definitions."""
+    if isinstance(node, list):
+        return [_partial(item) for item in node]
+    if not isinstance(node, dict):
+        return node
+    out = {key: _partial(value) for key, value in node.items() if key != "required"}
+    if "$ref" in out:
+        out["$ref"] = out["$ref"].replace("#/$defs/", "#/$defs/case-")
+    return out
+
+
+def build_schema() -> Schema:
+    """The schema as data: every table and key, cases as partial tables."""
+    rows = [*PLAIN.values(), *ROWS.values(), *MACHINE_ROWS.values(), *GEAR_ROWS.values()]
+    _, made = models_json_schema([(row, "validation") for row in rows], by_alias=True)
+    definitions: Schema = made["$defs"]
+    partial = {f"case-{name}": _partial(copy.deepcopy(item)) for name, item in definitions.items()}
+    for name, item in partial.items():
+        if name != "case-PieceRow":
+            item.setdefault("properties", {})["omit"] = {"const": True}
+    tables = _tables()
+    case = {
+        "type": "object",
+        "properties": {"because": {"type": "string"}, **_partial(copy.deepcopy(tables))},
+        "additionalProperties": False,
+    }
+    return {
+        "$schema": "https://json-schema.org/draft/2020-12/schema",
+        "title": "Quillshaft train file",
+        "type": "object",
+        "required": ["schema", "train", "operation", "stations"],
+        "properties": {"schema": {"const": 1}, **tables, "cases": {"type": "object", "additionalProperties": case}},
+        "additionalProperties": False,
+        "$defs": {**definitions, **partial},
+    }
+
+
+def schema_as_text() -> str:
+    """The schema as the shipped file holds it."""
+    return json.dumps(build_schema(), indent=1, ensure_ascii=False) + "\n"
