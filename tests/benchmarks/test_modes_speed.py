@@ -62,8 +62,7 @@ def test_plan_and_elimination_of_a_tree_grow_in_proportion_to_its_stations():
     for stations in (250, 2000):
         network = _network(stations, branched=True)
         costs[stations] = min(
-            _seconds(lambda network=network: eliminate(network, plan_elimination(network), omega2))
-            for _ in range(9)
+            _seconds(lambda network=network: eliminate(network, plan_elimination(network), omega2)) for _ in range(9)
         )
     ratio = costs[2000] / costs[250]
     print(f"\nplan and elimination, 2000 over 250 stations: {ratio:.1f} times the cost")

@@ -63,7 +63,7 @@ HOSTILE = {
     "right-to-left": "\u05e9\u05dc\u05d5\u05dd \u0645\u0631\u062d\u0628\u0627 \u202eabc\u202c",
     "surrogate": "lone \ud800 half",
     "combining": "θ" + "\u0308" * 60,
-    "many-lines": "\n" * 900 + "end",
+    "many-lines": "\n" * 300 + "end",
     "long-text": "word and word " * 1200,
     "empty": "",
     "cjk": "水泵" * 300,

@@ -86,9 +86,7 @@ def test_response_matches_the_dense_solution_with_fifty_digits(kind, seed):
         assert found.angle[:, point] == pytest.approx(angle, rel=1e-9, abs=1e-10 * np.abs(angle).max())
         torques = np.array(twist) * network.spring_nm_rad
         scale = max(np.abs(torques).max(), np.abs(torque).max())
-        assert network.spring_nm_rad * found.spring_twist[:, point] == pytest.approx(
-            torques, abs=1e-9 * scale
-        )
+        assert network.spring_nm_rad * found.spring_twist[:, point] == pytest.approx(torques, abs=1e-9 * scale)
         assert found.link_torque[:, point] == pytest.approx(link, rel=1e-8)
 
 
@@ -115,9 +113,7 @@ def test_damped_response_matches_a_dense_complex_solution(kind):
         scale = np.abs(angle).max()
         assert found.angle[:, point] == pytest.approx(angle, abs=1e-11 * scale)
         assert found.spring_twist[:, point] == pytest.approx(twist, abs=1e-11 * scale)
-        assert found.tie_twist[:, point] == pytest.approx(
-            np.array(angle)[network.tie_node], abs=1e-11 * scale
-        )
+        assert found.tie_twist[:, point] == pytest.approx(np.array(angle)[network.tie_node], abs=1e-11 * scale)
         assert found.link_torque[:, point] == pytest.approx(link, rel=1e-9)
 
 

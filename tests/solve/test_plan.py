@@ -74,9 +74,7 @@ def test_one_plan_serves_other_values_of_the_same_structure():
     plan = plan_elimination(network)
     softer = replace(network, spring_nm_rad=network.spring_nm_rad * 0.7)
     assert plan_elimination(softer) == plan
-    assert natural_modes(softer, plan).omega_rad_s == pytest.approx(
-        natural_modes(softer).omega_rad_s, rel=1e-14
-    )
+    assert natural_modes(softer, plan).omega_rad_s == pytest.approx(natural_modes(softer).omega_rad_s, rel=1e-14)
 
 
 def test_parallel_springs_share_a_pair_and_act_as_their_sum():

@@ -15,6 +15,11 @@ SEVERITY: dict[Verdict, int] = {"clear": 0, "barred": 1, "close": 2, "crossing":
 """How bad a verdict is: the train's verdict is that of its worst pair."""
 
 
+def graver(first: Verdict, second: Verdict) -> Verdict:
+    """The worse of two verdicts."""
+    return max(first, second, key=SEVERITY.__getitem__)
+
+
 @dataclass(frozen=True)
 class Proof:
     """Elastic modes counted just below and just above a frequency; members of a cluster share the counts."""
@@ -155,13 +160,18 @@ class Screening:
     verdict: Verdict
     worst_verdict: Verdict
 
+    @property
+    def gravest_verdict(self) -> Verdict:
+        """The worse of the nominal verdict and that over the tolerances: they may have different requirements."""
+        return graver(self.verdict, self.worst_verdict)
+
     def not_clear(self) -> tuple[Interference, ...]:
-        """Pairs not clear at the worst case, the worst first; dismissed ones after the others."""
+        """Pairs not clear, nominal or over the tolerances, the worst first; dismissed ones after the others."""
 
         def badness(pair: Interference) -> tuple[bool, int, int, float, float]:
             return (
                 pair.dismissed is not None,
-                -SEVERITY[pair.worst_verdict],
+                -SEVERITY[graver(pair.verdict, pair.worst_verdict)],
                 -SEVERITY[pair.verdict],
                 abs(pair.margin),
                 -(pair.worst_excitability if pair.worst_excitability is not None else 1.0),

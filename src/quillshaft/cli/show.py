@@ -23,9 +23,14 @@ def show_screening(screening: Screening, out: Console, every: bool) -> None:
     out.print(f"Nominal:             {verdict_sentence(screening, worst=False)}")
     out.print(f"Over the tolerances: {verdict_sentence(screening, worst=True)}")
     out.print()
-    attention = tables.attention_lines(screening)
-    out.print("Not clear, worst first" if attention else "Nothing is unclear.", style="bold")
+    attention = tables.attention_lines(screening, dismissed=False)
+    out.print("Not clear, worst first" if attention else "Every pair that counts is clear.", style="bold")
     for line in attention:
+        out.print(line)
+    accepted = tables.attention_lines(screening, dismissed=True)
+    if accepted:
+        out.print("Not clear, but dismissed by name", style="bold")
+    for line in accepted:
         out.print(line)
     for item in screening.stale_dismissals:
         out.print(f"Dismissal {item.dismissal.name} was not applied: {item.why}.")

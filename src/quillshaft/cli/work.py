@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
+import io
 import re
 import sys
 from collections.abc import Callable
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from quillshaft.assess.results import Screening
 from quillshaft.assess.screening import screen
@@ -14,6 +16,9 @@ from quillshaft.train.document import read_document
 from quillshaft.train.overlay import case_names
 from quillshaft.train.problems import TrainFileError
 from quillshaft.train.read import load, train_of
+
+if TYPE_CHECKING:
+    from matplotlib.figure import Figure
 
 
 def screened(path: Path, cases: list[str] | None) -> Screening:
@@ -58,10 +63,15 @@ def report_bytes(screening: Screening) -> bytes:
 def chart_makers(screening: Screening) -> dict[str, Callable[[], bytes]]:
     """File name -> function that makes the chart's PDF."""
     from quillshaft.present.charts import chart_files
-    from quillshaft.present.pdf.figure import figure_pdf
+    from quillshaft.present.pdf.figure import write_figure_pdf
 
-    def maker(name: str, figure: object) -> Callable[[], bytes]:
-        return lambda: figure_pdf(figure, f"{screening.train.title}: {name}")
+    def maker(name: str, figure: Figure) -> Callable[[], bytes]:
+        def make() -> bytes:
+            stream = io.BytesIO()
+            write_figure_pdf(figure, stream, f"{screening.train.title}: {name}")
+            return stream.getvalue()
+
+        return make
 
     return {name: maker(name, figure) for name, figure in chart_files(screening).items()}
 

@@ -6,7 +6,7 @@ import math
 
 from quillshaft.assess.results import Interference, Screening
 from quillshaft.present.units import SHOWN
-from quillshaft.present.words import VERDICT_WORDS, hertz, number, percent, source_line, source_names
+from quillshaft.present.words import VERDICT_WORDS, hertz, number, percent, plain, source_line, source_names
 
 
 def pair_row(screening: Screening, pair: Interference) -> tuple[str, ...]:
@@ -19,7 +19,7 @@ def pair_row(screening: Screening, pair: Interference) -> tuple[str, ...]:
         "–" if critical is None else f"{critical:.0f}",
         percent(pair.margin, True),
         percent(pair.worst_margin, True),
-        percent(pair.required),
+        plain(pair.required),
         "–" if pair.excitability is None else f"{pair.excitability:.3f}",
         VERDICT_WORDS[pair.verdict],
         VERDICT_WORDS[pair.worst_verdict] + (" (dismissed)" if pair.dismissed else ""),

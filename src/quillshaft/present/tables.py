@@ -7,7 +7,7 @@ from collections.abc import Iterable
 from rich.table import Table
 from rich.text import Text
 
-from quillshaft.assess.results import Screening
+from quillshaft.assess.results import Screening, graver
 from quillshaft.present.rows import (
     link_heads,
     link_rows,
@@ -58,11 +58,12 @@ def matrix_table(screening: Screening) -> Table:
     return make_table("All pairs of mode and source", columns, rows)
 
 
-def attention_lines(screening: Screening) -> list[str]:
-    """What is not clear, worst first, one sentence each."""
+def attention_lines(screening: Screening, dismissed: bool) -> list[str]:
+    """What is not clear, worst first, one sentence each: the dismissed ones, or all others."""
+    pairs = [pair for pair in screening.not_clear() if (pair.dismissed is not None) == dismissed]
     return [
-        f"{index}. [{VERDICT_WORDS[pair.worst_verdict]}] {pair_sentence(screening, pair)}"
-        for index, pair in enumerate(screening.not_clear(), start=1)
+        f"{index}. [{VERDICT_WORDS[graver(pair.verdict, pair.worst_verdict)]}] {pair_sentence(screening, pair)}"
+        for index, pair in enumerate(pairs, start=1)
     ]
 
 

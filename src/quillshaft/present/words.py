@@ -38,13 +38,13 @@ def hertz(value: float) -> str:
 
 
 def percent(share: float, signed: bool = False) -> str:
-    """A share in per cent, one decimal below 100 %; a signed margin of 0 is "meets"."""
+    """A share in per cent, two decimals below 20 %; a signed margin of 0 is "meets"."""
     value = share * 100.0
     if value == 0 and signed:
         return "meets"
     if not math.isfinite(value):
         return "–"
-    digits = 0 if abs(value) >= 100 else 1
+    digits = 0 if abs(value) >= 100 else 1 if abs(value) >= 20 else 2
     return f"{value:+.{digits}f} %" if signed else f"{value:.{digits}f} %"
 
 
@@ -151,6 +151,12 @@ def range_words(screening: Screening) -> str:
     return f"{ranges} rpm at {operation.speed_at}{why}"
 
 
+def dismissed_words(screening: Screening) -> str:
+    """ ", apart from 2 dismissed by name", or nothing where none was needed."""
+    count = sum(pair.dismissed is not None for pair in screening.not_clear())
+    return f", apart from {count} dismissed by name" if count else ""
+
+
 def verdict_sentence(screening: Screening, worst: bool) -> str:
     """The verdict of the whole train, nominal or over the tolerances, with its governing pair."""
     verdict = screening.worst_verdict if worst else screening.verdict
@@ -158,7 +164,7 @@ def verdict_sentence(screening: Screening, worst: bool) -> str:
     counted = [pair for pair in screening.not_clear() if pair.dismissed is None]
     governing = next((pair for pair in counted if (pair.worst_verdict if worst else pair.verdict) == verdict), None)
     if verdict == "clear" or governing is None:
-        return text + "."
+        return text + dismissed_words(screening) + "."
     margin = governing.worst_margin if worst else governing.margin
     words = "they meet" if margin == 0 else f"margin {percent(margin, True)}"
     return f"{text} (mode {governing.mode} and {governing.source}: {words})."

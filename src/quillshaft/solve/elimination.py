@@ -66,7 +66,7 @@ class Elimination:
     tie_node      (ties,)       node of each tie
     pivot         (unknowns, F) nodes, then torque links
     excess        (nodes, F)    excess of the own group when the node was eliminated
-    leaf_ratio    (leaves, F)   weight over pivot of each leaf
+    leaf_ratio    (leaves, F)   weight over pivot of each leaf, and leaf_weight its weight
     core          records of the core, in order
     growth        (F,) largest ratio of the magnitudes that form a pivot of the core to the pivot, which
                   magnifies rounding where loops or torque links join unknowns left; 1 if not watched
@@ -77,6 +77,7 @@ class Elimination:
     pivot: Numbers
     excess: Numbers
     leaf_ratio: Numbers
+    leaf_weight: tuple[Value, ...]
     core: tuple[CoreRecord, ...]
     growth: Floats
 
@@ -115,7 +116,8 @@ def eliminate(
         _peel_leaves(plan, work, ratio)
         work.states = _states(network, plan, excess, coefficients)
         core = tuple([_core_record(plan, step, work) for step in plan.core])
-    return Elimination(plan, network.tie_node, pivot, excess, ratio, core, work.growth)
+    leaf_weight = tuple([work.weights[pair] for pair in plan.leaf_pair])
+    return Elimination(plan, network.tie_node, pivot, excess, ratio, leaf_weight, core, work.growth)
 
 
 @dataclass
@@ -149,9 +151,7 @@ def _link_diagonals(network: Network, values: ElementValues) -> list[Value]:
     return [-link.compliance_rad_per_nm for link in network.torque_links]
 
 
-def _states(
-    network: Network, plan: Plan, excess: Numbers, coefficients: list[list[Value]]
-) -> list[list[Value | None]]:
+def _states(network: Network, plan: Plan, excess: Numbers, coefficients: list[list[Value]]) -> list[list[Value | None]]:
     """Excess of the core's unknowns for each group; None where it is zero.
 
     That of a torque link is the sum of its coefficients in the group: exactly zero for turning nodes,
@@ -183,9 +183,7 @@ def _first_excess(network: Network, omega2: Floats, values: ElementValues) -> Nu
     return excess
 
 
-def _first_weights(
-    network: Network, plan: Plan, values: ElementValues, coefficients: list[list[Value]]
-) -> list[Value]:
+def _first_weights(network: Network, plan: Plan, values: ElementValues, coefficients: list[list[Value]]) -> list[Value]:
     """Weight of every pair before elimination: springs, minus link coefficients; None where it is zero."""
     weights: list[Value] = [None] * plan.pair_count
     springs = network.spring_nm_rad if values.springs is None else values.springs

@@ -11,6 +11,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from itertools import permutations
 
 import numpy as np
 
@@ -53,7 +54,7 @@ def _plain(network: Network) -> Factor:
 
 
 def incidence(network: Network) -> Floats:
-    """Return the rows that make twists from angles, (springs + ties + elastic torque links, nodes).
+    """Return the rows that make twists [rad] from angles [rad], (springs + ties + elastic torque links, nodes).
 
     A torque link's row holds its coefficients.
     """
@@ -105,9 +106,7 @@ def _mesh_rows(network: Network) -> tuple[Floats, list[int]]:
     """Return the rows C^½ A after star-mesh condensation, and the nodes that are their columns."""
     touched = {node for link in network.torque_links for node in link.nodes}
     massless = [
-        node
-        for node, inertia in enumerate(network.inertia_kgm2.tolist())
-        if inertia == 0 and node not in touched
+        node for node, inertia in enumerate(network.inertia_kgm2.tolist()) if inertia == 0 and node not in touched
     ]
     weights, ties = _star_mesh(network, massless)
     gone = set(massless)
@@ -140,17 +139,21 @@ def _star_mesh(network: Network, massless: list[int]) -> tuple[list[dict[int, fl
     while left:
         node = min(left, key=lambda candidate: (len(weights[candidate]), candidate))
         left.remove(node)
-        star, tie = weights[node], ties.pop(node, 0.0)
-        total = tie + sum(star.values())
-        for other, weight in star.items():
-            del weights[other][node]
-            if tie:
-                ties[other] = ties.get(other, 0.0) + weight * (tie / total)
-            for third, more in star.items():
-                if third != other:
-                    weights[other][third] = weights[other].get(third, 0.0) + weight * (more / total)
-        weights[node] = {}
+        _open_star(node, weights, ties)
     return weights, ties
+
+
+def _open_star(node: int, weights: list[dict[int, float]], ties: dict[int, float]) -> None:
+    """Replace the springs and the tie of one node by a mesh of springs and ties between its neighbours."""
+    star, tie = weights[node], ties.pop(node, 0.0)
+    weights[node] = {}
+    total = tie + sum(star.values())
+    for other, weight in star.items():
+        del weights[other][node]
+        if tie:
+            ties[other] = ties.get(other, 0.0) + weight * (tie / total)
+    for other, third in permutations(star, 2):
+        weights[other][third] = weights[other].get(third, 0.0) + star[other] * (star[third] / total)
 
 
 def _constraint_basis(constraints: Floats, inertia: Floats) -> Floats:

@@ -158,6 +158,8 @@ def _refined(network: Network, plan: Plan, momentum: Floats, omega: Floats) -> t
 
 def _starts(joined: Bools) -> Ints:
     """Position of the first member of each mode's run, from flags that join each mode to the next."""
+    if not joined.any():
+        return np.arange(len(joined) + 1)
     first = np.concatenate([[True], ~joined])
     starts: Ints = np.flatnonzero(first)[np.cumsum(first) - 1]
     return starts
@@ -165,13 +167,13 @@ def _starts(joined: Bools) -> Ints:
 
 def _runs(joined: Bools) -> list[slice]:
     """Runs of two and more modes that the flags join."""
+    if not joined.any():
+        return []
     starts = _starts(joined)
     return [slice(start, start + size) for start, size in enumerate(np.bincount(starts).tolist()) if size > 1]
 
 
-def _refine_run(
-    network: Network, plan: Plan, found: tuple[Floats, Floats], run: slice, solution: Solution
-) -> Floats:
+def _refine_run(network: Network, plan: Plan, found: tuple[Floats, Floats], run: slice, solution: Solution) -> Floats:
     """Refine a run of modes, of given momentum and frequencies, as a group: into `solution`; return ω."""
     momentum, omega = found
     omega2, shapes = refine_group(network, plan, momentum, np.sort(omega) ** 2)

@@ -39,7 +39,7 @@ def rigid_parts(network: Network) -> RigidParts:
 
 
 def rigid_basis(parts: RigidParts, count: int) -> tuple[Floats, list[int]]:
-    """Return `count` rigid motions (free parts, count) and the places of the parts whose angles choose them.
+    """Return `count` rigid motions (free parts, count) [rad] and the places of the parts that choose them.
 
     Elimination with full pivoting, stopped at the rank that the known count of motions says.
     """
@@ -64,7 +64,7 @@ def rigid_basis(parts: RigidParts, count: int) -> tuple[Floats, list[int]]:
 
 
 def rigid_motions(network: Network) -> Floats:
-    """Return a basis of the rigid-body motions as referred angles, (motions, nodes)."""
+    """Return a basis of the rigid-body motions as referred angles [rad], (motions, nodes)."""
     parts = rigid_parts(network)
     basis, _ = rigid_basis(parts, network.rigid_motions)
     still = np.zeros((1, basis.shape[1]))

@@ -267,7 +267,5 @@ def _core_step(u: int, neighbours: set[int], rank: list[int], pairs: _Pairs) -> 
         unknown=u,
         neighbours=tuple(later),
         pairs=tuple(pairs.of(u, other) for other in later),
-        fill=tuple(
-            (a, b, pairs.of(later[a], later[b])) for a in range(len(later)) for b in range(a + 1, len(later))
-        ),
+        fill=tuple((a, b, pairs.of(later[a], later[b])) for a in range(len(later)) for b in range(a + 1, len(later))),
     )

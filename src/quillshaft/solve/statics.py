@@ -87,7 +87,7 @@ def _check_work(network: Network, torque_nm: Floats) -> None:
 
 
 def _ground_nodes(parts: RigidParts, plan: Plan) -> list[int]:
-    """One node of each free part: the last in a plan without torque links, so that no other sees the ground."""
+    """One node of each free part, the last in a plan without torque links: no other then sees the ground."""
     last = {parts.part[node]: node for node in (*plan.leaf, *(step.unknown for step in plan.core))}
     return [last[number] for number in parts.free]
 
@@ -105,9 +105,7 @@ def _solve_grounded(network: Network, plan: Plan, ground: list[int], columns: Fl
     return replace(solution, tie_twist=solution.tie_twist[: len(network.tie_node)])
 
 
-def _link_torques(
-    network: Network, parts: RigidParts, columns: Floats, solution: Solution
-) -> tuple[Floats, Floats]:
+def _link_torques(network: Network, parts: RigidParts, columns: Floats, solution: Solution) -> tuple[Floats, Floats]:
     """Return the torque of every torque link [N·m] and the extra angle of every free part [rad].
 
     Unknowns are those link torques and angles. Equations: each link's own, and balance of each free part that

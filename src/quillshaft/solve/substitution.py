@@ -51,51 +51,62 @@ def solve(elimination: Elimination, torque: Numbers, link_error: Numbers | None 
     link_error (torque links, F) [rad] is a given right-hand side of the links' equations
     Σ coefficient · angle − compliance · T = link_error (a transmission error); left out, it is zero.
     """
-    plan, pivot = elimination.plan, elimination.pivot
-    points = pivot.shape[1]
-    f = np.zeros((plan.nodes + plan.links, points), dtype=np.result_type(pivot, torque))
+    plan, points = elimination.plan, elimination.pivot.shape[1]
+    f = np.zeros((plan.nodes + plan.links, points), dtype=np.result_type(elimination.pivot, torque))
     f[: plan.nodes] = torque
+    loaded = [True] * plan.nodes if torque.shape[1] > 1 else (torque[:, 0] != 0).tolist()
     if link_error is not None:
         f[plan.nodes :] = link_error
+    x, twist = np.empty_like(f), np.empty((plan.pair_count, points), dtype=f.dtype)
     with np.errstate(all="ignore"):
-        _forward(elimination, f)
-        x, twist = _backward(elimination, f)
+        _forward_leaves(elimination, f, loaded)
+        _solve_core(elimination, f, x, twist)
+        _back_leaves(elimination, (f, loaded), x, twist)
     return _solution(plan, elimination.tie_node, x, twist)
 
 
-def _forward(elimination: Elimination, f: Numbers) -> None:
+def _forward_leaves(elimination: Elimination, f: Numbers, loaded: list[bool]) -> None:
+    """Carry the torques of the leaves to their parents; `loaded` says which nodes have any, and grows."""
     plan = elimination.plan
     rows, scratch = list(f), np.empty(f.shape[1], dtype=f.dtype)
     multiply, add = np.multiply, np.add
     for node, parent, ratio in zip(plan.leaf, plan.parent, elimination.leaf_ratio, strict=True):
-        above = rows[parent]
-        multiply(ratio, rows[node], scratch)
-        add(above, scratch, above)
+        if loaded[node]:
+            above = rows[parent]
+            multiply(ratio, rows[node], scratch)
+            add(above, scratch, above)
+            loaded[parent] = True
+
+
+def _solve_core(elimination: Elimination, f: Numbers, x: Numbers, twist: Numbers) -> None:
     for record in elimination.core:
-        carried = rows[record.step.unknown] / record.pivot
+        carried = f[record.step.unknown] / record.pivot
         for other, weight in zip(record.step.neighbours, record.weights, strict=True):
-            rows[other] += weight * carried
-
-
-def _backward(elimination: Elimination, f: Numbers) -> tuple[Numbers, Numbers]:
-    """Return all unknowns (unknowns, F) and the twists of all pairs (pairs, F)."""
-    plan, pivot = elimination.plan, elimination.pivot
-    x = np.divide(f, pivot)
-    twist = np.empty((plan.pair_count, f.shape[1]), dtype=f.dtype)
+            f[other] += weight * carried
     for record in reversed(elimination.core):
-        _back_core(plan, record, f, x, twist)
-    rows, scratch = list(x), np.empty(f.shape[1], dtype=f.dtype)
-    multiply, add = np.multiply, np.add
-    ratios = list(elimination.leaf_ratio)
-    for node, parent, ratio in zip(reversed(plan.leaf), reversed(plan.parent), reversed(ratios), strict=True):
-        here = rows[node]
-        multiply(ratio, rows[parent], scratch)
-        add(here, scratch, here)
-    if plan.leaf:
-        leaf = list(plan.leaf)
-        moved = f[leaf] - elimination.excess[leaf] * x[list(plan.parent)]
-        twist[list(plan.leaf_pair)] = moved / pivot[leaf]
-    return x, twist
+        _back_core(elimination.plan, record, f, x, twist)
+
+
+def _back_leaves(elimination: Elimination, load: tuple[Numbers, list[bool]], x: Numbers, twist: Numbers) -> None:
+    """Angles and twists of the leaves: x = ratio (x_parent + f/weight), twist = ratio (f − excess x_parent)/weight."""
+    plan = elimination.plan
+    f, loaded = load
+    torques, angles, twists, excesses = list(f), list(x), list(twist), list(elimination.excess)
+    scratch = np.empty(f.shape[1], dtype=f.dtype)
+    multiply, add, subtract = np.multiply, np.add, np.subtract
+    leaves = zip(plan.leaf, plan.parent, plan.leaf_pair, elimination.leaf_ratio, elimination.leaf_weight, strict=True)
+    for node, parent, pair, ratio, weight in reversed(list(leaves)):
+        here, above, inverse = angles[node], angles[parent], 1 / weight
+        multiply(excesses[node], above, scratch)
+        subtract(torques[node], scratch, scratch)
+        multiply(scratch, ratio, scratch)
+        multiply(scratch, inverse, twists[pair])
+        if loaded[node]:
+            multiply(torques[node], inverse, here)
+            add(here, above, here)
+            multiply(here, ratio, here)
+        else:
+            multiply(above, ratio, here)
 
 
 def respond(
@@ -109,41 +120,44 @@ def respond(
 
     omega2 (F,) [rad²/s²]; torque (nodes, F) or (nodes, 1) [N·m]; values as for `eliminate`.
     """
-    parts = []
-    for start in range(0, max(len(omega2), 1), CHUNK_POINTS):
+    points = len(omega2)
+    if points <= CHUNK_POINTS:
+        return solve(eliminate(network, plan, omega2, values), torque)
+    whole: Solution | None = None
+    for start in range(0, points, CHUNK_POINTS):
         cut = slice(start, start + CHUNK_POINTS)
         own = None if values is None else _cut(values, cut)
         here = torque if torque.shape[1] == 1 else torque[:, cut]
-        parts.append(solve(eliminate(network, plan, omega2[cut], own), here))
-    if len(parts) == 1:
-        return parts[0]
-    return Solution(
-        angle=np.concatenate([part.angle for part in parts], axis=1),
-        spring_twist=np.concatenate([part.spring_twist for part in parts], axis=1),
-        tie_twist=np.concatenate([part.tie_twist for part in parts], axis=1),
-        link_torque=np.concatenate([part.link_torque for part in parts], axis=1),
-    )
+        part = solve(eliminate(network, plan, omega2[cut], own), here)
+        whole = whole or _room_for(part, points)
+        for name in ("angle", "spring_twist", "tie_twist", "link_torque"):
+            getattr(whole, name)[:, cut] = getattr(part, name)
+    assert whole is not None
+    return whole
+
+
+def _room_for(part: Solution, points: int) -> Solution:
+    """Empty arrays like those of one chunk, for all points."""
+    parts = (part.angle, part.spring_twist, part.tie_twist, part.link_torque)
+    return Solution(*[np.empty((len(rows), points), dtype=rows.dtype) for rows in parts])
 
 
 def _cut(values: ElementValues, cut: slice) -> ElementValues:
     def part(of: Values | None) -> Values | None:
         return None if of is None else [value[cut] if np.ndim(value) else value for value in of]
 
-    return ElementValues(
-        part(values.springs), part(values.ties), part(values.inertia), part(values.compliances)
-    )
+    return ElementValues(part(values.springs), part(values.ties), part(values.inertia), part(values.compliances))
 
 
 def _solution(plan: Plan, tie_node: Ints, x: Numbers, twist: Numbers) -> Solution:
-    signs = np.array(plan.spring_sign, dtype=np.intp)
-    spring_twist = np.zeros((len(signs), x.shape[1]), dtype=x.dtype)
-    if len(signs):
-        joined = list(plan.spring_pair)
-        if NO_PAIR in joined:
-            here = [number for number, pair in enumerate(joined) if pair != NO_PAIR]
-            spring_twist[here] = twist[[joined[number] for number in here]] * signs[here, None]
-        else:
-            np.multiply(twist[joined], signs[:, None], spring_twist)
+    signs = np.array(plan.spring_sign, dtype=np.intp)[:, None]
+    joined = plan.spring_pair
+    if joined == tuple(range(len(joined))):
+        spring_twist = twist[: len(joined)]
+    else:
+        spring_twist = twist[list(joined)] if len(twist) else np.zeros((len(joined), x.shape[1]), x.dtype)
+        spring_twist[[pair == NO_PAIR for pair in joined]] = 0
+    np.multiply(spring_twist, signs, spring_twist)
     return Solution(x[: plan.nodes], spring_twist, x[tie_node], x[plan.nodes :])
 
 

@@ -82,3 +82,9 @@ def build_schema() -> Schema:
 def schema_as_text() -> str:
     """The schema as the shipped file holds it."""
     return json.dumps(build_schema(), indent=1, ensure_ascii=False) + "\n"
+
+
+if __name__ == "__main__":
+    from pathlib import Path
+
+    Path(__file__).with_name("train-file.schema.json").write_text(schema_as_text(), encoding="utf-8")

@@ -10,15 +10,18 @@ from quillshaft.assess.results import Screening
 from quillshaft.present.charts import look
 from quillshaft.present.charts.lanes import GROUND, Joint, Lanes
 from quillshaft.present.charts.phrases import inertia, softest, stiffness
-from quillshaft.present.charts.placing import Plan
-from quillshaft.present.charts.symbols import TALLEST_DISC_MM
+from quillshaft.present.charts.placing import Placed, Plan
+from quillshaft.present.charts.symbols import disc_height
 
 Side = Literal["above", "below"]
 
 
 @dataclass(frozen=True)
 class Block:
-    """Lines of text (text, bold) centred at a column, on a side of the shaft; far ones stand beyond the near."""
+    """Lines of text (text, bold) at a column, on a side of the shaft; far ones stand beyond the near.
+
+    Centred where `beside` is 0, else to the right (1) or left (-1) of a joint that runs through both sides.
+    """
 
     lines: tuple[tuple[str, bool], ...]
     row: int
@@ -26,6 +29,7 @@ class Block:
     side: Side
     far: bool
     kind: Literal["station", "link"]
+    beside: int = 0
 
     @property
     def height_mm(self) -> float:
@@ -40,17 +44,18 @@ class Row:
     near: dict[str, float] = field(default_factory=lambda: {"above": 0.0, "below": 0.0})
     far: dict[str, float] = field(default_factory=lambda: {"above": 0.0, "below": 0.0})
     gap: float = 3.0
+    reach: float = 5.0
     shaft_y: float = 0.0
 
     @property
     def above(self) -> float:
         """Height above the shaft's axis."""
-        return TALLEST_DISC_MM / 2 + 0.8 + self.near["above"] + self.far["above"]
+        return self.reach + self.near["above"] + self.far["above"]
 
     @property
     def below(self) -> float:
         """Height below the shaft's axis, without the gap."""
-        return TALLEST_DISC_MM / 2 + 0.8 + self.near["below"] + self.far["below"]
+        return self.reach + self.near["below"] + self.far["below"]
 
 
 def joint_sides(plan: Plan) -> dict[tuple[int, int], set[Side]]:
@@ -88,41 +93,37 @@ def text_blocks(screening: Screening, parts: Lanes, plan: Plan, pitch_mm: float,
                 continue
             far = home in used[k] and away not in used[k]
             lines = _station_lines(screening, bead, pitch_mm - 1.6, numbers)
-            blocks.append(
-                Block(lines, placed.row, placed.columns[k], away if far else home, far, "station")
-            )
+            beside = _heading(placed) if len(used[k]) > 1 else 0
+            side = away if far else home
+            blocks.append(Block(lines, placed.row, placed.columns[k], side, far, "station", beside))
         for k, link in enumerate(lane.links):
             column = (placed.columns[k] + placed.columns[k + 1]) / 2
             lines = _link_lines(screening, link, pitch_mm - 1.6, numbers)
             blocks.append(Block(lines, placed.row, column, away, False, "link"))
-    return blocks + _cut_blocks(screening, parts, plan, pitch_mm, numbers)
+    return [*blocks, *_cut_blocks(screening, parts, plan, pitch_mm, numbers)]
 
 
-def _cut_blocks(
-    screening: Screening, parts: Lanes, plan: Plan, pitch_mm: float, numbers: bool
-) -> Iterable[Block]:
+def _cut_blocks(screening: Screening, parts: Lanes, plan: Plan, pitch_mm: float, numbers: bool) -> Iterable[Block]:
     """The label of a shaft that goes on in the next row stands at its first half."""
     for joint in parts.joints:
         if joint.cut:
             row, column = plan.spot(joint.ends[0])
             forward = _direction(plan, joint.ends[0])
             lines = _link_lines(screening, joint.link, pitch_mm - 1.6, numbers)
-            home = any(
-                "above" in sides for end, sides in joint_sides(plan).items() if end[0] == joint.ends[0][0]
-            )
+            home = any("above" in sides for end, sides in joint_sides(plan).items() if end[0] == joint.ends[0][0])
             yield Block(lines, row, column + 0.5 * forward, "above" if home else "below", False, "link")
 
 
 def _direction(plan: Plan, end: tuple[int, int]) -> int:
-    columns = plan.placed[end[0]].columns
-    turned = len(columns) > 1 and columns[-1] < columns[0]
-    outward = 1 if end[1] else -1
-    return -outward if turned else outward
+    return _heading(plan.placed[end[0]]) * (1 if end[1] else -1)
 
 
-def _station_lines(
-    screening: Screening, station: int, limit_mm: float, numbers: bool
-) -> tuple[tuple[str, bool], ...]:
+def _heading(placed: Placed) -> int:
+    """1 for a lane drawn to the right, -1 for one drawn to the left."""
+    return -1 if placed.columns[-1] < placed.columns[0] else 1
+
+
+def _station_lines(screening: Screening, station: int, limit_mm: float, numbers: bool) -> tuple[tuple[str, bool], ...]:
     name = screening.graph.stations[station]
     lines = [
         (line, True)
@@ -135,9 +136,7 @@ def _station_lines(
     return tuple(lines)
 
 
-def _link_lines(
-    screening: Screening, number: int, limit_mm: float, numbers: bool
-) -> tuple[tuple[str, bool], ...]:
+def _link_lines(screening: Screening, number: int, limit_mm: float, numbers: bool) -> tuple[tuple[str, bool], ...]:
     link = screening.graph.links[number]
     bold = link == softest(screening.graph)
     lines = [(line, bold) for line in look.wrap_name(link.name, limit_mm, bold=bold)]
@@ -147,9 +146,16 @@ def _link_lines(
     return tuple(lines)
 
 
-def row_heights(plan: Plan, blocks: list[Block], gap_lines: dict[int, int]) -> list[Row]:
+def row_heights(
+    screening: Screening, parts: Lanes, plan: Plan, blocks: list[Block], gap_lines: dict[int, int]
+) -> list[Row]:
     """Heights of all rows; `gap_lines` is the number of text lines in the gap under a row."""
     rows = [Row() for _ in range(plan.rows)]
+    inertia_kgm2 = screening.graph.inertia_kgm2
+    for lane, placed in zip(parts.lanes, plan.placed, strict=True):
+        tallest = max((float(inertia_kgm2[bead]) for bead in lane.beads if bead != GROUND), default=0.0)
+        half = disc_height(tallest, float(max(inertia_kgm2))) / 2 + 0.8
+        rows[placed.row].reach = max(rows[placed.row].reach, half)
     for block in blocks:
         store = rows[block.row].far if block.far else rows[block.row].near
         store[block.side] = max(store[block.side], block.height_mm)
@@ -162,10 +168,12 @@ def row_heights(plan: Plan, blocks: list[Block], gap_lines: dict[int, int]) -> l
     return rows
 
 
-def joint_text(screening: Screening, joint: Joint) -> str:
+def joint_text(screening: Screening, joint: Joint, joints: tuple[Joint, ...]) -> str:
     """Name, teeth and ratio of a gear between rows; name and stiffness of anything else."""
     graph = screening.graph
     link = graph.links[joint.link]
+    if joint is not next(other for other in joints if other.link == joint.link):
+        return f"{link.name}, the same stage"
     words = [link.name]
     if link.ratio_text:
         words.append(link.ratio_text + _fixed_member(screening, link.name))

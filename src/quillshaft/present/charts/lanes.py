@@ -170,9 +170,7 @@ def _joined(
             lanes.append(Lane((GROUND,), ()))
             continue
         first = _hub(link)
-        joints += [
-            Joint(index, (place[first], place[station])) for station in link.stations if station != first
-        ]
+        joints += [Joint(index, (place[first], place[station])) for station in link.stations if station != first]
     return tuple(lanes), tuple(joints)
 
 

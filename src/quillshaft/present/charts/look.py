@@ -121,9 +121,7 @@ def _chunks(name: str, limit_mm: float, size_pt: float, bold: bool) -> list[str]
     return chunks
 
 
-def shorten(
-    text: str, limit_mm: float, size_pt: float = SMALL_PT, bold: bool = False, from_start: bool = False
-) -> str:
+def shorten(text: str, limit_mm: float, size_pt: float = SMALL_PT, bold: bool = False, from_start: bool = False) -> str:
     """The text, or as much of it as fits beside an ellipsis at its end (or start)."""
     if width_mm(text, size_pt, bold) <= limit_mm:
         return text
@@ -149,10 +147,17 @@ def frame(title: str, body_mm: float) -> Frame:
     height_mm = body_mm + head_mm
     figure = Figure(figsize=(WIDTH_MM / MM_PER_INCH, height_mm / MM_PER_INCH), facecolor=PAPER)
     figure.set_label(title)
+    made = Frame(figure, WIDTH_MM, height_mm, body_mm)
+    heading(made, height_mm - 0.6, lines)
+    return made
+
+
+def heading(made: Frame, top_mm: float, lines: list[str]) -> None:
+    """Bold lines downward from a height [mm] above the figure's foot."""
     for index, line in enumerate(lines):
-        figure.text(
+        made.figure.text(
             0.0,
-            1.0 - (index * line_mm(TITLE_PT) + 0.6) / height_mm,
+            (top_mm - index * line_mm(TITLE_PT)) / made.height_mm,
             line,
             fontsize=TITLE_PT,
             fontweight="bold",
@@ -162,7 +167,6 @@ def frame(title: str, body_mm: float) -> Frame:
             va="top",
             parse_math=False,
         )
-    return Frame(figure, WIDTH_MM, height_mm, body_mm)
 
 
 def title_of(figure: Figure) -> str:

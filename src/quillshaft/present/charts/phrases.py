@@ -36,13 +36,19 @@ def stiffness(value_nm_rad: float) -> str:
     """A torsional stiffness [N·m/rad] with three digits and a fitting unit."""
     for size, unit in ((1e9, "GN·m/rad"), (1e6, "MN·m/rad"), (1e3, "kN·m/rad")):
         if value_nm_rad >= 0.1 * size:
-            return f"{number(value_nm_rad / size, 3)} {unit}"
-    return f"{number(value_nm_rad, 3)} N·m/rad"
+            return f"{brief(value_nm_rad / size)} {unit}"
+    return f"{brief(value_nm_rad)} N·m/rad"
 
 
 def inertia(value_kgm2: float) -> str:
     """A polar inertia [kg·m²] with three digits."""
-    return f"{number(value_kgm2, 3)} kg·m²"
+    return f"{brief(value_kgm2)} kg·m²"
+
+
+def brief(value: float) -> str:
+    """A number with three significant digits, closing zeros left out."""
+    text = number(value, 3)
+    return text.rstrip("0").rstrip(".") if "." in text and "e" not in text else text
 
 
 def softest(graph: TorsionalGraph) -> GraphLink | None:
@@ -58,12 +64,12 @@ def softest(graph: TorsionalGraph) -> GraphLink | None:
 
 
 def link_words(screening: Screening, link: GraphLink) -> str:
-    """ "the elastomer coupling flex-block", "shaft pump-shaft", "gear reduction"."""
+    """ "elastomer coupling flex-block", "shaft pump-shaft", "gear reduction"."""
     if link.kind == "coupling":
         kind = next(item.kind for item in screening.train.couplings if item.name == link.name)
-        return f"the {kind + ' ' if kind else ''}coupling {link.name}"
+        return f"{kind + ' ' if kind else ''}coupling {link.name}"
     word = {"shaft": "shaft", "mesh": "gear", "epicyclic": "epicyclic stage", "tie": "tie"}[link.kind]
-    return f"the {word} {link.name}"
+    return f"{word} {link.name}"
 
 
 def train_title(screening: Screening) -> str:

@@ -11,6 +11,10 @@ from dataclasses import dataclass
 from quillshaft.present.charts.lanes import Joint, Lanes
 
 
+ROOMY = 7
+"""Up to so many columns a lane rather goes on to the right than back under its neighbour."""
+
+
 @dataclass(frozen=True)
 class Placed:
     """A lane in its row: column of each bead."""
@@ -93,7 +97,8 @@ def _beside(
             low, high = min(left, *columns), max(right, *columns)
             if high - low + 1 > widest or _taken(row, columns, placed):
                 continue
-            cost = 3 * (high - low - (right - left)) + 2 * (row < home.row) + turned
+            growth = 1 if high - low < ROOMY else 3
+            cost = growth * (high - low - (right - left)) + 2 * (row < home.row) + 8 * turned
             if best is None or cost < best[0]:
                 best = cost, Placed(new[0], row, columns)
     return best[1] if best else _new_row(new[0], parts, placed, left)
@@ -121,9 +126,7 @@ def _settled(parts: Lanes, placed: dict[int, Placed]) -> Plan:
         Placed(index, placed[index].row - top, tuple(column - left for column in placed[index].columns))
         for index in range(len(parts.lanes))
     )
-    plan = Plan(
-        1 + max(lane.row for lane in moved), 1 + max(max(lane.columns) for lane in moved), moved, (), ()
-    )
+    plan = Plan(1 + max(lane.row for lane in moved), 1 + max(max(lane.columns) for lane in moved), moved, (), ())
     straight: list[Joint] = []
     lettered: list[Joint] = []
     taken: set[tuple[int, int]] = set()

@@ -34,9 +34,7 @@ def box(axes: Axes, centre: Point, size: Point, face: str, width_pt: float = loo
     from matplotlib.patches import Rectangle
 
     corner = (centre[0] - size[0] / 2, centre[1] - size[1] / 2)
-    axes.add_patch(
-        Rectangle(corner, *size, facecolor=face, edgecolor=look.INK, linewidth=width_pt, zorder=z)
-    )
+    axes.add_patch(Rectangle(corner, *size, facecolor=face, edgecolor=look.INK, linewidth=width_pt, zorder=z))
 
 
 def disc(axes: Axes, at: Point, height_mm: float, geared: bool) -> None:
@@ -65,9 +63,7 @@ def coupling(axes: Axes, start: Point, end: Point) -> None:
     half = 1.9
     box(axes, (x, y), (2 * half, 2 * half), look.PAPER)
     for sign in (1, -1):
-        axes.plot(
-            [x - half, x + half], [y - sign * half, y + sign * half], lw=look.THIN_PT, color=look.INK, zorder=4
-        )
+        axes.plot([x - half, x + half], [y - sign * half, y + sign * half], lw=look.THIN_PT, color=look.INK, zorder=4)
 
 
 def spring(axes: Axes, start: Point, end: Point) -> None:

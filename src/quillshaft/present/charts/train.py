@@ -73,7 +73,7 @@ def _lay_out(screening: Screening, widest: int, numbers: bool) -> Sheet:
     for joint, lines, _, _ in labels:
         row = min(plan.spot(end)[0] for end in joint.ends)
         gaps[row] = max(gaps.get(row, 0), len(lines))
-    return Sheet(parts, plan, row_heights(plan, blocks, gaps), blocks, labels, pitch, numbers)
+    return Sheet(parts, plan, row_heights(screening, parts, plan, blocks, gaps), blocks, labels, pitch, numbers)
 
 
 def _joint_labels(screening: Screening, plan: Plan, pitch: float) -> list[tuple[Joint, list[str], float, str]]:
@@ -94,7 +94,7 @@ def _joint_labels(screening: Screening, plan: Plan, pitch: float) -> list[tuple[
         room_right = (right - column) * pitch - 4.0 if right is not None else look.WIDTH_MM - here - 2.5
         room_left = (column - left) * pitch / 2 - 4.0 if left is not None else here - 2.5
         room_right = room_right if right is None else min(room_right, max(room_right / 2, room_right - 4.0))
-        text = joint_text(screening, joint)
+        text = joint_text(screening, joint, plan.straight + plan.lettered)
         if look.width_mm(text) > room_right and room_left > room_right:
             labels.append((joint, look.wrap(text, room_left), -2.2, "right"))
         else:
@@ -110,7 +110,7 @@ def _draw(axes: Axes, screening: Screening, sheet: Sheet) -> None:
     for joint, lines, offset, align in sheet.joint_labels:
         _write_joint(axes, sheet, joint, lines, offset, align)
     for joint, name in zip(sheet.plan.lettered, LETTERS * 4, strict=False):
-        _draw_lettered(axes, sheet, joint, name)
+        _draw_lettered(axes, screening, sheet, joint, name)
     for block in sheet.blocks:
         _write_block(axes, sheet, block)
 
@@ -171,9 +171,7 @@ def _draw_joint(axes: Axes, screening: Screening, sheet: Sheet, joint: Joint) ->
     kinds[screening.graph.links[joint.link].kind](axes, start, end)
 
 
-def _write_joint(
-    axes: Axes, sheet: Sheet, joint: Joint, lines: list[str], offset: float, align: str
-) -> None:
+def _write_joint(axes: Axes, sheet: Sheet, joint: Joint, lines: list[str], offset: float, align: str) -> None:
     row, column = min(sheet.plan.spot(end) for end in joint.ends)
     middle = sheet.rows[row].shaft_y - sheet.rows[row].below - sheet.rows[row].gap / 2
     for index, text in enumerate(lines):
@@ -181,24 +179,33 @@ def _write_joint(
         look.put(axes, sheet.x(column) + offset, y, text, ha=align, color=look.ACCENT, gid="joint")
 
 
-def _draw_lettered(axes: Axes, sheet: Sheet, joint: Joint, name: str) -> None:
+def _draw_lettered(axes: Axes, screening: Screening, sheet: Sheet, joint: Joint, name: str) -> None:
     for end, outward in zip(joint.ends, (1, -1), strict=True):
         row, column = sheet.plan.spot(end)
         x, y = sheet.x(column), sheet.rows[row].shaft_y
         if not joint.cut:
-            symbols.letter(axes, (x, y), name)
+            symbols.letter(axes, (x - 2.9, y + 2.6), name)
             continue
         columns = sheet.plan.placed[end[0]].columns
         sign = -outward if columns[-1] < columns[0] else outward
         far = x + sign * min(0.42 * sheet.pitch_mm, 7.0)
-        symbols.shaft(axes, (x, y), (far, y))
+        draw = symbols.coupling if _is_coupling(screening, joint) and outward > 0 else symbols.shaft
+        draw(axes, (x, y), (far, y))
         symbols.letter(axes, (far, y), name)
+
+
+def _is_coupling(screening: Screening, joint: Joint) -> bool:
+    return screening.graph.links[joint.link].kind == "coupling"
 
 
 def _write_block(axes: Axes, sheet: Sheet, block: Block) -> None:
     row = sheet.rows[block.row]
-    reach = symbols.TALLEST_DISC_MM / 2 + 0.8 + (row.near[block.side] if block.far else 0.0)
-    x = sheet.x(block.column)
+    reach = row.reach + (row.near[block.side] if block.far else 0.0)
+    x = sheet.x(block.column) + 2.4 * block.beside
+    if block.far:
+        sign = 1 if block.side == "above" else -1
+        symbols.line(axes, [(x, row.shaft_y), (x, row.shaft_y + sign * reach)], look.HAIR_PT, look.QUIET)
+    align = {0: "center", 1: "left", -1: "right"}[block.beside]
     for index, (text, bold) in enumerate(block.lines):
         if block.side == "below":
             y = row.shaft_y - reach - (index + 0.5) * look.line_mm()
@@ -206,7 +213,7 @@ def _write_block(axes: Axes, sheet: Sheet, block: Block) -> None:
             y = row.shaft_y + reach + (len(block.lines) - index - 0.5) * look.line_mm()
         color = look.INK if block.kind == "station" else look.QUIET
         weight = "bold" if bold else "normal"
-        look.put(axes, x, y, text, color=color, fontweight=weight, gid=block.kind)
+        look.put(axes, x, y, text, color=color, fontweight=weight, ha=align, gid=block.kind)
 
 
 def _note_lines(screening: Screening, sheet: Sheet) -> list[str]:
@@ -220,11 +227,14 @@ def _note_lines(screening: Screening, sheet: Sheet) -> list[str]:
         text += " Zigzag: tie to ground."
     text += f" Speeds at rated; softest link (bold) as referred to {screening.train.operation.speed_at}."
     text += " Inertia and stiffness are actual." if sheet.numbers else " Values stand in the data tables."
-    lines = look.wrap(text, look.WIDTH_MM - 2.0)
+    lines = look.wrap(text, look.WIDTH_MM - 5.0)
+    all_joints = sheet.plan.straight + sheet.plan.lettered
     for joint, name in zip(sheet.plan.lettered, LETTERS * 4, strict=False):
         if not joint.cut:
             ends = " and ".join(_bead_name(screening, sheet, end) for end in joint.ends)
-            lines += look.wrap(f"{name}: {joint_text(screening, joint)}, joins {ends}.", look.WIDTH_MM - 2.0)
+            lines += look.wrap(
+                f"{name}: {joint_text(screening, joint, all_joints)}, joins {ends}.", look.WIDTH_MM - 5.0
+            )
     return lines
 
 

@@ -10,14 +10,14 @@ from reportlab.platypus import Paragraph
 
 from quillshaft.present.pdf.text import escaped
 
-ROW_HEIGHT_LIMIT_PT = 260.0
+ROW_HEIGHT_LIMIT_PT = 150.0
 _WINDOW_LINES = 200
 _USUAL_CHARACTER_EM = 0.55
 _WIDEST_CHARACTER_EM = 1.2
 
 
 def paragraph_pieces(text: str, style: ParagraphStyle, width_pt: float) -> list[Any]:
-    """Plain text as one paragraph of this width or, where it is taller than 260 pt, as several."""
+    """Plain text as one paragraph of this width or, where it is taller than 150 pt, as several."""
     if _greatest_height(text, style, width_pt) <= ROW_HEIGHT_LIMIT_PT:
         return [Paragraph(escaped(text), style)]
     pieces: list[Any] = []

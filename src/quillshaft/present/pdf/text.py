@@ -7,6 +7,7 @@ from __future__ import annotations
 
 import unicodedata
 from bisect import bisect_right
+from functools import lru_cache
 from xml.sax.saxutils import escape
 
 from quillshaft.present.pdf.fonts import MONO, SANS, drawable_codes, text_width_pt
@@ -53,6 +54,7 @@ def cut(text: str, length: int) -> str:
     return text if len(text) <= length else text[: length - 1] + "…"
 
 
+@lru_cache(maxsize=64)
 def fitted(text: str, font: str, size_pt: float, width_pt: float) -> str:
     """One line of text, cut with an ellipsis where it is wider than `width_pt` points."""
     line = one_line(text, font)

@@ -25,7 +25,7 @@ def data_parts(screening: Any) -> list[Any]:
             "Data of others are used as given. A tolerance marked * is a default of the tool; everything "
             "assumed is listed under Assumptions. Numbers are in the units that the file declares."
         ),
-        data_table(head, rows, column_widths=(24, 40, 15, 31, 13)),
+        data_table(head, rows, column_widths=(25, 42, 17, 30, 16)),
         heading("Materials and machines", 2),
         data_table(("Machine", "kind", "at", "data", "source"), [_machine(item) for item in train.machines])
         if train.machines
@@ -37,8 +37,15 @@ def data_parts(screening: Any) -> list[Any]:
             "the square of the speed ratio. Ratios are exact fractions of tooth numbers; a minus sign at a "
             "speed is a shaft that turns the other way."
         ),
-        data_table(station_heads(screening), station_rows(screening), align="lrrrrl"),
-        data_table(link_heads(screening), link_rows(screening), align="lllrrrrrl"),
+        data_table(
+            station_heads(screening), station_rows(screening), column_widths=(22, 18, 16, 17, 20, 50), align="lrrrrl"
+        ),
+        data_table(
+            link_heads(screening),
+            link_rows(screening),
+            column_widths=(22, 14, 24, 20, 20, 15, 18, 13, 15),
+            align="lllrrrrrl",
+        ),
         note(
             "Stiffness, mean torque and wind-up of a link are those at its first-named station. Rigid: no "
             "stiffness is given, the two sides move as one. Wind-up follows from the mean torque at rated power."
@@ -48,7 +55,7 @@ def data_parts(screening: Any) -> list[Any]:
 
 def _where(provenance: Provenance) -> str:
     words = (provenance.source, provenance.document, provenance.date, provenance.note)
-    return ", ".join(word for word in words if word) or "not stated"
+    return ", ".join(word for word in words if word) or "–"
 
 
 def _tolerance(train: Train, element: str, tolerance: Tolerance) -> str:
@@ -65,7 +72,7 @@ def _row(train: Train, element: str, given: str, tolerance: Tolerance, provenanc
         given,
         _tolerance(train, element, tolerance),
         _where(provenance),
-        provenance.status or "not stated",
+        provenance.status or "–",
     )
 
 

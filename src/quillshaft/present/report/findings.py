@@ -54,7 +54,7 @@ def _modes(screening: Screening) -> list[Any]:
     )
     if beyond:
         text += f" The {beyond} highest lie above every source and are listed without being judged."
-    table = data_table(head, rows, column_widths=(8, 13, 17, 27, 14, 62), align="rrrrrl")
+    table = data_table(head, rows, column_widths=(11, 15, 20, 30, 18, 60), align="rrrrrl")
     return [heading("Natural frequencies and modes"), paragraph(text), table]
 
 

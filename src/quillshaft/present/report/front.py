@@ -19,6 +19,7 @@ from quillshaft.present.pdf.document import (
 )
 from quillshaft.present.units import SHOWN
 from quillshaft.present.words import (
+    dismissed_words,
     hertz,
     number,
     pair_sentence,
@@ -76,7 +77,10 @@ def _verdict(screening: Screening) -> list[Any]:
     dismissed = [pair for pair in screening.interferences if pair.dismissed is not None]
     detail = f"Over the tolerances: {verdict_sentence(screening, worst=True)}"
     detail += f"\nNominal: {verdict_sentence(screening, worst=False)}"
-    parts: list[Any] = [stamp(STAMPS[screening.worst_verdict], TONES[screening.worst_verdict], detail)]
+    text, tone = STAMPS[screening.gravest_verdict], TONES[screening.gravest_verdict]
+    if tone == "pass" and dismissed_words(screening):
+        text, tone = f"PASS{dismissed_words(screening)}", "restriction"
+    parts: list[Any] = [stamp(text, tone, detail)]
     pairs = []
     if counted:
         governing = counted[0]

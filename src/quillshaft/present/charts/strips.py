@@ -1,0 +1,70 @@
+"""The train laid out along strips for mode shapes: the longest run first, each branch on a strip of its own."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from quillshaft.graph.torsional import TorsionalGraph
+from quillshaft.present.charts.lanes import link_between, pair_neighbours
+from quillshaft.present.charts.phrases import train_paths
+
+
+@dataclass(frozen=True)
+class Strip:
+    """A run of stations and the links between them.
+
+    lead      the first station stands on an earlier strip and is repeated here
+    caption   how the run joins an earlier one; empty for the first
+    """
+
+    stations: tuple[int, ...]
+    links: tuple[int, ...]
+    lead: bool
+    caption: str
+
+
+def strips(graph: TorsionalGraph) -> tuple[Strip, ...]:
+    """All stations along strips, in file order of where they branch off."""
+    around = pair_neighbours(enumerate(graph.links))
+    done: set[int] = set()
+    out = []
+    for path in train_paths(graph):
+        out.append(_strip(graph, around, path, done))
+        done |= set(path)
+    return tuple(out)
+
+
+def _strip(
+    graph: TorsionalGraph, around: dict[int, list[tuple[int, int]]], path: list[int], done: set[int]
+) -> Strip:
+    joins = [
+        (place, other, link)
+        for place, station in enumerate(path)
+        for other, link in around.get(station, [])
+        if other in done
+    ]
+    ends = [join for join in joins if join[0] in (0, len(path) - 1)]
+    lead = bool(ends)
+    if ends:
+        place, other, link = ends[0]
+        path = [other, *(path if place == 0 else path[::-1])]
+    links = tuple(link_between(around, a, b) for a, b in zip(path, path[1:], strict=False))
+    return Strip(tuple(path), links, lead, _caption(graph, path, joins, ends, done))
+
+
+def _caption(
+    graph: TorsionalGraph,
+    path: list[int],
+    joins: list[tuple[int, int, int]],
+    ends: list[tuple[int, int, int]],
+    done: set[int],
+) -> str:
+    if ends:
+        return f"branch from {graph.stations[ends[0][1]]} by {graph.links[ends[0][2]].name}"
+    if joins:
+        place, other, link = joins[0]
+        return f"joined at {graph.stations[path[place]]} to {graph.stations[other]} by {graph.links[link].name}"
+    stage = next(
+        (link for link in graph.links if len(link.stations) > 2 and set(link.stations) & set(path)), None
+    )
+    return f"at stage {stage.name}" if stage is not None and done else ""
