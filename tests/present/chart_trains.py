@@ -62,8 +62,7 @@ def _genset() -> str:
     stations = "".join(f'{n} = {{ inertia = "{j} kg m^2" }}\n' for n, j in zip(names, inertia, strict=True))
     pairs = list(zip(names[:7], names[1:8], strict=True))
     shafts = "".join(
-        f'crank-{i} = {{ between = ["{a}", "{b}"], stiffness = "3.1 MN m/rad" }}\n'
-        for i, (a, b) in enumerate(pairs)
+        f'crank-{i} = {{ between = ["{a}", "{b}"], stiffness = "3.1 MN m/rad" }}\n' for i, (a, b) in enumerate(pairs)
     )
     cylinders = ", ".join(
         f'{{ at = "throw-{n}", fires-at = "{angle} deg" }}' for n, angle in enumerate(FIRING, start=1)
@@ -179,9 +178,12 @@ ring-gear = "0 rpm"
 """
 )
 
-GRID = CLEAR.replace("[machines]", """[ties]
+GRID = CLEAR.replace(
+    "[machines]",
+    """[ties]
 grid = { at = "rotor", stiffness = "0.3 MN m/rad" }
-[machines]""")
+[machines]""",
+)
 
 
 def _long(count: int, prefix: str = "") -> str:
@@ -215,10 +217,13 @@ LONG_25 = _long(25)
 LONG_40 = _long(40)
 LONG_NAMES = _long(9, prefix="intermediate-line-north-bay-")
 
-DISMISSED = PUMP + """
+DISMISSED = (
+    PUMP
+    + """
 [dismissals]
 tone = { source = "interharmonic", mode = 2, frequency = "89 Hz", because = "filtered", by = "A. Berg" }
 """
+)
 
 LOOP = """
 [operation]

@@ -7,17 +7,18 @@ from typing import Any
 
 from quillshaft.train.materials import BUILT_IN
 from quillshaft.train.model import BALANCE, FIXED
+from quillshaft.train.overlay import PathParts, added_by
 from quillshaft.train.problems import did_you_mean
 from quillshaft.train.quantity import QuantityError, read_quantity
 from quillshaft.train.validate import Findings, Rows
 
 LINK_TABLES = ("shafts", "couplings", "gears", "ties")
+DEGREES = 57.29577951308232
 LAWS = ("square", "constant-torque", "constant-power")
 
 
 def _names(findings: Findings, rows: Rows) -> None:
-    stations = rows.declared["stations"]
-    if not stations:
+    if not rows.declared["stations"] and all(problem.path != ("stations",) for problem in findings.problems):
         findings.add(("stations",), "a train needs stations", None, "[stations] with at least one row")
     for table in ("stations", *LINK_TABLES):
         for name in rows.declared[table]:
@@ -27,16 +28,23 @@ def _names(findings: Findings, rows: Rows) -> None:
     for table in LINK_TABLES:
         for name in rows.declared[table]:
             if name in seen:
-                message = f"the name {name} is taken by [{seen[name]}]: links need names of their own"
-                findings.add((table, name), message, None)
+                message = f"the name {name} is taken by [{seen[name]}]"
+                findings.add((table, name), message, None, "a name that no other link has")
             seen[name] = table
 
 
-def _station(findings: Findings, rows: Rows, path: tuple[str | int, ...], name: str) -> None:
+def _station(findings: Findings, rows: Rows, path: PathParts, name: str, seen: str | None = None) -> None:
+    """A station's name must stand in [stations]; where that table is missing, one problem says so for all."""
     stations = rows.declared["stations"]
-    if name not in stations:
-        hint = did_you_mean(name, stations)
-        findings.add(path, f"there is no station of this name{hint}", name, "a name from [stations]")
+    if name in stations or not stations:
+        return
+    base = findings.document.data.get("stations")
+    if isinstance(base, dict) and name in base:
+        findings.add(path, f"the case leaves the station {name} out, but it is still named here", seen)
+        return
+    findings.add(
+        path, f"there is no station of this name{did_you_mean(name, stations)}", seen, "a name from [stations]"
+    )
 
 
 def _links(findings: Findings, rows: Rows) -> None:
@@ -45,16 +53,16 @@ def _links(findings: Findings, rows: Rows) -> None:
             if not hasattr(row, "between"):
                 continue
             for index, station in enumerate(row.between):
-                _station(findings, rows, (table, name, "between", index), station)
+                _station(findings, rows, (table, name, "between", index), station, station)
             if row.between[0] == row.between[1]:
-                findings.add((table, name, "between"), "the two ends are the same station", row.between)
+                findings.add((table, name, "between"), "the two ends are the same station", row.between, "two stations")
             if getattr(row, "referred_to", None) is not None:
-                _station(findings, rows, (table, name, "referred-to"), row.referred_to)
+                _station(findings, rows, (table, name, "referred-to"), row.referred_to, row.referred_to)
     for name, row in rows.keyed["stations"].items():
         if row.referred_to is not None:
-            _station(findings, rows, ("stations", name, "referred-to"), row.referred_to)
+            _station(findings, rows, ("stations", name, "referred-to"), row.referred_to, row.referred_to)
     for name, row in rows.keyed["ties"].items():
-        _station(findings, rows, ("ties", name, "at"), row.at)
+        _station(findings, rows, ("ties", name, "at"), row.at, row.at)
 
 
 def _gears(findings: Findings, rows: Rows) -> None:
@@ -62,8 +70,9 @@ def _gears(findings: Findings, rows: Rows) -> None:
         path = ("gears", name)
         if row.kind == "epicyclic":
             for key in ("sun", "ring", "carrier"):
-                if getattr(row, key) != FIXED:
-                    _station(findings, rows, (*path, key), getattr(row, key))
+                member = getattr(row, key)
+                if member != FIXED:
+                    _station(findings, rows, (*path, key), member, member)
             continue
         measure = row.mesh_stiffness[0] if row.mesh_stiffness else None
         if measure == "mesh_stiffness_per_face" and row.face is None:
@@ -72,35 +81,40 @@ def _gears(findings: Findings, rows: Rows) -> None:
             findings.add(path, "this mesh-stiffness needs the base radius", None, 'module = "6 mm" (normal module)')
         if row.internal and row.teeth[0] == row.teeth[1]:
             findings.add((*path, "teeth"), "an internal mesh has unequal tooth numbers", row.teeth)
-        for key, most in (("helix", 1.05), ("pressure_angle", 0.7)):
+        for key, most, limit in (("helix", 1.05, "0 to 60 degrees"), ("pressure_angle", 0.7, "10 to 40 degrees")):
             value = getattr(row, key)
             if value is not None and value >= most:
-                findings.add((*path, key.replace("_", "-")), f"{value * 57.29578:.0f}° is no gear", None, "degrees")
+                findings.add(
+                    (*path, key.replace("_", "-")), f"an angle of {value * DEGREES:.0f}° is no gear's", None, limit
+                )
 
 
 def _machines(findings: Findings, rows: Rows) -> None:
     for name, row in rows.keyed["machines"].items():
         if row.kind == "reciprocating-engine":
             for index, cylinder in enumerate(row.cylinders):
-                _station(findings, rows, ("machines", name, "cylinders", index, "at"), cylinder.at)
+                _station(findings, rows, ("machines", name, "cylinders", index, "at"), cylinder.at, cylinder.at)
                 turns = row.strokes // 2
                 if cylinder.fires_at >= turns * 6.283185308:
-                    message = f"a {row.strokes}-stroke cylinder fires within {turns * 360} degrees"
-                    findings.add(("machines", name, "cylinders", index, "fires-at"), message)
+                    message = f"{cylinder.fires_at * DEGREES:.6g} degrees lie beyond the working cycle"
+                    allowed = f"0 to below {turns * 360} degrees of a {row.strokes}-stroke engine"
+                    findings.add(("machines", name, "cylinders", index, "fires-at"), message, None, allowed)
         else:
-            _station(findings, rows, ("machines", name, "at"), row.at)
+            _station(findings, rows, ("machines", name, "at"), row.at, row.at)
     places = set(rows.declared["stations"]).union(*(rows.declared[table] for table in LINK_TABLES))
     for name, row in rows.keyed["excitations"].items():
-        if row.at not in places:
-            hint = did_you_mean(row.at, sorted(places))
-            findings.add(("excitations", name, "at"), f"there is no station or link of this name{hint}", row.at)
+        if row.at not in places and rows.declared["stations"]:
+            hint, allowed = did_you_mean(row.at, sorted(places)), "a station, or a link to act inside it"
+            findings.add(
+                ("excitations", name, "at"), f"there is no station or link of this name{hint}", row.at, allowed
+            )
 
 
 def _operation(findings: Findings, rows: Rows) -> None:
     operation = rows.plain.get("operation")
     if operation is None:
         return
-    _station(findings, rows, ("operation", "speed-at"), operation.speed_at)
+    _station(findings, rows, ("operation", "speed-at"), operation.speed_at, operation.speed_at)
     for station in operation.speeds:
         _station(findings, rows, ("operation", "speeds", station), station)
     if operation.range:
@@ -129,6 +143,18 @@ def _dismissals(findings: Findings, rows: Rows, cases: tuple[str, ...]) -> None:
                 findings.add(("dismissals", name, "cases", index), f"there is no case of this name{hint}", case)
 
 
+def _added_rows(findings: Findings, rows: Rows) -> None:
+    """A broken row that a case adds is most often a misspelt element of the base."""
+    for table, names in rows.declared.items():
+        for name in names:
+            case = added_by(findings.document, findings.cases, table, name)
+            if case is not None and name not in rows.keyed[table]:
+                base = findings.document.data.get(table)
+                hint = did_you_mean(name, base if isinstance(base, dict) else ())
+                message = f"the file outside the cases has no {name}, so this row must be complete{hint}"
+                findings.add((table, name), message)
+
+
 def crosscheck(findings: Findings, rows: Rows, cases: tuple[str, ...]) -> None:
     """Everything that needs more than one row; `cases` are the names of the file's cases."""
     _names(findings, rows)
@@ -138,6 +164,7 @@ def crosscheck(findings: Findings, rows: Rows, cases: tuple[str, ...]) -> None:
     _operation(findings, rows)
     _materials(findings, rows)
     _dismissals(findings, rows, cases)
+    _added_rows(findings, rows)
 
 
 def read_power(
@@ -165,7 +192,8 @@ def _read(value: Any, measure: str, system: str, path: tuple[str, ...], findings
     try:
         return read_quantity(value, measure, system).value
     except QuantityError as error:
-        findings.add(path, error.message, value, error.allowed)
+        or_balance = f'; or "{BALANCE}"' if measure == "power" else ""
+        findings.add(path, error.message, value, error.allowed + or_balance)
         return 0.0
 
 
@@ -196,5 +224,7 @@ def read_off(data: Any, findings: Findings) -> dict[str, str]:
         return {}
     for name, reason in data.items():
         if not isinstance(reason, str) or len(reason.strip()) < 3:
-            findings.add(("excitations-off", name), "a source is switched off with a reason", reason, "a sentence")
+            findings.add(
+                ("excitations-off", name), "a source is switched off with a reason", reason, "the reason, in quotes"
+            )
     return {name: str(reason) for name, reason in data.items()}

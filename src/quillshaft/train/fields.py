@@ -9,17 +9,40 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Annotated, Any
 
-from pydantic import BeforeValidator, Field, StrictInt, ValidationInfo
+from pydantic import AfterValidator, BeforeValidator, Field, StrictInt, ValidationInfo
 from pydantic_core import CoreSchema, PydanticCustomError, core_schema
 
-from quillshaft.train.quantity import QuantityError, measure_help, read_quantity, read_tolerance
+from quillshaft.train.problems import shown
+from quillshaft.train.quantity import (
+    MEASURES,
+    QuantityError,
+    measure_help,
+    read_quantity,
+    read_tolerance,
+    which_measure,
+)
 
 NUMBER_OR_TEXT: dict[str, Any] = {"anyOf": [{"type": "string"}, {"type": "number"}]}
 
 
-def complain(message: str, allowed: str | None = None) -> PydanticCustomError:
-    """A validation error in our words; `allowed` is kept in its context."""
-    return PydanticCustomError("train_file", "{message}", {"message": message, "allowed": allowed})
+def complain(message: str, allowed: str | None = None, key: str | None = None) -> PydanticCustomError:
+    """A validation error in our words, about one `key` of the table where that is known."""
+    return PydanticCustomError("train_file", "{message}", {"message": message, "allowed": allowed, "key": key})
+
+
+def printable(text: str) -> str:
+    """The text as it is. Raises PydanticCustomError where it holds characters that do not print."""
+    bad = next((letter for letter in text if not letter.isprintable() and letter not in "\n\t"), None)
+    if bad is not None:
+        raise complain(f"holds a character that does not print (U+{ord(bad):04X})", "text that prints")
+    return text
+
+
+def one_line(text: str) -> str:
+    """The text as it is. Raises PydanticCustomError where it runs over lines or holds what does not print."""
+    if "\n" in text or "\t" in text:
+        raise complain("holds a line end or a tab", "text on one line")
+    return printable(text)
 
 
 def kebab(name: str) -> str:
@@ -73,7 +96,8 @@ class MeasuredPair:
         if not isinstance(value, list) and self.alone:
             value = [value, value]
         if not isinstance(value, list) or len(value) != 2:
-            raise complain("one value or a list of two is wanted" if self.alone else "a list of two is wanted")
+            wanted = "one value, or a list of two" if self.alone else "a list of two values"
+            raise complain(f"has {len(value)} members" if isinstance(value, list) else "is not a list", wanted)
         return self.item.read(value[0], info), self.item.read(value[1], info)
 
     def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
@@ -93,25 +117,36 @@ class AnyMeasure:
 
     def read(self, value: object, info: ValidationInfo) -> tuple[str, float]:
         """(measure, SI value). Raises PydanticCustomError when it is of none of them, or bare."""
-        helps = [measure_help(measure, "SI") for measure in self.measures]
         if not isinstance(value, str):
-            raise complain("a quantity with its unit is wanted", "; or ".join(helps))
+            raise complain("is not a text with a number and its unit", self.help)
+        measure = which_measure(value, self.measures)
+        if measure is None:
+            raise complain(self._why(value), self.help)
+        number = quantity_of(value, measure, info)
+        if number <= 0:
+            raise complain("must be above 0")
+        return measure, number
+
+    @property
+    def help(self) -> str:
+        """What may stand here: an example of every measure."""
+        return " or ".join(f'"{MEASURES[name].example_si}" ({name.replace("_", " ")})' for name in self.measures)
+
+    def _why(self, value: str) -> str:
+        """What is wrong with the number, where that is the same for every measure; else the unit is."""
+        reasons = set()
         for measure in self.measures:
             try:
-                number = quantity_of(value, measure, info)
-            except PydanticCustomError:
-                continue
-            if number <= 0:
-                raise complain("must be above 0")
-            return measure, number
-        raise complain("this is none of the quantities that fit here", "; or ".join(helps))
+                read_quantity(value, measure, "SI")
+            except QuantityError as error:
+                reasons.add(error.message)
+        return reasons.pop() if len(reasons) == 1 else "is a quantity of another kind, or has no unit"
 
     def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
         return core_schema.with_info_plain_validator_function(self.read)
 
     def __get_pydantic_json_schema__(self, _schema: Any, _handler: Any) -> dict[str, Any]:
-        helps = [measure_help(measure, "SI") for measure in self.measures]
-        return {"type": "string", "description": "; or ".join(helps)}
+        return {"type": "string", "description": self.help}
 
 
 @dataclass(frozen=True)
@@ -122,12 +157,19 @@ class Separation:
         """Share by kind; one share alone is {"default": share}. Raises PydanticCustomError otherwise."""
         table = value if isinstance(value, dict) else {"default": value}
         if not table:
-            raise complain("an empty table says nothing", '{ default = "10 %", engine = "5 %" }')
-        shares = {str(kind): quantity_of(share, "share", info) for kind, share in table.items()}
-        for kind, share in shares.items():
-            if not 0 <= share < 1:
-                raise complain(f"{kind}: a separation of {share:.0%} is out of range", "0 % up to below 100 %")
-        return shares
+            raise complain("is an empty table", '{ default = "10 %", engine = "5 %" }')
+        return {str(kind): self._share(kind if table is value else None, share, info) for kind, share in table.items()}
+
+    @staticmethod
+    def _share(kind: str | None, value: object, info: ValidationInfo) -> float:
+        try:
+            share = quantity_of(value, "share", info)
+        except PydanticCustomError as error:
+            context = error.context or {}
+            raise complain(context["message"], context["allowed"], kind) from None
+        if share >= 1:
+            raise complain(f"a separation of {share:.0%} is out of range", "0 % up to below 100 %", kind)
+        return share
 
     def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
         return core_schema.with_info_plain_validator_function(self.read)
@@ -145,7 +187,7 @@ class Hubs:
         """One or two SI lengths. Raises PydanticCustomError otherwise."""
         items = value if isinstance(value, list) else [value]
         if not 1 <= len(items) <= 2:
-            raise complain("a hub engagement, or a list of two, is wanted")
+            raise complain(f"has {len(items)} members", "a hub engagement, or a list with one for each end")
         return tuple(Measured("length").read(item, info) for item in items)
 
     def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
@@ -162,17 +204,18 @@ class SpeedRanges:
     def read(self, value: object, info: ValidationInfo) -> tuple[tuple[float, float], ...]:
         """The ranges [rad/s]. Raises PydanticCustomError when one does not rise or is not a pair."""
         if not isinstance(value, list) or not value:
-            raise complain("a range is wanted", '["900 rpm", "1487 rpm"], or a list of such pairs')
+            raise complain("is not a range", '["900 rpm", "1487 rpm"], or a list of such pairs')
         pairs = value if isinstance(value[0], list) else [value]
         return tuple(sorted(self._pair(pair, info) for pair in pairs))
 
     @staticmethod
     def _pair(pair: Any, info: ValidationInfo) -> tuple[float, float]:
         if not isinstance(pair, list) or len(pair) != 2:
-            raise complain(f"{pair!r} is not a range", 'two speeds, for example ["900 rpm", "1487 rpm"]')
+            raise complain(f"{shown(pair)} is not a range", 'two speeds, for example ["900 rpm", "1487 rpm"]')
         low, high = (quantity_of(end, "speed", info) for end in pair)
         if not 0 < low < high:
-            raise complain(f"the range {pair[0]!r} to {pair[1]!r} does not rise", "the lower speed first, above 0")
+            rise = f"the range {shown(pair[0])} to {shown(pair[1])} does not rise"
+            raise complain(rise, "the lower speed first, above 0")
         return low, high
 
     def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
@@ -234,8 +277,9 @@ HubLengths = Annotated[tuple[float, ...], Hubs()]
 Ranges = Annotated[tuple[tuple[float, float], ...], SpeedRanges()]
 ToleranceField = Annotated[tuple[float, float], RelativeTolerance()]
 Name = Annotated[str, Field(min_length=1, max_length=80, strict=True)]
-Text = Annotated[str, Field(max_length=2000, strict=True)]
-Date = Annotated[str, BeforeValidator(_iso), Field(max_length=40, strict=True)]
+Text = Annotated[str, Field(max_length=2000, strict=True), AfterValidator(printable)]
+Line = Annotated[str, Field(max_length=200, strict=True), AfterValidator(one_line)]
+Date = Annotated[str, BeforeValidator(_iso), Field(max_length=40, strict=True), AfterValidator(one_line)]
 Between = Annotated[list[Name], Field(min_length=2, max_length=2)]
 Teeth = Annotated[StrictInt, Field(ge=3, le=5000)]
 Count = Annotated[StrictInt, Field(ge=1, le=500)]

@@ -1,8 +1,6 @@
 """[machines]: one row class for each kind of machine, chosen by `kind` before it is validated."""
 
-from __future__ import annotations
-
-from typing import Annotated, Literal
+from typing import Annotated, Literal, Self
 
 from pydantic import Field, StrictBool, model_validator
 
@@ -43,11 +41,12 @@ class ConverterFedMotorRow(MachineRow):
     supply: Frequency | None = None
 
     @model_validator(mode="after")
-    def _line(self) -> ConverterFedMotorRow:
+    def _line(self) -> Self:
         if self.line_side and self.supply is None:
-            raise complain("line-side = true needs the supply frequency", 'supply = "50 Hz"')
+            raise complain("needs the supply frequency", 'supply = "50 Hz"', "line-side")
         if self.supply is not None and not self.line_side:
-            raise complain("supply is used only with line-side = true: the shaft sees the converter's output")
+            why = "is used only with line-side = true: the shaft sees the converter's output"
+            raise complain(why, "line-side = true, or no supply", "supply")
         return self
 
 

@@ -6,7 +6,7 @@ import copy
 from typing import Any
 
 from quillshaft.train.document import Document, line_of
-from quillshaft.train.problems import Problem, TrainFileError, did_you_mean
+from quillshaft.train.problems import Problem, TrainFileError, did_you_mean, shown
 
 PLAIN_TABLES = frozenset(("train", "operation", "power", "excitations-off", "criteria", "assumptions", "sign-off"))
 KEYED_TABLES = frozenset(
@@ -51,29 +51,48 @@ def _merge_table(name: str, base: Any, over: Any) -> Any:
     return merged
 
 
+def _problem(
+    document: Document, where: PathParts, message: str, seen: Any = None, allowed: str | None = None
+) -> Problem:
+    text = None if seen is None else shown(seen)
+    return Problem(document.name, line_of(document, where), where, text, message, allowed)
+
+
 def _case_problems(document: Document, name: str, case: Any, base: Data) -> list[Problem]:
     path: PathParts = ("cases", name)
-
-    def problem(where: PathParts, seen: str | None, message: str, allowed: str | None) -> Problem:
-        return Problem(document.name, line_of(document, where), where, seen, message, allowed)
-
     if not isinstance(case, dict):
-        return [problem(path, repr(case), "a case is a table of changes", "couplings.NAME = { … }")]
+        return [_problem(document, path, "a case is a table of changes", case, "couplings.NAME = { … }")]
     out = []
     for table, rows in case.items():
         if table == "because":
             if not isinstance(rows, str):
-                out.append(problem((*path, table), repr(rows), "because is a sentence", "a string"))
+                out.append(_problem(document, (*path, table), "is not a sentence", rows, "the reason, in quotes"))
         elif table not in PLAIN_TABLES | KEYED_TABLES:
-            hint = did_you_mean(table, sorted(PLAIN_TABLES | KEYED_TABLES))
-            out.append(problem((*path, table), None, f"a case cannot change a table of this name{hint}", None))
+            known = sorted(PLAIN_TABLES | KEYED_TABLES)
+            hint = did_you_mean(table, known)
+            allowed = None if hint else ", ".join(["because", *known])
+            message = f"a case cannot change a table of this name{hint}"
+            out.append(_problem(document, (*path, table), message, None, allowed))
         elif table in KEYED_TABLES and isinstance(rows, dict):
-            out += [
-                problem((*path, table, element), None, f"there is no {element} to leave out", None)
-                for element, row in rows.items()
-                if isinstance(row, dict) and row.get("omit") is True and element not in base.get(table, {})
-            ]
+            elements = base.get(table) if isinstance(base.get(table), dict) else {}
+            for element, row in rows.items():
+                if isinstance(row, dict) and "omit" in row:
+                    out += _omit_problems(document, (*path, table, element), row, list(elements or {}))
     return out
+
+
+def _omit_problems(document: Document, path: PathParts, row: Data, known: list[str]) -> list[Problem]:
+    if row["omit"] is not True:
+        allowed = "omit = true, or no omit at all"
+        return [_problem(document, (*path, "omit"), "does not leave the element out", row["omit"], allowed)]
+    element = str(path[-1])
+    if element not in known:
+        hint = did_you_mean(element, known)
+        return [_problem(document, path, f"there is no {element} to leave out{hint}", None, ", ".join(known) or None)]
+    if len(row) > 1:
+        others = ", ".join(key for key in row if key != "omit")
+        return [_problem(document, path, f"omit = true leaves the element out, and {others} with it")]
+    return []
 
 
 def lay_cases(document: Document, names: tuple[str, ...]) -> Data:
@@ -85,55 +104,56 @@ def lay_cases(document: Document, names: tuple[str, ...]) -> Data:
     known = case_names(data)
     for name in names:
         if name not in known:
-            where: PathParts = ("cases", name)
+            message = f'there is no case "{name}"{did_you_mean(name, known)}'
             allowed = ", ".join(known) or "this file has no cases"
-            message = f"there is no case {name!r}{did_you_mean(name, known)}"
-            raise TrainFileError((Problem(document.name, line_of(document, where), where, None, message, allowed),))
+            raise TrainFileError([Problem(document.name, line_of(document, ("cases",)), (), None, message, allowed)])
         case = data["cases"][name]
         problems = _case_problems(document, name, case, data)
         if problems:
-            raise TrainFileError(tuple(problems))
+            raise TrainFileError(problems)
         changes = {table: rows for table, rows in case.items() if table != "because"}
         laid = {
             **data,
             **{table: _merge_table(table, data.get(table, {}), rows) for table, rows in changes.items()},
         }
         if laid == data:
-            where = ("cases", name)
-            raise TrainFileError(
-                (
-                    Problem(
-                        document.name,
-                        line_of(document, where),
-                        where,
-                        None,
-                        "this case changes nothing",
-                        None,
-                    ),
-                )
-            )
+            before = " more than the cases before it" if name != names[0] else ""
+            raise TrainFileError([_problem(document, ("cases", name), f"this case changes nothing{before}")])
         data = laid
     return data
+
+
+def added_by(document: Document, cases: tuple[str, ...], table: str, element: str) -> str | None:
+    """The case that adds an element which the base does not have; None where the base has it."""
+    base = document.data.get(table)
+    if isinstance(base, dict) and element in base:
+        return None
+    for name in cases:
+        rows = document.data["cases"][name].get(table)
+        if isinstance(rows, dict) and element in rows:
+            return name
+    return None
 
 
 def written_at(document: Document, cases: tuple[str, ...], path: PathParts) -> PathParts:
     """Where a value of the overlaid data was written: in the last case that states it, or the base.
 
-    Follows the longest part of `path` that a case states below its table.
+    Follows the longest part of `path` that a case states; a table that a case only adds rows to is the base's.
     """
+    base_depth, _ = _reach(document.data, path)
     for name in reversed(cases):
-        node: Any = document.data.get("cases", {}).get(name, {})
-        depth = 0
-        for part in path:
-            if not (isinstance(node, dict) and part in node):
-                break
-            node, depth = node[part], depth + 1
-        base: Any = document.data
-        base_depth = 0
-        for part in path:
-            if not (isinstance(base, dict) and part in base):
-                break
-            base, base_depth = base[part], base_depth + 1
-        if depth > 1 and depth >= min(base_depth, len(path)):
+        depth, node = _reach(document.data.get("cases", {}).get(name, {}), path)
+        stated = depth > 1 or (depth == 1 and (base_depth == 0 or not isinstance(node, dict)))
+        if stated and depth >= min(base_depth, len(path)):
             return ("cases", name, *path)
     return path
+
+
+def _reach(node: Any, path: PathParts) -> tuple[int, Any]:
+    """How many parts of the path lead on from a table, and what stands at the last of them."""
+    depth = 0
+    for part in path:
+        if not (isinstance(node, dict) and part in node):
+            break
+        node, depth = node[part], depth + 1
+    return depth, node

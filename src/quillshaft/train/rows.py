@@ -1,8 +1,6 @@
 """The rows of the train file as pydantic models: one class per table, SI floats after validation."""
 
-from __future__ import annotations
-
-from typing import Annotated, Any, Literal
+from typing import Annotated, Any, Literal, Self
 
 from pydantic import BaseModel, ConfigDict, Field, StrictBool, StrictInt, model_validator
 
@@ -90,10 +88,10 @@ class StationRow(ToleratedRow):
     diameter: Length | None = None
 
     @model_validator(mode="after")
-    def _spelling(self) -> StationRow:
+    def _spelling(self) -> Self:
         _exactly_one(self, ("inertia", "wr2", "gd2"), " (inertia = 0 for a massless station)")
         if self.wet and self.entrained:
-            raise complain("wet = true says that the inertia holds its water: then entrained must go")
+            raise complain("wet = true says that the inertia holds its water already", "one of the two", "entrained")
         return self
 
 
@@ -118,13 +116,13 @@ class PieceRow(Row):
     fillet: Length | None = None
 
     @model_validator(mode="after")
-    def _sizes(self) -> PieceRow:
+    def _sizes(self) -> Self:
         if min(self.od) <= 0:
-            raise complain("od must be above zero at both ends")
+            raise complain("must be above zero at both ends", None, "od")
         if self.id is not None and any(bore >= outer for bore, outer in zip(self.id, self.od, strict=True)):
-            raise complain("id must stay below od at both ends")
+            raise complain("must stay below od at both ends", None, "id")
         if self.length <= 0 and self.hub is None:
-            raise complain("length must be above zero, unless the piece is all in a hub")
+            raise complain("must be above zero, unless the piece is all in a hub", None, "length")
         return self
 
 
@@ -146,11 +144,11 @@ class ShaftRow(SpringRow):
     own_inertia: Literal["ends", "none"] | None = None
 
     @model_validator(mode="after")
-    def _spelling(self) -> ShaftRow:
+    def _spelling(self) -> Self:
         _exactly_one(self, ("stiffness", "flexibility", "equivalent", "pieces"))
         _loss_factor(self)
         if self.pieces is None and self.own_inertia == "ends":
-            raise complain('own-inertia = "ends" needs the geometry: give pieces, or leave it out')
+            raise complain("needs the geometry", "pieces, or leave this key out", "own-inertia")
         return self
 
 
@@ -168,7 +166,7 @@ class CouplingRow(SpringRow):
     rated_torque: Torque | None = None
 
     @model_validator(mode="after")
-    def _spelling(self) -> CouplingRow:
+    def _spelling(self) -> Self:
         _exactly_one(self, ("stiffness", "flexibility"))
         _loss_factor(self)
         return self
@@ -190,7 +188,7 @@ class GearRow(ToleratedRow):
     loss_factor: Ratio | None = None
 
     @model_validator(mode="after")
-    def _damping(self) -> GearRow:
+    def _damping(self) -> Self:
         _loss_factor(self)
         return self
 
@@ -203,7 +201,7 @@ class EpicyclicTeethRow(Row):
     planet: Teeth | None = None
 
     @model_validator(mode="after")
-    def _closes(self) -> EpicyclicTeethRow:
+    def _closes(self) -> Self:
         if self.ring <= self.sun:
             raise complain(f"the ring ({self.ring} teeth) must have more teeth than the sun ({self.sun})")
         if self.planet is not None and abs(self.sun + 2 * self.planet - self.ring) > 2:
@@ -225,7 +223,7 @@ class EpicyclicRow(ToleratedRow):
     loss_factor: Ratio | None = None
 
     @model_validator(mode="after")
-    def _members(self) -> EpicyclicRow:
+    def _members(self) -> Self:
         _loss_factor(self)
         names = [self.sun, self.ring, self.carrier]
         if names.count("fixed") > 1:
@@ -244,7 +242,7 @@ class TieRow(ToleratedRow):
     loss_factor: Ratio | None = None
 
     @model_validator(mode="after")
-    def _damping(self) -> TieRow:
+    def _damping(self) -> Self:
         _loss_factor(self)
         return self
 
@@ -267,7 +265,7 @@ class ExcitationRow(ElementRow):
     when: Literal["continuous", "start", "fault"] = "continuous"
 
     @model_validator(mode="after")
-    def _line(self) -> ExcitationRow:
+    def _line(self) -> Self:
         if not self.order and not self.frequency:
             raise complain("give order, frequency, or both, other than zero")
         return self

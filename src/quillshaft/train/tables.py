@@ -1,13 +1,12 @@
 """The plain tables of the train file (no named rows): train, operation, power, criteria and the like."""
 
-from __future__ import annotations
-
-from typing import Annotated, Literal
+from typing import Annotated, Literal, Self
 
 from pydantic import Field, model_validator
 
 from quillshaft.train.fields import (
     Date,
+    Line,
     Name,
     Ranges,
     SeparationField,
@@ -23,8 +22,8 @@ from quillshaft.train.rows import Row
 class TrainTable(Row):
     """[train]: identification and what bare numbers mean."""
 
-    title: Annotated[Text, Field(min_length=1)]
-    tag: Text | None = None
+    title: Annotated[Line, Field(min_length=1)]
+    tag: Line | None = None
     units: Literal["SI", "US"]
 
 
@@ -43,17 +42,18 @@ class OperationTable(Row):
     speeds: Annotated[dict[Name, SignedSpeed], Field(default_factory=dict)]
 
     @model_validator(mode="after")
-    def _order(self) -> OperationTable:
+    def _order(self) -> Self:
         if self.rated <= 0:
-            raise complain("rated must be above zero")
+            raise complain("must be above zero", 'a speed, such as "1487 rpm"', "rated")
         top = max(high for _, high in self.range) if self.range else self.rated
         if self.trip is not None and self.trip < max(top, self.rated) * (1 - 1e-9):
-            raise complain("trip lies below the rated speed or the top of the range")
+            raise complain("lies below the rated speed or the top of the range", "a higher speed", "trip")
         if self.barred is not None and not self.barred_because:
-            raise complain("a barred range needs barred-because: who holds the train out of it, and why")
+            why = "a barred range needs a reason"
+            raise complain(why, 'barred-because = "who holds the train out of it, and why"', "barred")
         for band, key in ((self.speed_band, "speed-band"), (self.supply_band, "supply-band")):
             if band is not None and band >= 0.5:
-                raise complain(f"{key} of {band:.0%} is no band", "a share well below 50 %")
+                raise complain(f"{band:.0%} is no band about a speed", "a share well below 50 %", key)
         return self
 
 
@@ -66,9 +66,9 @@ class AssumptionsTable(Row):
     zeta: Annotated[list[Share], Field(min_length=2, max_length=2)] | None = None
 
     @model_validator(mode="after")
-    def _rising(self) -> AssumptionsTable:
+    def _rising(self) -> Self:
         if self.zeta is not None and not 0 < self.zeta[0] <= self.zeta[1]:
-            raise complain('zeta wants the low value first, above zero: ["1 %", "2 %"]')
+            raise complain("the two values do not rise from above zero", '["1 %", "2 %"]', "zeta")
         return self
 
 
@@ -83,21 +83,21 @@ class CriteriaTable(Row):
 class RevisionRow(Row):
     """One line of the history."""
 
-    revision: Text
+    revision: Line
     date: Date
     what: Text
-    by: Text | None = None
+    by: Line | None = None
 
 
 class SignOffTable(Row):
     """[sign-off]: what the report is called and who signs it."""
 
-    document: Text | None = None
-    revision: Text | None = None
+    document: Line | None = None
+    revision: Line | None = None
     date: Date | None = None
     status: Literal["draft", "checked", "issued"] = "draft"
-    prepared: Text | None = None
-    checked: Text | None = None
-    approved: Text | None = None
-    client: Text | None = None
+    prepared: Line | None = None
+    checked: Line | None = None
+    approved: Line | None = None
+    client: Line | None = None
     history: Annotated[list[RevisionRow], Field(max_length=100, default_factory=list)]

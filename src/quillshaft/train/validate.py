@@ -9,8 +9,9 @@ from pydantic import BaseModel, ValidationError
 
 from quillshaft.train.document import Document, line_of
 from quillshaft.train.machine_rows import MACHINE_ROWS
+from quillshaft.train.messages import refusal
 from quillshaft.train.overlay import KEYED_TABLES, PLAIN_TABLES, PathParts, written_at
-from quillshaft.train.problems import Problem, did_you_mean
+from quillshaft.train.problems import Problem, did_you_mean, shown
 from quillshaft.train.rows import (
     CouplingRow,
     DismissalRow,
@@ -56,9 +57,12 @@ class Findings:
     def add(self, path: PathParts, message: str, seen: Any = None, allowed: str | None = None) -> None:
         """Note a problem at `path` of the overlaid data; it is reported where its value was written."""
         if len(self.problems) >= MOST_PROBLEMS:
+            if len(self.problems) == MOST_PROBLEMS:
+                more = f"there are more than {MOST_PROBLEMS} problems; the others are not listed"
+                self.problems.append(Problem(self.document.name, None, (), None, more, None))
             return
         where = written_at(self.document, self.cases, path)
-        text = None if seen is None else shown(seen)
+        text = None if seen is None else _shown(seen)
         line = line_of(self.document, where)
         self.problems.append(Problem(self.document.name, line, where, text, message, allowed))
 
@@ -73,37 +77,11 @@ class Rows:
     notes: tuple[tuple[str, str, str], ...]
 
 
-def shown(value: Any) -> str:
-    """A value as the file would spell it, cut to a readable length."""
-    if isinstance(value, bool):
-        text = "true" if value else "false"
-    elif isinstance(value, str):
-        text = f'"{value}"'
-    elif isinstance(value, dict):
-        text = "{ " + ", ".join(f"{key} = …" for key in list(value)[:4]) + " }"
-    else:
-        text = str(value) if not isinstance(value, int) or abs(value) < 10**30 else "a number of over 30 digits"
-    return text if len(text) <= 80 else text[:77] + "…"
-
-
-def _message(error: Any, row: type[BaseModel]) -> tuple[str, str | None]:
-    kind, context = error["type"], error.get("ctx", {})
-    if kind == "train_file":
-        return context["message"], context["allowed"]
-    if kind == "missing":
-        return "is missing", None
-    if kind == "extra_forbidden":
-        known = [item.alias or name for name, item in row.model_fields.items()]
-        key = str(error["loc"][-1])
-        hint = did_you_mean(key, known) if len(error["loc"]) == 1 else ""
-        return f"is not a key of this table{hint}", ", ".join(known) if len(error["loc"]) == 1 else None
-    if kind == "literal_error":
-        word = error["input"]
-        options = [item.strip(" '") for item in context["expected"].replace(" or ", ", ").split(",")]
-        hint = did_you_mean(word, options) if isinstance(word, str) else ""
-        return f"is not one of the words allowed here{hint}", " | ".join(options)
-    text = error["msg"]
-    return text[0].lower() + text[1:], None
+def _shown(value: Any) -> str:
+    """A value as the file would spell it; of a table, its first keys."""
+    if isinstance(value, dict) and value:
+        return "{ " + ", ".join(f"{str(key)[:30]} = …" for key in list(value)[:4]) + " }"
+    return shown(value)
 
 
 def _validate(row: type[BaseModel], data: Any, path: PathParts, findings: Findings, context: Any) -> Any:
@@ -111,11 +89,17 @@ def _validate(row: type[BaseModel], data: Any, path: PathParts, findings: Findin
         return row.model_validate(data, context=context)
     except ValidationError as errors:
         for error in errors.errors(include_url=False):
-            loc = tuple(part for part in error["loc"] if isinstance(part, (str, int)))
-            message, allowed = _message(error, row)
-            seen = None if error["type"] in ("missing", "extra_forbidden") or not loc else error["input"]
-            findings.add((*path, *loc), message, seen, allowed)
+            found = refusal(error, row, context["system"])
+            findings.add((*path, *found.loc), found.message, found.seen, found.allowed)
         return None
+
+
+def _bad_name(name: str) -> str | None:
+    if not name.strip():
+        return "an empty name"
+    if len(name) > 80:
+        return f"a name of {len(name)} characters"
+    return None if name.isprintable() else "a name with characters that do not print"
 
 
 def _row_class(table: str, name: str, data: Any, findings: Findings) -> type[BaseModel] | None:
@@ -135,14 +119,16 @@ def _keyed_table(table: str, data: Any, system: str, findings: Findings) -> tupl
     rows: dict[str, Any] = {}
     notes: list[tuple[str, str, str]] = []
     if not isinstance(data, dict):
-        findings.add((table,), "is not a table of named rows", data, f"[{table}] with one row for each name")
+        doubled = isinstance(data, list) and data and isinstance(data[0], dict)
+        advice = f"[{table}] in single brackets" if doubled else f"[{table}] with one row for each name"
+        findings.add((table,), "is not a table of named rows", None if doubled else data, advice)
         return rows, notes
     for name, row in data.items():
         if not isinstance(row, dict):
-            findings.add((table, name), "is not a row", row, f"{name} = {{ key = value, … }}")
+            findings.add((table, name), "is not a row of keys and values", row, "{ key = value, … }")
             continue
-        if not 1 <= len(name) <= 80 or any(ord(letter) < 32 for letter in name):
-            findings.add((table, name), "this name is empty, too long or holds control characters", name)
+        if reason := _bad_name(name):
+            findings.add((table, name), reason, None, "1 to 80 characters that print")
             continue
         row_class = _row_class(table, name, row, findings)
         if row_class is None:
@@ -159,7 +145,9 @@ def validate(data: dict[str, Any], findings: Findings) -> Rows:
     """Every table of the overlaid data as rows; what is wrong goes to `findings`."""
     for table in data:
         if table not in TOP_LEVEL:
-            findings.add((table,), f"there is no table of this name{did_you_mean(table, TOP_LEVEL)}", None)
+            hint = did_you_mean(table, TOP_LEVEL)
+            allowed = None if hint else ", ".join(TOP_LEVEL)
+            findings.add((table,), f"there is no table of this name{hint}", None, allowed)
     schema = data.get("schema")
     if schema != 1 or isinstance(schema, bool):
         findings.add(("schema",), "is missing" if schema is None else "is not a schema this version reads", schema, "1")

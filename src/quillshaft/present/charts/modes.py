@@ -113,9 +113,7 @@ def _draw_mode(
     _draw_bars(axes, "Kinetic energy by station", mode.kinetic_energy, half + 2.0, y - 2.0, hatched=False)
 
 
-def _draw_bars(
-    axes: Axes, heading: str, shares: dict[str, float], left: float, top: float, hatched: bool
-) -> None:
+def _draw_bars(axes: Axes, heading: str, shares: dict[str, float], left: float, top: float, hatched: bool) -> None:
     """A ranked list of shares with bars; the rest summed up in its last line."""
     from matplotlib.patches import Rectangle
 
@@ -172,9 +170,7 @@ def _draw_strip(
     _write_names(made, screening, runs, run, mode, top_mm - curve)
 
 
-def _draw_curve(
-    axes: Axes, screening: Screening, run: Strip, mode: ModeResult, x: list[float], y: list[float]
-) -> None:
+def _draw_curve(axes: Axes, screening: Screening, run: Strip, mode: ModeResult, x: list[float], y: list[float]) -> None:
     """The line of the shape, broken into shafts, couplings and meshes, its points and its nodes."""
     for k, number in enumerate(run.links):
         link = screening.graph.links[number]
@@ -196,9 +192,7 @@ def _draw_curve(
     for k, height in enumerate(y):
         axes.plot([x[k], x[k]], [0.0, height], lw=look.HAIR_PT, color=look.QUIET, zorder=2)
         lead = run.lead and k == 0
-        axes.plot(
-            x[k], height, marker="o", ms=4, mfc=look.PAPER if lead else look.INK, mec=look.INK, mew=1, zorder=6
-        )
+        axes.plot(x[k], height, marker="o", ms=4, mfc=look.PAPER if lead else look.INK, mec=look.INK, mew=1, zorder=6)
 
 
 def _draw_nodes(

@@ -34,9 +34,7 @@ def strips(graph: TorsionalGraph) -> tuple[Strip, ...]:
     return tuple(out)
 
 
-def _strip(
-    graph: TorsionalGraph, around: dict[int, list[tuple[int, int]]], path: list[int], done: set[int]
-) -> Strip:
+def _strip(graph: TorsionalGraph, around: dict[int, list[tuple[int, int]]], path: list[int], done: set[int]) -> Strip:
     joins = [
         (place, other, link)
         for place, station in enumerate(path)
@@ -64,7 +62,5 @@ def _caption(
     if joins:
         place, other, link = joins[0]
         return f"joined at {graph.stations[path[place]]} to {graph.stations[other]} by {graph.links[link].name}"
-    stage = next(
-        (link for link in graph.links if len(link.stations) > 2 and set(link.stations) & set(path)), None
-    )
+    stage = next((link for link in graph.links if len(link.stations) > 2 and set(link.stations) & set(path)), None)
     return f"at stage {stage.name}" if stage is not None and done else ""

@@ -1,0 +1,63 @@
+"""Panels of the interference diagram: which frequencies each shows, and where lines leave it."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+from quillshaft.assess.diagram_data import ModeBand, SourceLine
+
+WIDE_SPAN = 8.0
+
+
+@dataclass(frozen=True)
+class Panel:
+    """One plot: frequencies [Hz] shown, the bands in it, and its height [mm]."""
+
+    low_hz: float
+    high_hz: float
+    bands: tuple[ModeBand, ...]
+    height_mm: float
+
+
+def panels(bands: Sequence[ModeBand], lines: Sequence[SourceLine]) -> tuple[Panel, ...]:
+    """One panel from zero, or two where judged frequencies span more than 8 to 1; the low one first."""
+    if not bands:
+        highest = max((max(line.nominal_hz) for line in lines), default=1.0)
+        return (Panel(0.0, 1.05 * highest or 1.0, (), 80.0),)
+    low, high = bands[0].nominal_hz, bands[-1].nominal_hz
+    if high <= WIDE_SPAN * low or len(bands) == 1:
+        return (Panel(0.0, 1.08 * _top(bands), tuple(bands), 98.0),)
+    cut = max(range(1, len(bands)), key=lambda i: bands[i].nominal_hz / bands[i - 1].nominal_hz)
+    below, above = tuple(bands[:cut]), tuple(bands[cut:])
+    share = 30.0 + 55.0 * len(below) / len(bands)
+    foot = 0.97 * min(above[0].low_hz, above[0].free_from_hz)
+    return (
+        Panel(0.0, 1.12 * _top(below), below, share),
+        Panel(foot, 1.03 * _top(above), above, 115.0 - share),
+    )
+
+
+def _top(bands: Sequence[ModeBand]) -> float:
+    return max(max(band.high_hz, band.free_to_hz) for band in bands)
+
+
+def leaves(line: SourceLine, panel: Panel) -> tuple[float, float] | None:
+    """(rpm, Hz) where a line was last inside a panel, looking from the right; None where it never was."""
+    corners = list(zip(line.rpm, line.nominal_hz, strict=True))
+    for (x0, y0), (x1, y1) in zip(corners[-2::-1], corners[::-1], strict=False):
+        found = _last_inside((x0, y0), (x1, y1), panel)
+        if found is not None:
+            return found
+    return None
+
+
+def _last_inside(start: tuple[float, float], end: tuple[float, float], panel: Panel) -> tuple[float, float] | None:
+    """The last point of a segment between the panel's lowest and highest frequency."""
+    (x0, y0), (x1, y1) = start, end
+    if panel.low_hz <= y1 <= panel.high_hz:
+        return end
+    edge = panel.high_hz if y1 > panel.high_hz else panel.low_hz
+    if y0 == y1 or (y0 - edge) * (y1 - edge) > 0:
+        return None
+    return x0 + (edge - y0) / (y1 - y0) * (x1 - x0), edge

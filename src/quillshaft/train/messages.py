@@ -1,0 +1,194 @@
+"""What a refused row says to the person who wrote it: the key, the value seen, and what would be right."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from types import UnionType
+from typing import Annotated, Any, Literal, Union, get_args, get_origin
+
+from pydantic import BaseModel
+
+from quillshaft.train.fields import Measured, MeasuredPair
+from quillshaft.train.problems import did_you_mean
+from quillshaft.train.quantity import measure_help
+
+EXAMPLES = {
+    "at": "a name from [stations], in quotes",
+    "between": 'two names from [stations], such as ["motor-core", "motor-hub"]',
+    "cases": 'a list of names of cases, such as ["hot", "cold"]',
+    "cylinders": 'a list of cylinders, such as [{ at = "throw-1", fires-at = "0 deg" }]',
+    "equivalent": '{ length = "610 mm", diameter = "105 mm" }',
+    "frequency": 'a number with a unit of frequency, for example "50 Hz", or a bare number in Hz',
+    "history": 'a list, such as [{ revision = "0", date = "2026-11-30", what = "first issue" }]',
+    "mode": "the number of the mode, as `screen` lists it",
+    "passes": "a list of whole numbers, such as [3, 6]",
+    "pieces": 'a list of pieces, such as [{ od = "95 mm", length = "180 mm" }]',
+    "planets": "a whole number without quotes, such as 3",
+    "poles": "an even whole number without quotes, such as 4",
+    "rated": 'a speed, such as "1487 rpm"',
+    "speed-at": "a name from [stations], in quotes",
+    "speeds": 'a table of speeds by station, such as { ring = "0 rpm" }',
+    "teeth": "one whole number for each station of between, such as [29, 77]",
+    "zeta": 'the low and the high value, such as ["1 %", "2 %"]',
+}
+"""What may stand at a key where its type alone says too little."""
+
+EPICYCLIC_TEETH = "{ sun = 21, ring = 87 }"
+PROVENANCE = ("source", "document", "date", "status", "note")
+
+
+@dataclass(frozen=True)
+class Refusal:
+    """One refused value: its place below the row, the value (None: not to be shown), and the two sentences."""
+
+    loc: tuple[str | int, ...]
+    seen: Any
+    message: str
+    allowed: str | None
+
+
+def refusal(error: Any, row: type[BaseModel], system: str) -> Refusal:
+    """The refusal behind one error of a row's validation; `system`, "SI" or "US", is for the examples."""
+    loc = tuple(part for part in error["loc"] if isinstance(part, (str, int)))
+    kind, context, value = error["type"], error.get("ctx", {}), error["input"]
+    if kind == "train_file":
+        key = context["key"]
+        if key is None:
+            return Refusal(loc, value if loc else None, context["message"], context["allowed"])
+        seen = value.get(key) if isinstance(value, dict) else None
+        return Refusal((*loc, key), seen, context["message"], context["allowed"])
+    if kind == "extra_forbidden":
+        return Refusal(loc, None, *_unknown_key(str(loc[-1]), _row_at(row, loc[:-1])))
+    allowed = _allowed(row, loc, system)
+    if kind == "missing":
+        return Refusal(loc, None, "is missing", allowed)
+    if kind == "literal_error":
+        message, allowed = _not_one_of(value, _options(row, loc))
+    else:
+        message = _sentence(kind, context, value, error["msg"])
+    return Refusal(loc, value if loc else None, message, allowed)
+
+
+def keys_of(row: type[BaseModel]) -> list[str]:
+    """Keys of a row as the file spells them, its own first and where the numbers come from last."""
+    keys = [item.alias or name for name, item in row.model_fields.items()]
+    return [key for key in keys if key not in PROVENANCE] + [key for key in keys if key in PROVENANCE]
+
+
+def _unknown_key(key: str, row: type[BaseModel] | None) -> tuple[str, str | None]:
+    if key == "omit":
+        return "leaves an element out, and only a case can do that", "omit = true under [cases.NAME]"
+    if row is None:
+        return "is not a key of this table", None
+    known = keys_of(row)
+    return f"is not a key of this table{did_you_mean(key, known)}", ", ".join(known)
+
+
+def _not_one_of(value: Any, options: list[Any]) -> tuple[str, str]:
+    allowed = " | ".join(str(option) for option in options)
+    words = [option for option in options if isinstance(option, str)]
+    if isinstance(value, str) and value in [str(option) for option in options]:
+        return "is in quotes", f"{allowed}, without quotes"
+    if not words:
+        return "is not one of the numbers allowed here", allowed
+    hint = did_you_mean(value, words) if isinstance(value, str) else ""
+    return f"is not one of the words allowed here{hint}", allowed
+
+
+def _sentence(kind: str, context: dict[str, Any], value: Any, fallback: str) -> str:
+    """A validation error of pydantic, by its kind, in the words of someone who edits a train file."""
+    if kind in _KINDS:
+        return _KINDS[kind]
+    if kind in ("too_short", "too_long"):
+        count = context.get("actual_length", len(value) if isinstance(value, list) else 0)
+        return "has no members" if count == 0 else f"has {count} member{'s' if count != 1 else ''}"
+    if kind == "string_too_short":
+        return "says too little" if value else "is an empty text"
+    if kind == "string_too_long":
+        return f"is too long: {len(value)} characters, and at most {context['max_length']} are read"
+    for name, words in (("gt", "above"), ("ge", "at least"), ("lt", "below"), ("le", "at most")):
+        if name in context:
+            return f"must be {words} {context[name]:g}"
+    return fallback[0].lower() + fallback[1:]
+
+
+_KINDS = {
+    "string_type": "is not a text in quotes",
+    "list_type": "is not a list",
+    "dict_type": "is not a table",
+    "model_type": "is not a table",
+    "model_attributes_type": "is not a table",
+    "float_type": "is not a plain number",
+    "finite_number": "is not a finite number",
+    "int_type": "is not a whole number",
+    "int_from_float": "is not a whole number",
+    "int_parsing_size": "is a whole number of too many digits",
+    "bool_type": "is neither true nor false",
+    "multiple_of": "is an odd number",
+}
+
+
+def _allowed(row: type[BaseModel], loc: tuple[str | int, ...], system: str) -> str | None:
+    """What may stand at a place below a row, from its key or its type."""
+    keys = [part for part in loc if isinstance(part, str)]
+    if not keys:
+        return ", ".join(keys_of(row))
+    parent, key = _row_at(row, loc[: loc.index(keys[-1])]), keys[-1]
+    field = _field(parent, key)
+    if key == "teeth" and parent is not None and "sun" in parent.model_fields:
+        return EPICYCLIC_TEETH
+    for item in field[1]:
+        if isinstance(item, Measured):
+            return measure_help(item.measure, system)
+        if isinstance(item, MeasuredPair):
+            help_text = measure_help(item.item.measure, system)
+            return f"{help_text}; or a list of two" if item.alone else f"a list of two, each {help_text}"
+    if key in EXAMPLES:
+        return EXAMPLES[key]
+    if options := _options(row, loc):
+        return " | ".join(str(option) for option in options)
+    return {
+        str: "a text in quotes",
+        int: "a whole number without quotes",
+        float: "a number without quotes or unit",
+        bool: "true or false, without quotes",
+    }.get(field[0])
+
+
+def _options(row: type[BaseModel], loc: tuple[str | int, ...]) -> list[Any]:
+    keys = [part for part in loc if isinstance(part, str)]
+    kind, _ = _field(_row_at(row, loc[: loc.index(keys[-1])]), keys[-1]) if keys else (None, [])
+    return list(get_args(kind)) if get_origin(kind) is Literal else []
+
+
+def _field(row: type[BaseModel] | None, key: str) -> tuple[Any, list[Any]]:
+    """The bare type of a key and what is annotated to it."""
+    for name, item in row.model_fields.items() if row is not None else ():
+        if key == (item.alias or name):
+            kind, notes = _bare(item.annotation)
+            return kind, [*item.metadata, *notes]
+    return None, []
+
+
+def _bare(annotation: Any) -> tuple[Any, list[Any]]:
+    """A type without Annotated and without "or None", and its annotations."""
+    notes: list[Any] = []
+    while get_origin(annotation) in (Annotated, Union, UnionType):
+        inner, *rest = get_args(annotation)
+        if get_origin(annotation) is Annotated:
+            notes += rest
+        annotation = inner
+    return annotation, notes
+
+
+def _row_at(row: type[BaseModel], loc: tuple[str | int, ...]) -> type[BaseModel] | None:
+    """The row class that holds the keys at a place below `row`; None where no row stands there."""
+    found: type[BaseModel] | None = row
+    for part in loc:
+        if isinstance(part, int):
+            continue
+        kind, _ = _field(found, part)
+        while get_origin(kind) is list:
+            kind, _ = _bare(get_args(kind)[0])
+        found = kind if isinstance(kind, type) and issubclass(kind, BaseModel) else None
+    return found
