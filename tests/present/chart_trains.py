@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import tempfile
 from functools import cache
+from itertools import pairwise
 from pathlib import Path
 
 from quillshaft.assess.results import Screening
@@ -60,7 +61,7 @@ def _genset() -> str:
     names = ["nose", *(f"throw-{n}" for n in range(1, 7)), "flywheel", "generator-hub", "generator"]
     inertia = [0.9, 0.42, 0.40, 0.42, 0.42, 0.40, 0.42, 11.0, 0.8, 24.0]
     stations = "".join(f'{n} = {{ inertia = "{j} kg m^2" }}\n' for n, j in zip(names, inertia, strict=True))
-    pairs = list(zip(names[:7], names[1:8], strict=True))
+    pairs = list(pairwise(names[:8]))
     shafts = "".join(
         f'crank-{i} = {{ between = ["{a}", "{b}"], stiffness = "3.1 MN m/rad" }}\n' for i, (a, b) in enumerate(pairs)
     )
@@ -74,7 +75,7 @@ rated = "1500 rpm"
 range = ["700 rpm", "1500 rpm"]
 idle = "600 rpm"
 trip = "1725 rpm"
-barred = [["905 rpm", "985 rpm"]]
+barred = [["820 rpm", "890 rpm"]]
 barred-because = "order 3 in the first mode"
 [stations]
 {stations}
@@ -194,7 +195,7 @@ def _long(count: int, prefix: str = "") -> str:
     )
     shafts = "".join(
         f'{prefix}span-{i + 1} = {{ between = ["{a}", "{b}"], stiffness = "{1.1 + 0.2 * (i % 4):.1f} MN m/rad" }}\n'
-        for i, (a, b) in enumerate(zip(names, names[1:], strict=False))
+        for i, (a, b) in enumerate(pairwise(names))
         if i != 4
     )
     return f"""

@@ -55,13 +55,15 @@ class ModeBand:
 
 @dataclass(frozen=True)
 class PairMark:
-    """Where a pair that is not clear stands in the diagram.
+    """Where a mode and the sources on one line stand in the diagram, if they are not clear.
 
+    pair                the worst of them; `others` are the names of the other sources on the line
     rpm, frequency_hz   on the source's line, where it comes nearest to the mode in the judged range
     shape               the verdict over the tolerances; `nominal` True where the nominal verdict is as bad
     """
 
     pair: Interference
+    others: tuple[str, ...]
     rpm: float
     frequency_hz: float
     shape: Verdict
@@ -78,13 +80,9 @@ def top_speed_rpm(screening: Screening) -> float:
 
 def source_lines(screening: Screening, top_rpm: float) -> tuple[SourceLine, ...]:
     """Lines of all sources from standstill to a speed [rpm], sources on the same line in one."""
-    groups: dict[tuple[float, float], list[Source]] = {}
+    groups: dict[tuple[int, float], list[Source]] = {}
     for source in screening.sources:
-        rise, fixed = slope(source), source.frequency_hz
-        if rise < 0:
-            rise, fixed = -rise, -fixed
-        key = (round(rise / _SAME), round(abs(fixed) if rise == 0 else fixed, 9))
-        groups.setdefault(key, []).append(source)
+        groups.setdefault(_line_key(source), []).append(source)
     return tuple(_line(screening, group, top_rpm) for group in groups.values())
 
 
@@ -128,11 +126,24 @@ def mode_bands(screening: Screening) -> tuple[ModeBand, ...]:
 
 
 def pair_marks(screening: Screening) -> tuple[PairMark, ...]:
-    """A mark for each pair that is not clear, the worst first."""
-    return tuple(_mark(screening, pair) for pair in screening.not_clear())
+    """Marks of all pairs that are not clear, the worst first; sources on the same line share a mark."""
+    groups: dict[tuple[object, ...], list[Interference]] = {}
+    for pair in screening.not_clear():
+        line = _line_key(screening.source(pair.source))
+        groups.setdefault((pair.mode, pair.dismissed is None, *line), []).append(pair)
+    return tuple(_mark(screening, group) for group in groups.values())
 
 
-def _mark(screening: Screening, pair: Interference) -> PairMark:
+def _line_key(source: Source) -> tuple[int, float]:
+    """What sources on the same line have in common."""
+    rise, fixed = slope(source), source.frequency_hz
+    if rise < 0 or (rise == 0 and fixed < 0):
+        rise, fixed = -rise, -fixed
+    return round(rise / _SAME), round(fixed, 9)
+
+
+def _mark(screening: Screening, group: list[Interference]) -> PairMark:
+    pair = group[0]
     source, mode = screening.source(pair.source), screening.mode(pair.mode)
     rpm = pair.judged_at_rpm
     if pair.verdict in ("crossing", "barred") and pair.critical_speed_rpm is not None:
@@ -142,7 +153,8 @@ def _mark(screening: Screening, pair: Interference) -> PairMark:
     frequency = abs(slope(source) * rpm / RPM + source.frequency_hz)
     if pair.verdict in ("crossing", "barred") and pair.critical_speed_rpm is not None:
         frequency = mode.frequency_hz
-    return PairMark(pair, rpm, frequency, pair.worst_verdict, pair.verdict == pair.worst_verdict)
+    others = tuple(member.source for member in group[1:])
+    return PairMark(pair, others, rpm, frequency, pair.worst_verdict, pair.verdict == pair.worst_verdict)
 
 
 def _middle_rpm(screening: Screening, rpm: float) -> float:

@@ -180,6 +180,16 @@ class Screening:
         bad = [pair for pair in self.interferences if pair.worst_verdict != "clear" or pair.verdict != "clear"]
         return tuple(sorted(bad, key=badness))
 
+    def governing(self) -> Interference | None:
+        """The pair not dismissed that decides the verdict: the gravest, then the least margin to spare."""
+        counted = [pair for pair in self.interferences if pair.dismissed is None]
+
+        def room(pair: Interference) -> tuple[int, float]:
+            spare = min(abs(pair.margin) - pair.required, abs(pair.worst_margin) - pair.worst_required)
+            return -SEVERITY[graver(pair.verdict, pair.worst_verdict)], spare
+
+        return min(counted, key=room, default=None)
+
     def mode(self, number: int) -> ModeResult:
         """A mode by its number. Raises IndexError where there is none."""
         return self.modes[number - 1]

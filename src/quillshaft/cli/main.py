@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
+import gc
 import sys
 from pathlib import Path
 from typing import Annotated
 
 import typer
 
-from quillshaft.cli.output import check_target, console, refuse, write_many, write_whole
+from quillshaft.cli.output import check_folder, check_target, console, refuse, write_many, write_whole
 
 app = typer.Typer(
     help="Torsional analysis of drivetrains, from the train file to a report ready for sign-off.",
@@ -97,15 +98,17 @@ def screen(
     from quillshaft.cli.work import chart_makers, put_json, screened
 
     if json not in (None, "-"):
-        check_target(Path(json or ""))
-    screening = screened(train, case)
-    if json != "-":
-        show_screening(screening, console(), every)
+        check_target(Path(json or ""), train)
     if charts is not None:
-        for path in write_many(charts, chart_makers(screening)):
-            console(quiet=json == "-").print(f"Wrote {path}")
+        check_folder(charts)
+    screening = screened(train, case)
+    written = [] if charts is None else write_many(charts, chart_makers(screening))
     if json is not None:
         put_json(screening, json)
+    if json != "-":
+        show_screening(screening, console(), every)
+    for path in written:
+        console(quiet=json == "-").print(f"Wrote {path}")
     if strict and screening.worst_verdict != "clear":
         raise typer.Exit(3)
 
@@ -124,11 +127,13 @@ def report(
     """Write the report as PDF."""
     from quillshaft.cli.work import put_json, report_bytes, report_path, screened
 
+    if json not in (None, "-"):
+        check_target(Path(json or ""), train)
+    if out is not None:
+        check_target(out, train)
     screening = screened(train, case)
     target = out or report_path(screening)
-    check_target(target)
-    if json not in (None, "-"):
-        check_target(Path(json or ""))
+    check_target(target, train)
     write_whole(target, report_bytes(screening))
     if json is not None:
         put_json(screening, json)

@@ -24,13 +24,15 @@ def console(quiet: bool = False) -> Console:
 
 
 def refuse(text: str) -> NoReturn:
-    """Print why the input cannot be used and leave with exit code 2."""
+    """Print why the input cannot be used and leave with exit code 2. Raises typer.Exit."""
     sys.stderr.write(text.rstrip("\n") + "\n")
     raise typer.Exit(2)
 
 
-def check_target(path: Path) -> None:
-    """Refuse early a place that cannot be written."""
+def check_target(path: Path, source: Path | None = None) -> None:
+    """Refuse early a place that cannot be written, or that is the train file itself (`source`)."""
+    if source is not None and path.exists() and source.exists() and path.samefile(source):
+        refuse(f"{path}: this is the train file; name another file")
     if path.is_dir():
         refuse(f"{path}: this is a folder; name a file")
     if not path.parent.is_dir():
@@ -42,7 +44,10 @@ def check_target(path: Path) -> None:
 def write_whole(path: Path, data: bytes) -> None:
     """Write a file whole or not at all; an existing one stays until the new one is complete."""
     check_target(path)
-    handle, name = tempfile.mkstemp(prefix=f".{path.name}.", dir=path.parent)
+    try:
+        handle, name = tempfile.mkstemp(prefix=".writing-", dir=path.parent)
+    except OSError as error:
+        refuse(f"{path}: cannot be written: {error.strerror}")
     try:
         with os.fdopen(handle, "wb") as stream:
             stream.write(data)
@@ -60,12 +65,19 @@ def write_whole(path: Path, data: bytes) -> None:
         raise
 
 
-def write_many(folder: Path, files: dict[str, Callable[[], bytes]]) -> list[Path]:
-    """Make every file's bytes first, then write them all into `folder` (made if its parent exists)."""
+def check_folder(folder: Path) -> None:
+    """Refuse early a folder that cannot be made or written to."""
     if folder.exists() and not folder.is_dir():
         refuse(f"{folder}: this is a file; name a folder")
     if not folder.exists() and not folder.parent.is_dir():
         refuse(f"{folder}: there is no folder {folder.parent}")
+    if not os.access(folder if folder.exists() else folder.parent, os.W_OK):
+        refuse(f"{folder}: cannot be written to")
+
+
+def write_many(folder: Path, files: dict[str, Callable[[], bytes]]) -> list[Path]:
+    """Make every file's bytes first, then write them all into `folder` (made if its parent exists)."""
+    check_folder(folder)
     made = {name: make() for name, make in files.items()}
     folder.mkdir(exist_ok=True)
     for name, data in made.items():

@@ -17,9 +17,9 @@ def pair_row(screening: Screening, pair: Interference) -> tuple[str, ...]:
         hertz(screening.mode(pair.mode).frequency_hz),
         pair.source,
         "–" if critical is None else f"{critical:.0f}",
-        percent(pair.margin, True),
-        percent(pair.worst_margin, True),
-        plain(pair.required),
+        percent(pair.margin, True).removesuffix(" %"),
+        percent(pair.worst_margin, True).removesuffix(" %"),
+        plain(pair.required).removesuffix(" %"),
         "–" if pair.excitability is None else f"{pair.excitability:.3f}",
         VERDICT_WORDS[pair.verdict],
         VERDICT_WORDS[pair.worst_verdict] + (" (dismissed)" if pair.dismissed else ""),
@@ -31,7 +31,7 @@ def station_rows(screening: Screening) -> list[tuple[str, ...]]:
     graph = screening.graph
     factor = SHOWN[screening.train.units].per_kgm2
     rpm = screening.train.operation.rated_rad_s * 30.0 / math.pi
-    rows = []
+    rows: list[tuple[str, ...]] = []
     for index, name in enumerate(graph.stations):
         ratio, scale = graph.speed_ratio[index], float(graph.scale[index])
         parts = [part for part in graph.parts if part.station == index and part.inertia_kgm2]
@@ -59,7 +59,7 @@ def station_heads(screening: Screening) -> tuple[str, ...]:
 def link_rows(screening: Screening) -> list[tuple[str, ...]]:
     """(link, kind, between, stiffness, referred, tolerance, mean torque, wind-up, teeth) in shown units."""
     graph, units = screening.graph, SHOWN[screening.train.units]
-    rows = []
+    rows: list[tuple[str, ...]] = []
     for link, duty in zip(graph.links, screening.duties, strict=True):
         ends = " – ".join(graph.stations[station] for station in link.stations)
         torque, wind = duty.mean_torque_nm, duty.wind_up_rad
@@ -102,7 +102,7 @@ def link_heads(screening: Screening) -> tuple[str, ...]:
 
 def source_rows(screening: Screening) -> list[tuple[str, ...]]:
     """(source, at, line, speed ratio, when, order, remark) per source, those switched off last."""
-    rows = [
+    rows: list[tuple[str, ...]] = [
         (
             source_names(source),
             source.at,

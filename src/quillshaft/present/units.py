@@ -26,7 +26,7 @@ class ShownUnits:
 
 
 SHOWN = {
-    "SI": ShownUnits("kg·m²", 1.0, "N·m", 1.0, "N·m/rad", 1.0, "kW", 1.0),
+    "SI": ShownUnits("kg·m²", 1.0, "N·m", 1.0, "kN·m/rad", 1e-3, "kW", 1.0),
     "US": ShownUnits(
         "lb·ft²",
         1.0 / LB_FT2_KGM2,

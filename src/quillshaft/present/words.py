@@ -27,7 +27,7 @@ def number(value: float, digits: int = 4) -> str:
     if value == 0 or not math.isfinite(value):
         return "0" if value == 0 else "–"
     size = math.floor(math.log10(abs(value)))
-    if -4 <= size < 7:
+    if -4 <= size < 9:
         return f"{value:.{max(0, digits - 1 - size)}f}"
     return f"{value:.{digits - 1}e}"
 
@@ -154,7 +154,9 @@ def range_words(screening: Screening) -> str:
 def dismissed_words(screening: Screening) -> str:
     """ ", apart from 2 dismissed by name", or nothing where none was needed."""
     count = sum(pair.dismissed is not None for pair in screening.not_clear())
-    return f", apart from {count} dismissed by name" if count else ""
+    if not count:
+        return ""
+    return f", apart from {count} interference{'s' if count > 1 else ''} dismissed by name"
 
 
 def verdict_sentence(screening: Screening, worst: bool) -> str:

@@ -33,14 +33,21 @@ def _names(findings: Findings, rows: Rows) -> None:
             seen[name] = table
 
 
+def _left_out(findings: Findings, path: PathParts, name: str, seen: str | None) -> bool:
+    """Whether a case leaves a station out that is still named; noted where it does."""
+    base = findings.document.data.get("stations")
+    if not isinstance(base, dict) or name not in base:
+        return False
+    findings.add(path, f"the case leaves the station {name} out, but it is still named here", seen)
+    return True
+
+
 def _station(findings: Findings, rows: Rows, path: PathParts, name: str, seen: str | None = None) -> None:
     """A station's name must stand in [stations]; where that table is missing, one problem says so for all."""
     stations = rows.declared["stations"]
     if name in stations or not stations:
         return
-    base = findings.document.data.get("stations")
-    if isinstance(base, dict) and name in base:
-        findings.add(path, f"the case leaves the station {name} out, but it is still named here", seen)
+    if _left_out(findings, path, name, seen):
         return
     findings.add(
         path, f"there is no station of this name{did_you_mean(name, stations)}", seen, "a name from [stations]"
@@ -103,7 +110,8 @@ def _machines(findings: Findings, rows: Rows) -> None:
             _station(findings, rows, ("machines", name, "at"), row.at, row.at)
     places = set(rows.declared["stations"]).union(*(rows.declared[table] for table in LINK_TABLES))
     for name, row in rows.keyed["excitations"].items():
-        if row.at not in places and rows.declared["stations"]:
+        path = ("excitations", name, "at")
+        if row.at not in places and rows.declared["stations"] and not _left_out(findings, path, row.at, row.at):
             hint, allowed = did_you_mean(row.at, sorted(places)), "a station, or a link to act inside it"
             findings.add(
                 ("excitations", name, "at"), f"there is no station or link of this name{hint}", row.at, allowed

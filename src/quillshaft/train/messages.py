@@ -11,6 +11,7 @@ from pydantic import BaseModel
 from quillshaft.train.fields import Measured, MeasuredPair
 from quillshaft.train.problems import did_you_mean
 from quillshaft.train.quantity import measure_help
+from quillshaft.train.rows import EpicyclicRow
 
 EXAMPLES = {
     "at": "a name from [stations], in quotes",
@@ -18,14 +19,14 @@ EXAMPLES = {
     "cases": 'a list of names of cases, such as ["hot", "cold"]',
     "cylinders": 'a list of cylinders, such as [{ at = "throw-1", fires-at = "0 deg" }]',
     "equivalent": '{ length = "610 mm", diameter = "105 mm" }',
-    "frequency": 'a number with a unit of frequency, for example "50 Hz", or a bare number in Hz',
+    "loss-factor": "a number above 0 without quotes or unit, such as 0.17 (loss-factor = psi / 2π)",
     "history": 'a list, such as [{ revision = "0", date = "2026-11-30", what = "first issue" }]',
     "mode": "the number of the mode, as `screen` lists it",
     "passes": "a list of whole numbers, such as [3, 6]",
     "pieces": 'a list of pieces, such as [{ od = "95 mm", length = "180 mm" }]',
     "planets": "a whole number without quotes, such as 3",
     "poles": "an even whole number without quotes, such as 4",
-    "rated": 'a speed, such as "1487 rpm"',
+    "psi": "a number above 0 and up to 50 without quotes or unit, such as 1.1",
     "speed-at": "a name from [stations], in quotes",
     "speeds": 'a table of speeds by station, such as { ring = "0 rpm" }',
     "teeth": "one whole number for each station of between, such as [29, 77]",
@@ -33,7 +34,14 @@ EXAMPLES = {
 }
 """What may stand at a key where its type alone says too little."""
 
-EPICYCLIC_TEETH = "{ sun = 21, ring = 87 }"
+EPICYCLIC = {
+    "teeth": "{ sun = 21, ring = 87 }",
+    "sun": 'a name from [stations], or "fixed", in quotes',
+    "ring": 'a name from [stations], or "fixed", in quotes',
+    "carrier": 'a name from [stations], or "fixed", in quotes',
+}
+"""The same for a row of [gears] with kind = "epicyclic"."""
+
 PROVENANCE = ("source", "document", "date", "status", "note")
 
 
@@ -99,12 +107,12 @@ def _sentence(kind: str, context: dict[str, Any], value: Any, fallback: str) -> 
     """A validation error of pydantic, by its kind, in the words of someone who edits a train file."""
     if kind in _KINDS:
         return _KINDS[kind]
-    if kind in ("too_short", "too_long"):
+    if kind in ("too_short", "too_long") and not isinstance(value, str):
         count = context.get("actual_length", len(value) if isinstance(value, list) else 0)
         return "has no members" if count == 0 else f"has {count} member{'s' if count != 1 else ''}"
-    if kind == "string_too_short":
-        return "says too little" if value else "is an empty text"
-    if kind == "string_too_long":
+    if kind.endswith("too_short"):
+        return "says too little" if value else "is empty"
+    if kind.endswith("too_long"):
         return f"is too long: {len(value)} characters, and at most {context['max_length']} are read"
     for name, words in (("gt", "above"), ("ge", "at least"), ("lt", "below"), ("le", "at most")):
         if name in context:
@@ -113,7 +121,7 @@ def _sentence(kind: str, context: dict[str, Any], value: Any, fallback: str) -> 
 
 
 _KINDS = {
-    "string_type": "is not a text in quotes",
+    "string_type": "is not text",
     "list_type": "is not a list",
     "dict_type": "is not a table",
     "model_type": "is not a table",
@@ -135,8 +143,8 @@ def _allowed(row: type[BaseModel], loc: tuple[str | int, ...], system: str) -> s
         return ", ".join(keys_of(row))
     parent, key = _row_at(row, loc[: loc.index(keys[-1])]), keys[-1]
     field = _field(parent, key)
-    if key == "teeth" and parent is not None and "sun" in parent.model_fields:
-        return EPICYCLIC_TEETH
+    if parent is EpicyclicRow and key in EPICYCLIC:
+        return EPICYCLIC[key]
     for item in field[1]:
         if isinstance(item, Measured):
             return measure_help(item.measure, system)
@@ -148,7 +156,7 @@ def _allowed(row: type[BaseModel], loc: tuple[str | int, ...], system: str) -> s
     if options := _options(row, loc):
         return " | ".join(str(option) for option in options)
     return {
-        str: "a text in quotes",
+        str: "text in quotes",
         int: "a whole number without quotes",
         float: "a number without quotes or unit",
         bool: "true or false, without quotes",

@@ -102,7 +102,7 @@ def lay_cases(document: Document, names: tuple[str, ...]) -> Data:
     """
     data: Data = copy.deepcopy(document.data)
     known = case_names(data)
-    for name in names:
+    for position, name in enumerate(names):
         if name not in known:
             message = f'there is no case "{name}"{did_you_mean(name, known)}'
             allowed = ", ".join(known) or "this file has no cases"
@@ -117,8 +117,9 @@ def lay_cases(document: Document, names: tuple[str, ...]) -> Data:
             **{table: _merge_table(table, data.get(table, {}), rows) for table, rows in changes.items()},
         }
         if laid == data:
-            before = " more than the cases before it" if name != names[0] else ""
-            raise TrainFileError([_problem(document, ("cases", name), f"this case changes nothing{before}")])
+            why = "changes nothing" if position == 0 else "changes nothing after the cases before it"
+            twice = "is laid twice" if name in names[:position] else why
+            raise TrainFileError([_problem(document, ("cases", name), f"this case {twice}")])
         data = laid
     return data
 

@@ -348,6 +348,8 @@ def _mismatch(unit: str, units: Units, spec: Measure) -> str:
     if kind is not None:
         head = f'"{unit}" is {_with_article(kind)}, {_with_article(spec)} is wanted'
     if any(_factor((*units, ("radian", power)))[1] == wanted for power in (1, -1)):
+        if dict(dimension).get("[angle]"):
+            return f"{head}: no angle belongs here{' (Hz or cpm)' if 'frequency' in spec.name else ''}"
         return f"{head}: the angle is missing (rad or deg{', or rpm' if 'speed' in spec.name else ''})"
     weighed = tuple(("kilogram_force" if name == "kilogram" else name, power) for name, power in units)
     if _factor(weighed)[1] == wanted:

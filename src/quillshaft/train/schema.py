@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import copy
 import json
 from typing import Any
 
@@ -22,8 +21,8 @@ def _reference(row: type[BaseModel]) -> Schema:
 
 
 def _keyed(table: str) -> Schema:
-    classes = {"machines": MACHINE_ROWS, "gears": GEAR_ROWS}.get(table)
-    row = _reference(ROWS[table]) if classes is None else {"anyOf": [_reference(item) for item in classes.values()]}
+    kinds: dict[str, list[type[BaseModel]]] = {"machines": [*MACHINE_ROWS.values()], "gears": [*GEAR_ROWS.values()]}
+    row = {"anyOf": [_reference(item) for item in kinds[table]]} if table in kinds else _reference(ROWS[table])
     return {"type": "object", "additionalProperties": row}
 
 
@@ -41,13 +40,21 @@ def _tables() -> Schema:
     return tables
 
 
-def _partial(node: Any) -> Any:
-    """The same schema with nothing required, and its references to the partial definitions."""
+def _partial(row: Schema, omit: bool) -> Schema:
+    """A row's schema as a case takes it: nothing required, and the row itself can be left out."""
+    out = {key: value for key, value in row.items() if key != "required"}
+    if omit:
+        out["properties"] = {**out.get("properties", {}), "omit": {"const": True}}
+    return out
+
+
+def _for_cases(node: Any) -> Any:
+    """The same tables with their references led to the partial rows."""
     if isinstance(node, list):
-        return [_partial(item) for item in node]
+        return [_for_cases(item) for item in node]
     if not isinstance(node, dict):
         return node
-    out = {key: _partial(value) for key, value in node.items() if key != "required"}
+    out = {key: _for_cases(value) for key, value in node.items()}
     if "$ref" in out:
         out["$ref"] = out["$ref"].replace("#/$defs/", "#/$defs/case-")
     return out
@@ -55,17 +62,17 @@ def _partial(node: Any) -> Any:
 
 def build_schema() -> Schema:
     """The schema as data: every table and key, cases as partial tables."""
-    rows = [*PLAIN.values(), *ROWS.values(), *MACHINE_ROWS.values(), *GEAR_ROWS.values()]
-    _, made = models_json_schema([(row, "validation") for row in rows], by_alias=True)
+    elements = [*ROWS.values(), *MACHINE_ROWS.values(), *GEAR_ROWS.values()]
+    _, made = models_json_schema([(row, "validation") for row in [*PLAIN.values(), *elements]], by_alias=True)
     definitions: Schema = made["$defs"]
-    partial = {f"case-{name}": _partial(copy.deepcopy(item)) for name, item in definitions.items()}
-    for name, item in partial.items():
-        if name != "case-PieceRow":
-            item.setdefault("properties", {})["omit"] = {"const": True}
+    partial = {
+        f"case-{row.__name__}": _partial(definitions[row.__name__], row in elements)
+        for row in [*PLAIN.values(), *elements]
+    }
     tables = _tables()
     case = {
         "type": "object",
-        "properties": {"because": {"type": "string"}, **_partial(copy.deepcopy(tables))},
+        "properties": {"because": {"type": "string"}, **_for_cases(tables)},
         "additionalProperties": False,
     }
     return {

@@ -173,7 +173,7 @@ def joint_text(screening: Screening, joint: Joint, joints: tuple[Joint, ...]) ->
     graph = screening.graph
     link = graph.links[joint.link]
     if joint is not next(other for other in joints if other.link == joint.link):
-        return f"{link.name}, the same stage"
+        return f"{link.name} (the same stage)"
     words = [link.name]
     if link.ratio_text:
         words.append(link.ratio_text + _fixed_member(screening, link.name))

@@ -20,7 +20,7 @@ from quillshaft.present.charts import look
 from quillshaft.present.charts.key import draw_key, key_height, line_note
 from quillshaft.present.charts.operating import draw_operation
 from quillshaft.present.charts.panels import Panel, leaves, panels
-from quillshaft.present.charts.phrases import interference_title, listed
+from quillshaft.present.charts.phrases import governing_pair, interference_title
 from quillshaft.present.charts.spread import Box, free_spot, spread
 from quillshaft.present.words import number
 
@@ -29,11 +29,13 @@ if TYPE_CHECKING:
     from matplotlib.figure import Figure
 
 LEFT_MM = 13.0
-RIGHT_MM = 33.0
+RIGHT_MM = 36.0
 STRIP_MM = 15.0
 PLOT_MM = look.WIDTH_MM - LEFT_MM - RIGHT_MM
 LABEL_MM = look.SMALL_PT * look.POINT_MM * 1.15
 NUMBERED = 8
+NEAR_RANGE = 0.4
+"""A line that leaves the frame below this share of the slowest running speed gets no label of its own."""
 
 
 @dataclass(frozen=True)
@@ -57,42 +59,71 @@ def interference_diagram(screening: Screening) -> Figure:
     top = top_speed_rpm(screening)
     content = Content(screening, source_lines(screening, top), mode_bands(screening), pair_marks(screening), top)
     plots = panels(content.bands, content.lines)
-    exits = [_top_exits(content, panel) for panel in plots]
-    heads = [max((look.width_mm(text) for _, text in found), default=0.0) + 3.5 for found in exits]
-    foot = key_height(content.marks[:NUMBERED], len(content.marks)) + len(line_note(content.lines)) * look.line_mm()
+    exits = [_exits(content, plots, index, True) for index in range(len(plots))]
+    heads = [max((look.width_mm(text) for *_, text in found), default=-1.0) + 4.0 for found in exits]
+    note = line_note(content.lines, _unlabelled(content, plots))
+    foot = key_height(content.marks[:NUMBERED], len(content.marks)) + len(note) * look.line_mm()
     total = foot + STRIP_MM + sum(panel.height_mm for panel in plots) + sum(heads)
     made = look.frame(interference_title(screening), total)
-    draw_key(made, foot, content.marks[:NUMBERED], len(content.marks), line_note(content.lines))
+    draw_key(made, foot, content.marks[:NUMBERED], len(content.marks), note)
     draw_operation(made, screening, (LEFT_MM, foot, PLOT_MM, STRIP_MM), top)
     y = foot + STRIP_MM
-    for panel, head, found in zip(plots, heads, exits, strict=True):
+    for index, (panel, head, found) in enumerate(zip(plots, heads, exits, strict=True)):
         axes = look.plot_axes(made, (LEFT_MM, y, PLOT_MM, panel.height_mm))
         _draw_panel(axes, content, panel)
         _write_top_exits(made, content, found, y + panel.height_mm, head)
-        _write_right_exits(made, content, panel, y)
+        _write_right_exits(made, panel, _exits(content, plots, index, False), y)
         y += panel.height_mm + head
     return made.figure
 
 
 def _shown(content: Content, line: SourceLine) -> bool:
     """True where a line is labelled: all but minor engine orders, and those of the pairs in the key."""
-    listed_pairs = [mark.pair for mark in content.marks[:NUMBERED]]
-    return not line.minor or any(pair in listed_pairs for pair in line.pairs)
+    keyed = [mark.pair for mark in content.marks[:NUMBERED]]
+    return not line.minor or any(pair in keyed for pair in line.pairs)
+
+
+def _leading_source(content: Content) -> str:
+    """The source that the title names, "" where it names none."""
+    pair = governing_pair(content.screening)
+    return pair.source if pair is not None else ""
+
+
+def _labelled_in(content: Content, line: SourceLine, plots: tuple[Panel, ...]) -> int | None:
+    """The panel that holds a line's label: the highest that it reaches near running speeds; None for no label."""
+    operation = content.screening.train.operation
+    slow = NEAR_RANGE * min(low for low, _ in operation.ranges_rad_s) * RPM
+    for index in range(len(plots) - 1, -1, -1):
+        at = leaves(line, plots[index])
+        named = _leading_source(content) in line.names
+        if at is not None and (at[0] >= slow or named) and (_shown(content, line) or named):
+            return index
+    return None
+
+
+def _unlabelled(content: Content, plots: tuple[Panel, ...]) -> list[str]:
+    """Names of lines, minor orders apart, that leave the frame too early for a label."""
+    return [line.names[0] for line in content.lines if not line.minor and _labelled_in(content, line, plots) is None]
 
 
 def line_label(line: SourceLine) -> str:
     """Names of the sources on a line, shortened to what the margin holds."""
-    text = listed(line.names, 2) if len(line.names) <= 2 else f"{line.names[0]} + {len(line.names) - 1} more"
-    return look.shorten(text + (" (start only)" if line.starting else ""), RIGHT_MM - 5.0)
+    tail = " (not judged)" if line.starting else ""
+    text = ", ".join(line.names) + tail
+    if look.width_mm(text) > RIGHT_MM - 5.0 and len(line.names) > 1:
+        text = f"{line.names[0]} +{len(line.names) - 1}" + tail
+    return look.shorten(text, RIGHT_MM - 5.0)
 
 
-def _top_exits(content: Content, panel: Panel) -> list[tuple[float, str]]:
-    """(rpm, label) of lines that leave a panel by its top."""
+def _exits(content: Content, plots: tuple[Panel, ...], number: int, by_top: bool) -> list[tuple[float, float, str]]:
+    """(rpm, Hz, label) of the lines labelled at a panel's top, or at its right edge."""
     found = []
     for line in content.lines:
-        at = leaves(line, panel)
-        if at is not None and _shown(content, line) and at[0] < content.top_rpm * (1.0 - 1e-9):
-            found.append((at[0], line_label(line)))
+        at = leaves(line, plots[number])
+        if at is None or _labelled_in(content, line, plots) != number:
+            continue
+        if (at[0] < content.top_rpm * (1.0 - 1e-9)) == by_top:
+            found.append((*at, line_label(line)))
     return found
 
 
@@ -105,30 +136,26 @@ def _y(panel: Panel, frequency_hz: float, foot_mm: float) -> float:
 
 
 def _write_top_exits(
-    made: look.Frame, content: Content, found: list[tuple[float, str]], foot_mm: float, head_mm: float
+    made: look.Frame, content: Content, found: list[tuple[float, float, str]], foot_mm: float, head_mm: float
 ) -> None:
     """Upright labels over a panel, moved apart, each joined to the end of its line."""
     if not found:
         return
     axes = look.millimetre_axes(made, foot_mm, foot_mm + head_mm)
-    wanted = [_x(content, rpm) for rpm, _ in found]
+    wanted = [_x(content, rpm) for rpm, *_ in found]
     centres = spread(wanted, [LABEL_MM] * len(found), LEFT_MM, look.WIDTH_MM)
-    for (_, text), at, centre in zip(found, wanted, centres, strict=True):
+    for (*_, text), at, centre in zip(found, wanted, centres, strict=True):
         axes.plot([at, centre], [0.0, 2.0], lw=look.HAIR_PT, color=look.QUIET)
         look.put(axes, centre, 2.5, text, rotation=90, va="bottom", gid="source")
 
 
-def _write_right_exits(made: look.Frame, content: Content, panel: Panel, foot_mm: float) -> None:
+def _write_right_exits(made: look.Frame, panel: Panel, found: list[tuple[float, float, str]], foot_mm: float) -> None:
     """Labels right of a panel, moved apart, each joined to the end of its line."""
-    found = []
-    for line in content.lines:
-        at = leaves(line, panel)
-        if at is not None and _shown(content, line) and at[0] >= content.top_rpm * (1.0 - 1e-9):
-            found.append((_y(panel, at[1], 0.0), line_label(line)))
+    ends = [_y(panel, frequency, 0.0) for _, frequency, _ in found]
     axes = look.millimetre_axes(made, foot_mm - 3.0, foot_mm + panel.height_mm + 3.0)
-    centres = spread([y for y, _ in found], [LABEL_MM] * len(found), -2.5, panel.height_mm + 2.5)
+    centres = spread(ends, [LABEL_MM] * len(found), -2.5, panel.height_mm + 2.5)
     edge = LEFT_MM + PLOT_MM
-    for (y, text), centre in zip(found, centres, strict=True):
+    for y, (*_, text), centre in zip(ends, found, centres, strict=True):
         axes.plot([edge, edge + 2.6], [y + 3.0, centre + 3.0], lw=look.HAIR_PT, color=look.QUIET)
         look.put(axes, edge + 3.2, centre + 3.0, text, ha="left", gid="source")
 
@@ -235,7 +262,7 @@ def _draw_marks(axes: Axes, content: Content, panel: Panel, taken: list[Box]) ->
             continue
         around = [
             (x + dx - 1.3, y + dy - 1.5, x + dx + 1.3, y + dy + 1.5)
-            for reach in (2.9, 4.4, 6.0)
+            for reach in (3.2, 4.7, 6.2)
             for dx, dy in ((reach, 0.8), (-reach, 0.8), (0.7, reach), (0.7, -reach), (reach, -reach), (-reach, -reach))
         ]
         box = around[free_spot(around, boxes)]

@@ -7,7 +7,8 @@ from typing import TYPE_CHECKING
 
 from quillshaft.assess.diagram_data import PairMark, SourceLine
 from quillshaft.present.charts import look
-from quillshaft.present.words import VERDICT_WORDS, percent
+from quillshaft.present.charts.phrases import capital, listed
+from quillshaft.present.words import percent
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -16,39 +17,49 @@ ROW_MM = 3.6
 
 
 def entry(mark: PairMark, number: int) -> str:
-    """One line of the key: mode, source, where, nominal and worst verdict."""
+    """One line of the key: mode, sources, and where they meet or how far they stand apart."""
     pair = mark.pair
-    nominal = VERDICT_WORDS[pair.verdict]
-    if pair.verdict in ("close", "clear"):
-        nominal += f" ({percent(pair.margin, True)})"
     text = f"{number}  mode {pair.mode}, {pair.source}"
+    if mark.others:
+        text += f" + {len(mark.others)} more"
     if pair.critical_speed_rpm is not None and pair.verdict in ("crossing", "barred"):
-        text += f" at {pair.critical_speed_rpm:.0f} rpm"
-    text += f": {nominal}"
+        text += f": at {pair.critical_speed_rpm:.0f} rpm"
+    elif pair.verdict == "crossing":
+        text += ": throughout the range"
+    else:
+        text += f": {percent(pair.margin, True)}".replace("-", "−")
     if pair.worst_verdict != pair.verdict:
-        text += f", {VERDICT_WORDS[pair.worst_verdict]} over tolerances"
+        text += ", " + {"crossing": "meets", "barred": "meets, barred,"}.get(
+            pair.worst_verdict, percent(pair.worst_margin, True).replace("-", "−")
+        )
+        text += " over tolerances"
     return text + (", dismissed" if pair.dismissed is not None else "")
 
 
 def key_height(marks: Sequence[PairMark], total: int) -> float:
     """Height [mm] of the key without the lines' note."""
-    rows = -(-len(marks) // 2)
-    return rows * ROW_MM + (ROW_MM if marks else 0.0) + (ROW_MM if total > len(marks) else 0.0) + 3.0
+    return _rows(marks) * ROW_MM + (ROW_MM if marks else 0.0) + (ROW_MM if total > len(marks) else 0.0) + 3.0
+
+
+def _rows(marks: Sequence[PairMark]) -> int:
+    """Lines of the key: one column up to three marks, two beyond."""
+    return len(marks) if len(marks) <= 3 else -(-len(marks) // 2)
 
 
 def draw_key(made: look.Frame, height_mm: float, marks: Sequence[PairMark], total: int, note: list[str]) -> None:
     """Numbered marks in two columns, the shapes in use, the lines in use."""
     axes = look.millimetre_axes(made, 0.0, height_mm)
     y = height_mm - 1.5 - ROW_MM / 2
-    rows, half = -(-len(marks) // 2), look.WIDTH_MM / 2
+    rows, half = _rows(marks), look.WIDTH_MM / 2
+    wide = half if rows < len(marks) else look.WIDTH_MM
     for index, mark in enumerate(marks):
         x = 0.0 if index < rows else half
         row_y = y - (index % rows) * ROW_MM
         _sample(axes, mark_kind(mark), mark.nominal, x + 1.6, row_y)
-        look.put(axes, x + 4.0, row_y, look.shorten(entry(mark, index + 1), half - 6.0), ha="left", gid="key")
+        look.put(axes, x + 4.0, row_y, look.shorten(entry(mark, index + 1), wide - 6.0), ha="left", gid="key")
     y -= rows * ROW_MM
     if total > len(marks):
-        text = f"Marks without a number: {total - len(marks)} more pairs that are not clear, as the table lists them."
+        text = f"Marks without a number: {total - len(marks)} more that are not clear; the table lists them."
         look.put(axes, 0.0, y, text, ha="left", color=look.QUIET)
         y -= ROW_MM
     if marks:
@@ -78,7 +89,7 @@ def _draw_shapes(axes: Axes, marks: Sequence[PairMark], y: float) -> None:
     look.put(axes, x, y, "open: only over the tolerances", ha="left", color=look.QUIET)
 
 
-def line_note(lines: Sequence[SourceLine]) -> list[str]:
+def line_note(lines: Sequence[SourceLine], unlabelled: Sequence[str]) -> list[str]:
     """How to read the lines that are there."""
     kinds = {line.kind for line in lines if not line.minor}
     parts = []
@@ -97,4 +108,6 @@ def line_note(lines: Sequence[SourceLine]) -> list[str]:
     if any(line.low_hz != line.high_hz for line in lines):
         parts.append("hairlines beside a source: supply variation")
     text = "; ".join(parts) + "."
-    return look.wrap(text[:1].upper() + text[1:], look.WIDTH_MM - 5.0)
+    if unlabelled:
+        text += f" Lines without a name leave the frame far below running speed: {listed(unlabelled, 6)}."
+    return look.wrap(capital(text), look.WIDTH_MM - 5.0)

@@ -9,6 +9,7 @@ from __future__ import annotations
 from collections import deque
 from collections.abc import Iterable
 from dataclasses import dataclass
+from itertools import pairwise
 
 from quillshaft.graph.torsional import GraphLink, TorsionalGraph
 
@@ -111,7 +112,7 @@ def take_apart(graph: TorsionalGraph, longest: int) -> Lanes:
     around = pair_neighbours(shafts)
     lanes = []
     for path in paths_over(len(graph.stations), around):
-        links = [link_between(around, a, b) for a, b in zip(path, path[1:], strict=False)]
+        links = [link_between(around, a, b) for a, b in pairwise(path)]
         lanes.append(Lane(tuple(path), tuple(links)))
     lanes = [_with_ground(lane, graph) for lane in lanes]
     pieces, cuts = _cut(lanes, longest)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from quillshaft.assess.results import ModeResult, Screening
@@ -15,11 +16,34 @@ if TYPE_CHECKING:
     from matplotlib.axes import Axes
     from matplotlib.figure import Figure
 
-CURVE_MM = 30.0
-THIN_CURVE_MM = 20.0
 BAR_MM = 3.6
-MOST_BARS = 7
-LEFT_MM = 13.0
+LEFT_MM = 12.0
+START_MM = 6.0
+NARROWEST_MM = 12.5
+SMALLEST = 0.0005
+"""Shares below this are not mentioned."""
+
+
+@dataclass(frozen=True)
+class Setting:
+    """How a figure of modes is laid out: strips side by side in rows, and sizes [mm]."""
+
+    screening: Screening
+    rows: tuple[tuple[Strip, ...], ...]
+    pitch_mm: float
+    curve_mm: float
+    bars: int
+
+    @property
+    def upright(self) -> bool:
+        """True where names stand upright because columns are too narrow for them."""
+        return self.pitch_mm < NARROWEST_MM
+
+    @property
+    def actual(self) -> bool:
+        """True where actual angles differ from referred ones and there is room for a row of them."""
+        scale = self.screening.graph.scale
+        return not self.upright and float(max(scale)) != float(min(scale))
 
 
 def mode_shapes(screening: Screening, numbers: Sequence[int]) -> Figure:
@@ -30,94 +54,95 @@ def mode_shapes(screening: Screening, numbers: Sequence[int]) -> Figure:
     if not 1 <= len(numbers) <= 3:
         raise ValueError(f"a figure shows one to three modes, not {len(numbers)}")
     modes = [screening.mode(number) for number in numbers]
-    runs = strips(screening.graph)
-    note = _note_lines(screening, runs)
-    panels = [_panel_height(screening, runs, mode) for mode in modes]
+    setting = _setting(screening, len(modes))
+    note = _note_lines(setting)
+    panels = [_panel_height(setting, mode) for mode in modes]
     heads = [look.wrap(mode_title(screening, mode), look.WIDTH_MM - 2.0, look.TITLE_PT, True) for mode in modes]
-    extra = sum(len(head) * look.line_mm(look.TITLE_PT) + 5.0 for head in heads[1:])
+    extra = sum(len(head) * look.line_mm(look.TITLE_PT) + 4.0 for head in heads[1:])
     foot = len(note) * look.line_mm() + 2.0
     made = look.frame(mode_title(screening, modes[0]), sum(panels) + extra + foot)
     y = made.top_mm
     for index, mode in enumerate(modes):
         if index:
-            y -= 4.0
-            look.heading(made, y, heads[index])
-            y -= len(heads[index]) * look.line_mm(look.TITLE_PT) + 1.0
-        _draw_mode(made, screening, runs, mode, y)
+            look.heading(made, y - 3.0, heads[index])
+            y -= len(heads[index]) * look.line_mm(look.TITLE_PT) + 4.0
+        _draw_mode(made, setting, mode, y)
         y -= panels[index]
     look.notes(look.millimetre_axes(made, 0.0, foot), foot - 1.0, note)
     return made.figure
 
 
-def _most(runs: tuple[Strip, ...]) -> int:
-    return max(len(run.stations) for run in runs)
+def _setting(screening: Screening, modes: int) -> Setting:
+    runs = strips(screening.graph)
+    most = max(len(run.stations) for run in runs)
+    pitch = min(26.0, (look.WIDTH_MM - LEFT_MM - START_MM) / max(0.5, most - 0.5))
+    rows: list[list[Strip]] = []
+    for run in runs:
+        used = sum(_strip_width(other, pitch) for other in rows[-1]) if rows else look.WIDTH_MM
+        if used + _strip_width(run, pitch) <= look.WIDTH_MM + 0.01:
+            rows[-1].append(run)
+        else:
+            rows.append([run])
+    curve = {1: 30.0, 2: 25.0, 3: 21.0}[modes] * (1.0 if len(rows) == 1 else 0.75)
+    return Setting(screening, tuple(map(tuple, rows)), pitch, curve, {1: 7, 2: 5, 3: 4}[modes])
 
 
-def _pitch(runs: tuple[Strip, ...]) -> float:
-    return min(26.0, (look.WIDTH_MM - LEFT_MM - 10.0) / max(1, _most(runs) - 1))
+def _strip_width(run: Strip, pitch_mm: float) -> float:
+    """Width [mm] of a strip with its axis, from name to name."""
+    return LEFT_MM + START_MM + pitch_mm * (len(run.stations) - 0.5)
 
 
-def _upright(runs: tuple[Strip, ...]) -> bool:
-    """True where names stand upright because columns are too narrow for them."""
-    return _pitch(runs) < 12.5
-
-
-def _names_height(screening: Screening, run: Strip, runs: tuple[Strip, ...]) -> float:
+def _names_height(setting: Setting, run: Strip) -> float:
     """Height [mm] of the station names under a strip."""
-    names = [screening.graph.stations[station] for station in run.stations]
-    if _upright(runs):
+    names = [setting.screening.graph.stations[station] for station in run.stations]
+    if setting.upright:
         return min(24.0, max(look.width_mm(name) for name in names)) + 1.5
-    lines = max(len(look.wrap_name(name, _pitch(runs) - 1.5)) for name in names)
+    lines = max(len(look.wrap_name(name, setting.pitch_mm - 1.5)) for name in names)
     return lines * look.line_mm() + 1.0
 
 
-def _actual_row(screening: Screening, runs: tuple[Strip, ...]) -> bool:
-    """True where actual angles differ from referred ones and there is room for a row of them."""
-    return not _upright(runs) and bool(max(screening.graph.scale) != min(screening.graph.scale))
+def _row_height(setting: Setting, row: tuple[Strip, ...]) -> float:
+    caption = look.line_mm() + 0.5 if any(run.caption for run in row) else 0.0
+    actual = look.line_mm() if setting.actual else 0.0
+    names = max(_names_height(setting, run) for run in row)
+    return caption + setting.curve_mm + names + actual + 1.5
 
 
-def _curve_mm(runs: tuple[Strip, ...]) -> float:
-    return CURVE_MM if len(runs) == 1 else THIN_CURVE_MM
-
-
-def _strip_height(screening: Screening, run: Strip, runs: tuple[Strip, ...]) -> float:
-    caption = look.line_mm() + 0.5 if run.caption else 0.0
-    actual = look.line_mm() if _actual_row(screening, runs) else 0.0
-    return caption + _curve_mm(runs) + _names_height(screening, run, runs) + actual + 1.5
-
-
-def _bars(shares: dict[str, float]) -> tuple[list[tuple[str, float]], float]:
+def _bars(shares: dict[str, float], most: int) -> tuple[list[tuple[str, float]], float]:
     """The largest shares above 1 %, and what the others sum to."""
     ranked = sorted(shares.items(), key=lambda item: -item[1])
-    shown = [item for item in ranked[:MOST_BARS] if item[1] >= 0.01]
+    shown = [item for item in ranked[:most] if item[1] >= 0.01]
     return shown, sum(share for _, share in ranked[len(shown) :])
 
 
-def _panel_height(screening: Screening, runs: tuple[Strip, ...], mode: ModeResult) -> float:
-    curves = sum(_strip_height(screening, run, runs) for run in runs)
-    rows = max(len(_bars(mode.strain_energy)[0]), len(_bars(mode.kinetic_energy)[0])) + 2
+def _panel_height(setting: Setting, mode: ModeResult) -> float:
+    curves = sum(_row_height(setting, row) for row in setting.rows)
+    lists = (_bars(shares, setting.bars) for shares in (mode.strain_energy, mode.kinetic_energy))
+    rows = max(len(shown) + (rest >= SMALLEST) for shown, rest in lists) + 1
     return curves + rows * BAR_MM + 3.0
 
 
-def _draw_mode(
-    made: look.Frame, screening: Screening, runs: tuple[Strip, ...], mode: ModeResult, top_mm: float
-) -> None:
+def _draw_mode(made: look.Frame, setting: Setting, mode: ModeResult, top_mm: float) -> None:
     y = top_mm
-    for run in runs:
-        height = _strip_height(screening, run, runs)
-        _draw_strip(made, screening, runs, run, mode, y)
-        y -= height
+    for row in setting.rows:
+        left = 0.0
+        for run in row:
+            head = look.line_mm() + 0.5 if any(other.caption for other in row) else 0.0
+            _draw_strip(made, setting, run, mode, (left, y), head)
+            left += _strip_width(run, setting.pitch_mm)
+        y -= _row_height(setting, row)
     axes = look.millimetre_axes(made, 0.0, y)
     half = look.WIDTH_MM / 2.0
-    _draw_bars(axes, "Strain energy by link", mode.strain_energy, 0.0, y - 2.0, hatched=True)
-    _draw_bars(axes, "Kinetic energy by station", mode.kinetic_energy, half + 2.0, y - 2.0, hatched=False)
+    strain, kinetic = (_bars(shares, setting.bars) for shares in (mode.strain_energy, mode.kinetic_energy))
+    _draw_bars(axes, "Strain energy by link", strain, 0.0, y - 1.5, hatched=True)
+    _draw_bars(axes, "Kinetic energy by station", kinetic, half + 2.0, y - 1.5, hatched=False)
 
 
 def _draw_bars(axes: Axes, heading: str, shares: dict[str, float], left: float, top: float, hatched: bool) -> None:
     """A ranked list of shares with bars; the rest summed up in its last line."""
     from matplotlib.patches import Rectangle
 
-    shown, rest = _bars(shares)
+    shown, rest = shares
     name_mm, full_mm = 33.0, 33.0
     look.put(axes, left, top - BAR_MM / 2, heading, ha="left", color=look.ACCENT, fontweight="bold")
     for index, (name, share) in enumerate(shown, start=1):
@@ -135,39 +160,40 @@ def _draw_bars(axes: Axes, heading: str, shares: dict[str, float], left: float, 
             )
         )
         look.put(axes, left + name_mm + full_mm * share + 1.2, y, f"{share * 100:.1f} %", ha="left")
-    if rest >= 0.0005:
+    if rest >= SMALLEST:
         y = top - (len(shown) + 1.5) * BAR_MM
         look.put(axes, left, y, f"others together {rest * 100:.1f} %", ha="left", color=look.QUIET)
 
 
 def _draw_strip(
     made: look.Frame,
-    screening: Screening,
-    runs: tuple[Strip, ...],
+    setting: Setting,
     run: Strip,
     mode: ModeResult,
-    top_mm: float,
+    corner_mm: tuple[float, float],
+    head_mm: float,
 ) -> None:
+    """One strip below and right of its upper left corner, `head_mm` kept for its caption."""
+    left, top = corner_mm[0] + LEFT_MM, corner_mm[1] - head_mm
     if run.caption:
-        head = look.millimetre_axes(made, top_mm - look.line_mm() - 0.5, top_mm)
-        look.put(head, LEFT_MM, look.line_mm() / 2, capital(run.caption), ha="left", color=look.QUIET)
-        top_mm -= look.line_mm() + 0.5
-    pitch, curve = _pitch(runs), _curve_mm(runs)
-    box = (LEFT_MM, top_mm - curve, pitch * max(1, len(run.stations) - 1) + 8.0, curve)
-    axes = look.plot_axes(made, box)
-    names = [screening.graph.stations[station] for station in run.stations]
-    x = [4.0 + pitch * k for k in range(len(names))]
+        head = look.millimetre_axes(made, top, corner_mm[1])
+        look.put(head, left, head_mm / 2, capital(run.caption), ha="left", color=look.QUIET, gid="caption")
+    pitch = setting.pitch_mm
+    width = START_MM + pitch * max(0.6, len(run.stations) - 1) + 1.0
+    axes = look.plot_axes(made, (left, top - setting.curve_mm, width, setting.curve_mm))
+    names = [setting.screening.graph.stations[station] for station in run.stations]
+    x = [START_MM + pitch * k for k in range(len(names))]
     y = [mode.referred_shape[name] for name in names]
-    axes.set_xlim(0.0, box[2])
+    axes.set_xlim(0.0, width)
     axes.set_ylim(-1.5, 1.5)
     axes.set_yticks([-1.0, 0.0, 1.0], ["−1", "0", "1"])
     axes.set_xticks([])
     for side in ("top", "right", "bottom"):
         axes.spines[side].set_visible(False)
     axes.axhline(0.0, lw=look.THIN_PT, color=look.QUIET, zorder=1)
-    _draw_curve(axes, screening, run, mode, x, y)
+    _draw_curve(axes, setting.screening, run, mode, x, y)
     _label_points(axes, x, y, pitch, run.lead)
-    _write_names(made, screening, runs, run, mode, top_mm - curve)
+    _write_names(made, setting, run, mode, (left, top - setting.curve_mm))
 
 
 def _draw_curve(axes: Axes, screening: Screening, run: Strip, mode: ModeResult, x: list[float], y: list[float]) -> None:
@@ -216,8 +242,10 @@ def _label_points(axes: Axes, x: list[float], y: list[float], pitch: float, lead
         if lead and k == 0:
             continue
         up = height >= 0
-        at = height + (0.13 if up else -0.13)
-        look.put(axes, x[k], at, signed(height), va="bottom" if up else "top", gid="value", zorder=8)
+        at = height + (0.17 if up else -0.17)
+        clear = {"facecolor": look.PAPER, "edgecolor": "none", "pad": 0.3, "alpha": 0.8}
+        va = "bottom" if up else "top"
+        look.put(axes, x[k], at, signed(height), va=va, gid="value", zorder=5.5, bbox=clear)
 
 
 def signed(value: float) -> str:
@@ -227,39 +255,33 @@ def signed(value: float) -> str:
 
 
 def _write_names(
-    made: look.Frame,
-    screening: Screening,
-    runs: tuple[Strip, ...],
-    run: Strip,
-    mode: ModeResult,
-    top_mm: float,
+    made: look.Frame, setting: Setting, run: Strip, mode: ModeResult, corner_mm: tuple[float, float]
 ) -> None:
     """Station names under the strip, and actual angles under the names."""
-    tall = _names_height(screening, run, runs)
-    actual = _actual_row(screening, runs)
-    foot = top_mm - tall - (look.line_mm() if actual else 0.0)
-    axes = look.millimetre_axes(made, foot, top_mm)
-    height, pitch = top_mm - foot, _pitch(runs)
-    if actual:
-        look.put(axes, 0.0, look.line_mm() / 2, "actual", ha="left", color=look.QUIET)
+    left, top = corner_mm
+    tall = _names_height(setting, run)
+    foot = top - tall - (look.line_mm() if setting.actual else 0.0)
+    axes = look.millimetre_axes(made, foot, top)
+    if setting.actual:
+        look.put(axes, left - 1.0, look.line_mm() / 2, "actual", ha="right", color=look.QUIET)
     for k, station in enumerate(run.stations):
-        name, at = screening.graph.stations[station], LEFT_MM + 4.0 + pitch * k
-        if _upright(runs):
-            look.put(axes, at, height - 0.8, look.shorten(name, 24.0), rotation=90, va="top", gid="station")
+        name, at = setting.screening.graph.stations[station], left + START_MM + setting.pitch_mm * k
+        if setting.upright:
+            look.put(axes, at, top - foot - 0.8, look.shorten(name, 24.0), rotation=90, va="top", gid="station")
             continue
-        for row, text in enumerate(look.wrap_name(name, pitch - 1.5)):
-            look.put(axes, at, height - (row + 0.5) * look.line_mm(), text, gid="station")
-        if actual:
+        for row, text in enumerate(look.wrap_name(name, setting.pitch_mm - 1.5)):
+            look.put(axes, at, top - foot - (row + 0.5) * look.line_mm(), text, gid="station")
+        if setting.actual:
             look.put(axes, at, look.line_mm() / 2, signed(mode.shape[name]), color=look.QUIET)
 
 
-def _note_lines(screening: Screening, runs: tuple[Strip, ...]) -> list[str]:
+def _note_lines(setting: Setting) -> list[str]:
     text = (
-        f"Curve and figures: angle referred to {screening.train.operation.speed_at}, the largest 1; "
+        f"Curve and figures: angle referred to {setting.screening.train.operation.speed_at}, the largest 1; "
         "diamond: stands still; crossed box: coupling; short strokes: gear mesh."
     )
-    if _actual_row(screening, runs):
+    if setting.actual:
         text += " Actual: each shaft's own angle, the largest 1."
-    if any(run.lead for run in runs):
+    if any(run.lead for row in setting.rows for run in row):
         text += " Open point: a station of another strip."
     return look.wrap(text, look.WIDTH_MM - 5.0)

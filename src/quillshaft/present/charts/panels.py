@@ -27,15 +27,21 @@ def panels(bands: Sequence[ModeBand], lines: Sequence[SourceLine]) -> tuple[Pane
         return (Panel(0.0, 1.05 * highest or 1.0, (), 80.0),)
     low, high = bands[0].nominal_hz, bands[-1].nominal_hz
     if high <= WIDE_SPAN * low or len(bands) == 1:
-        return (Panel(0.0, 1.08 * _top(bands), tuple(bands), 98.0),)
+        return (Panel(0.0, _roomy(1.08 * _top(bands), lines), tuple(bands), 98.0),)
     cut = max(range(1, len(bands)), key=lambda i: bands[i].nominal_hz / bands[i - 1].nominal_hz)
     below, above = tuple(bands[:cut]), tuple(bands[cut:])
     share = 30.0 + 55.0 * len(below) / len(bands)
     foot = 0.97 * min(above[0].low_hz, above[0].free_from_hz)
     return (
-        Panel(0.0, 1.12 * _top(below), below, share),
+        Panel(0.0, min(foot, _roomy(1.12 * _top(below), lines)), below, share),
         Panel(foot, 1.03 * _top(above), above, 115.0 - share),
     )
+
+
+def _roomy(high_hz: float, lines: Sequence[SourceLine]) -> float:
+    """The upper end raised by up to a quarter where a line then ends at the right edge instead of the top."""
+    ends = [1.02 * line.nominal_hz[-1] for line in lines]
+    return max((end for end in ends if high_hz < end <= 1.25 * high_hz), default=high_hz)
 
 
 def _top(bands: Sequence[ModeBand]) -> float:

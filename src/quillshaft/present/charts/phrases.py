@@ -10,7 +10,7 @@ from quillshaft.present.charts.lanes import pair_neighbours, paths_over
 from quillshaft.present.words import number, percent, plain
 
 RPM = 30.0 / 3.141592653589793
-_COUNTS = "no one two three four five six seven eight nine ten eleven twelve".split()
+_COUNTS = ["no", "one", "two", "three", "four", "five", "six", "seven", "eight", "nine", "ten", "eleven", "twelve"]
 
 
 def count(amount: int, noun: str) -> str:
@@ -101,16 +101,31 @@ def _connected(stations: int, around: dict[int, list[tuple[int, int]]]) -> int:
 
 def mode_title(screening: Screening, mode: ModeResult) -> str:
     """What a mode does: who swings against whom, where it strains, where it stands still."""
-    link, share = max(mode.strain_energy.items(), key=lambda item: item[1])
-    text = f"Mode {mode.mode}, {number(mode.frequency_hz, 3)} Hz: {swing_words(mode)}"
-    text += f"; {share * 100:.0f} % of the strain is in {link}"
-    nodes = [node for node in mode.nodes if node.link == link]
-    if nodes:
-        start = screening.graph.stations[screening.graph.link(link).stations[0]]
-        text += f", with a node {nodes[0].share * 100:.0f} % of the way along it from {start}"
+    text = f"Mode {mode.mode}, {number(mode.frequency_hz)} Hz: {swing_words(mode)}"
+    links, share = leading_links(mode)
+    if links:
+        verb = "holds" if len(links) == 1 else "hold"
+        text += f"; {listed(links)} {verb} {share * 100:.0f} % of the strain"
+    nodes = [node for node in mode.nodes if links and node.link == links[0]]
+    if nodes and len(links) == 1:
+        start = screening.graph.stations[screening.graph.link(links[0]).stations[0]]
+        text += f", with a node {nodes[0].share * 100:.0f} % along it from {start}"
     if len(mode.cluster) > 1:
         text += f" (one basis of {len(mode.cluster)} equal modes)"
     return text
+
+
+def leading_links(mode: ModeResult) -> tuple[list[str], float]:
+    """The links, at most three, that hold half the strain energy or more, and their share."""
+    ranked = sorted(mode.strain_energy.items(), key=lambda item: -item[1])
+    links: list[str] = []
+    total = 0.0
+    for name, share in ranked[:3]:
+        if total >= 0.5 or share <= 0.0:
+            break
+        links.append(name)
+        total += share
+    return links, total
 
 
 def swing_words(mode: ModeResult) -> str:
@@ -131,35 +146,39 @@ def interference_title(screening: Screening) -> str:
     """The verdict of the diagram in one sentence."""
     pairs = [pair for pair in screening.not_clear() if pair.dismissed is None]
     dismissed = len(screening.not_clear()) - len(pairs)
-    if not screening.interferences:
-        return "Nothing is judged: no continuous source reaches a natural frequency of this train"
     tail = f" ({count(dismissed, 'pair')} dismissed)" if dismissed else ""
+    leading = governing_pair(screening)
+    if leading is None:
+        if screening.interferences:
+            return "Every interference of this train is dismissed"
+        return "Nothing is judged: no continuous source reaches a natural frequency of this train"
     if not pairs:
-        return _clear_title(screening) + tail
+        return _clear_title(screening, leading) + tail
     rest = len(pairs) - 1
-    end = "all else is clear" if not rest else f"{count(rest, 'more pair')} of mode and source {_be(rest)} not clear"
-    return f"{pair_words(screening, pairs[0])}; {end}{tail}"
+    be = "is" if rest == 1 else "are"
+    end = f"{count(rest, 'more pair')} of mode and source {be} not clear" if rest else "all else is clear"
+    return f"{pair_words(leading)}; {end}{tail}"
 
 
-def _be(amount: int) -> str:
-    return "is" if amount == 1 else "are"
-
-
-def _clear_title(screening: Screening) -> str:
+def governing_pair(screening: Screening) -> Interference | None:
+    """The pair that the title names: the worst not dismissed, else the nearest; None where nothing is judged."""
+    worst = next((pair for pair in screening.not_clear() if pair.dismissed is None), None)
     judged = [pair for pair in screening.interferences if pair.dismissed is None]
-    if not judged:
-        return "Every interference of this train is dismissed"
-    near = min(judged, key=lambda pair: abs(pair.worst_margin))
-    modes = count(len(screening.judged_modes), "judged mode")
+    return worst or min(judged, key=lambda pair: abs(pair.worst_margin), default=None)
+
+
+def _clear_title(screening: Screening, near: Interference) -> str:
+    amount = len(screening.judged_modes)
+    modes = "The one judged mode is" if amount == 1 else f"All {count(amount, 'judged mode')} are"
     side = "below" if near.margin < 0 else "above"
     return (
-        f"{capital(modes)} clear of every source; the nearest, mode {near.mode}, stays "
+        f"{modes} clear of every source; the nearest, mode {near.mode}, stays "
         f"{percent(abs(near.worst_margin))} {side} {near.source} over the tolerances "
         f"({plain(near.worst_required)} required)"
     )
 
 
-def pair_words(screening: Screening, pair: Interference) -> str:
+def pair_words(pair: Interference) -> str:
     """ "Mode 2 is 3.2 % below interharmonic and meets it over the tolerances"."""
     if pair.verdict == "crossing":
         where = "" if pair.critical_speed_rpm is None else f" at {pair.critical_speed_rpm:.0f} rpm"

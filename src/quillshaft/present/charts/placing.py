@@ -10,7 +10,6 @@ from dataclasses import dataclass
 
 from quillshaft.present.charts.lanes import Joint, Lanes
 
-
 ROOMY = 7
 """Up to so many columns a lane rather goes on to the right than back under its neighbour."""
 

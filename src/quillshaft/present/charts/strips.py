@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import pairwise
 
 from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.present.charts.lanes import link_between, pair_neighbours
@@ -44,9 +45,9 @@ def _strip(graph: TorsionalGraph, around: dict[int, list[tuple[int, int]]], path
     ends = [join for join in joins if join[0] in (0, len(path) - 1)]
     lead = bool(ends)
     if ends:
-        place, other, link = ends[0]
+        place, other, _ = ends[0]
         path = [other, *(path if place == 0 else path[::-1])]
-    links = tuple(link_between(around, a, b) for a, b in zip(path, path[1:], strict=False))
+    links = tuple(link_between(around, a, b) for a, b in pairwise(path))
     return Strip(tuple(path), links, lead, _caption(graph, path, joins, ends, done))
 
 

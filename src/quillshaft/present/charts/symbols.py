@@ -48,11 +48,9 @@ def disc(axes: Axes, at: Point, height_mm: float, geared: bool) -> None:
 def shaft(axes: Axes, start: Point, end: Point) -> None:
     """A shaft: two parallel lines."""
     across = 0.55
-    if start[1] == end[1]:
-        sides = [(0.0, across), (0.0, -across)]
-    else:
-        sides = [(across, 0.0), (-across, 0.0)]
-    for dx, dy in sides:
+    level = start[1] == end[1]
+    for side in (across, -across):
+        dx, dy = (0.0, side) if level else (side, 0.0)
         line(axes, [(start[0] + dx, start[1] + dy), (end[0] + dx, end[1] + dy)], look.THIN_PT)
 
 

@@ -43,7 +43,7 @@ def data_parts(screening: Any) -> list[Any]:
         data_table(
             link_heads(screening),
             link_rows(screening),
-            column_widths=(22, 14, 24, 20, 20, 15, 18, 13, 15),
+            column_widths=(62, 47, 72, 50, 50, 46, 45, 41, 46),
             align="lllrrrrrl",
         ),
         note(

@@ -18,7 +18,7 @@ from quillshaft.present.rows import pair_row, source_rows
 from quillshaft.present.words import hertz, mode_words, pair_sentence, plain
 
 RPM = 30.0 / math.pi
-SHAPES_A_FIGURE = 2
+SHAPES_A_FIGURE = 3
 MOST_SHAPES = 8
 
 
@@ -54,7 +54,7 @@ def _modes(screening: Screening) -> list[Any]:
     )
     if beyond:
         text += f" The {beyond} highest lie above every source and are listed without being judged."
-    table = data_table(head, rows, column_widths=(11, 15, 20, 30, 18, 60), align="rrrrrl")
+    table = data_table(head, rows, column_widths=(15, 16, 21, 30, 19, 60), align="rrrrrl")
     return [heading("Natural frequencies and modes"), paragraph(text), table]
 
 
@@ -69,7 +69,7 @@ def _shapes(screening: Screening) -> list[Any]:
     parts: list[Any] = [heading("Mode shapes", 2)] if shown else []
     for first in range(0, len(shown), SHAPES_A_FIGURE):
         numbers = shown[first : first + SHAPES_A_FIGURE]
-        words = " and ".join(f"mode {number}" for number in numbers)
+        words = ", ".join(f"mode {number}" for number in numbers)
         parts.append(FigureFlowable(mode_shapes(screening, numbers), bookmark_alt=f"Shape of {words}"))
     parts += _shape_tables(screening, shown)
     return parts
@@ -150,11 +150,11 @@ def _critical(screening: Screening) -> list[Any]:
             hertz(screening.mode(pair.mode).frequency_hz),
             pair.source,
             "–" if pair.excitability is None else f"{pair.excitability:.3f}",
-            "in range" if _in_range(screening, speed) else "passed on the way or not reached",
+            _place(screening, speed),
         )
         for speed, pair in sorted(found, key=lambda item: item[0])
     ]
-    head = ("rpm", "mode", "Hz", "source", "excitability", "judged range")
+    head = ("rpm", "mode", "Hz", "source", "excitability", "where")
     text = f"All meetings up to {top:.0f} rpm, in order of speed; minor engine orders only in the judged range."
     return [data_table(head, rows, align="rrrlrl"), note(text)]
 
@@ -164,9 +164,13 @@ def _counts(screening: Screening, pair: Interference) -> bool:
     return not minor or pair.verdict in ("crossing", "barred")
 
 
-def _in_range(screening: Screening, speed_rpm: float) -> bool:
-    ranges = screening.train.operation.ranges_rad_s
-    return any(low * RPM <= speed_rpm <= high * RPM for low, high in ranges)
+def _place(screening: Screening, speed_rpm: float) -> str:
+    ranges = [(low * RPM, high * RPM) for low, high in screening.train.operation.ranges_rad_s]
+    if any(low <= speed_rpm <= high for low, high in ranges):
+        return "in the judged range"
+    if speed_rpm > ranges[-1][1]:
+        return "above it"
+    return "below it: passed on the way up" if speed_rpm < ranges[0][0] else "between two ranges"
 
 
 def _excitations(screening: Screening) -> list[Any]:
@@ -210,15 +214,15 @@ def margin_matrix(screening: Screening) -> list[Any]:
         "Mode",
         "Hz",
         "source",
-        "critical, rpm",
-        "margin",
-        "over tol.",
-        "required",
-        "excit.",
+        "critical speed, rpm",
+        "margin, %",
+        "over tolerances, %",
+        "required, %",
+        "excit- ability",
         "nominal",
         "over tolerances",
     )
     rows = [pair_row(screening, pair) for pair in screening.interferences]
     if not rows:
         return [paragraph("No mode lies in the reach of any source.")]
-    return [data_table(head, rows, column_widths=(9, 14, 34, 15, 15, 15, 15, 12, 16, 22), align="rrlrrrrrll")]
+    return [data_table(head, rows, column_widths=(35, 40, 88, 46, 48, 56, 48, 40, 46, 58), align="rrlrrrrrll")]

@@ -21,6 +21,7 @@ from quillshaft.present.units import SHOWN
 from quillshaft.present.words import (
     dismissed_words,
     hertz,
+    mode_words,
     number,
     pair_sentence,
     percent,
@@ -79,19 +80,19 @@ def _verdict(screening: Screening) -> list[Any]:
     detail += f"\nNominal: {verdict_sentence(screening, worst=False)}"
     text, tone = STAMPS[screening.gravest_verdict], TONES[screening.gravest_verdict]
     if tone == "pass" and dismissed_words(screening):
-        text, tone = f"PASS{dismissed_words(screening)}", "restriction"
+        text, tone = f"PASS{dismissed_words(screening)}: see the reasons below", "restriction"
     parts: list[Any] = [stamp(text, tone, detail)]
     pairs = []
-    if counted:
-        governing = counted[0]
+    governing = screening.governing()
+    if governing is not None:
         mode = screening.mode(governing.mode)
         low, high = mode.bounds_hz
         pairs += [
-            ("Governing item", f"mode {mode.mode} and {governing.source}"),
+            ("Governing item", f"mode {mode.mode} ({mode_words(mode)}) and {governing.source}"),
             (
                 "Its margin",
                 f"{percent(governing.margin, True)} nominal, {percent(governing.worst_margin, True)} over the "
-                f"tolerances; {plain(governing.required)} required",
+                f"tolerances; required {plain(governing.required)} and {plain(governing.worst_required)}",
             ),
             (
                 "Its uncertainty",
@@ -114,6 +115,9 @@ def _verdict(screening: Screening) -> list[Any]:
         ("Numerical proof", proof_sentence(screening)),
     ]
     parts.append(key_values(pairs))
+    if dismissed:
+        parts.append(heading("Accepted by name", 2))
+        parts += bullets([pair_sentence(screening, pair) for pair in dismissed[:MOST_ON_PAGE_ONE]])
     if counted:
         parts.append(heading("What is not clear, worst first", 2))
         parts += bullets([pair_sentence(screening, pair) for pair in counted[:MOST_ON_PAGE_ONE]])
