@@ -75,7 +75,7 @@ rated = "1500 rpm"
 range = ["700 rpm", "1500 rpm"]
 idle = "600 rpm"
 trip = "1725 rpm"
-barred = [["820 rpm", "890 rpm"]]
+barred = [["770 rpm", "930 rpm"]]
 barred-because = "order 3 in the first mode"
 [stations]
 {stations}

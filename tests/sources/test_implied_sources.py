@@ -28,7 +28,7 @@ def chain(machines=None, rated="1500 rpm", **tables):
 
 def lines(text):
     """(order, frequency [Hz], speed ratio) by source name."""
-    return {s.name: (s.order, s.frequency_hz, round(s.speed_ratio, 12)) for s in sources_of(text).active}
+    return {s.name: (s.order, round(s.frequency_hz, 12), round(s.speed_ratio, 12)) for s in sources_of(text).active}
 
 
 def hz(text, name, rpm):

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
-from quillshaft.assess.mode_results import mode_torques, moved_angles
+from quillshaft.assess.mode_results import mode_torques, moved_angles, shared_clusters
 from quillshaft.graph.network import Floats, Network
 from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.solve.modes import Modes
@@ -48,9 +48,7 @@ def _phase_sum(modes: Modes, graph: TorsionalGraph, stations: list[int], phases:
     angle = modes.angle[:, graph.node]
     total = np.abs(angle[:, stations] @ np.exp(1j * phases))
     largest = np.max(np.abs(angle), axis=1)
-    for first in np.unique(modes.cluster):
-        members = modes.cluster == first
-        if members.sum() > 1:
-            total[members] = np.sqrt(np.sum(total[members] ** 2))
-            largest[members] = np.max(np.sqrt(np.sum(angle[members] ** 2, axis=0)))
+    for members in shared_clusters(modes):
+        total[members] = np.sqrt(np.sum(total[members] ** 2))
+        largest[members] = np.max(np.sqrt(np.sum(angle[members] ** 2, axis=0)))
     return np.asarray(total / (len(stations) * largest))

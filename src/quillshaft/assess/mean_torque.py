@@ -78,9 +78,12 @@ def _station_torque(train: Train, power: Power, graph: TorsionalGraph, findings:
             return None
         torque[balance] = np.linalg.solve(matrix, -work)
     elif np.max(np.abs(work)) > CLOSES * largest:
-        left = float(np.sum(torque)) * train.operation.rated_rad_s / 1e3
-        message = f"the powers do not close: {left:+.4g} kW are left over"
-        findings.add(("power",), message, None, 'one station with "balance"')
+        left = float(np.sum(torque))
+        message = f"the powers do not close: {left * train.operation.rated_rad_s / 1e3:+.4g} kW are left over"
+        if abs(left) <= CLOSES * largest:
+            message = "the powers close, but not in the split that the teeth of the epicyclic gears ask for"
+        places = "one station" if needed == 1 else f"{needed} stations"
+        findings.add(("power",), message, None, f'{places} with "balance"')
         return None
     else:
         torque -= motions.T @ np.linalg.lstsq(motions @ motions.T, work, rcond=None)[0]

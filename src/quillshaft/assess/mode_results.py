@@ -8,12 +8,18 @@ import numpy as np
 
 from quillshaft.assess.link_torques import link_torques
 from quillshaft.assess.results import ModeNode, ModeResult, Proof
-from quillshaft.graph.network import Floats, Network
+from quillshaft.graph.network import Bools, Floats, Network
 from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.solve.modes import Modes
 
 SAME = 1e-6
 STILL = 1e-9
+
+
+def shared_clusters(modes: Modes) -> list[Bools]:
+    """Masks (modes,) of the clusters of more than one mode."""
+    masks = [modes.cluster == first for first in sorted(set(modes.cluster.tolist()))]
+    return [mask for mask in masks if mask.sum() > 1]
 
 
 def moved_angles(graph: TorsionalGraph, modes: Modes) -> Floats:
@@ -23,10 +29,8 @@ def moved_angles(graph: TorsionalGraph, modes: Modes) -> Floats:
     not depend on the basis chosen.
     """
     size = np.abs(modes.angle)
-    for first in np.unique(modes.cluster):
-        members = modes.cluster == first
-        if members.sum() > 1:
-            size[members] = np.sqrt(np.sum(size[members] ** 2, axis=0))
+    for members in shared_clusters(modes):
+        size[members] = np.sqrt(np.sum(size[members] ** 2, axis=0))
     largest = np.max(size, axis=1, initial=0.0)
     return np.asarray(size[:, graph.node] / largest[:, None])
 
@@ -40,10 +44,8 @@ def mode_torques(graph: TorsionalGraph, network: Network, modes: Modes) -> Float
     load = modes.omega_rad_s[:, None] ** 2 * inertia * modes.angle[:, graph.node]
     springs, ties = network.spring_nm_rad * modes.spring_twist, network.tie_nm_rad * modes.tie_twist
     torques = link_torques(graph, network, springs, ties, modes.link_torque, load)
-    for first in np.unique(modes.cluster):
-        members = modes.cluster == first
-        if members.sum() > 1:
-            torques[members] = np.sqrt(np.sum(torques[members] ** 2, axis=0))
+    for members in shared_clusters(modes):
+        torques[members] = np.sqrt(np.sum(torques[members] ** 2, axis=0))
     largest = np.nanmax(np.abs(np.nan_to_num(torques)), axis=1, initial=0.0)
     return torques / np.where(largest > 0, largest, 1.0)[:, None]
 

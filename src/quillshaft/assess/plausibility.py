@@ -118,6 +118,11 @@ def _coupling_flags(train: Train) -> Iterator[Flag]:
                 ordinary = f"ordinary for this kind is {low:g} to {high:g}"
                 text = f"stiffness over rated torque is {ratio:.3g} per rad; {ordinary}"
                 yield Flag(where, text)
+        psi = (coupling.loss_factor or 0.0) * 2.0 * math.pi
+        if psi > 2.5:
+            asked = "is it a magnifier, or a loss factor in per cent?"
+            text = f"ψ = {psi:.3g} is more than rubber gives (0.4 to 1.6): {asked}"
+            yield Flag(where, text)
         if coupling.kind == "elastomer" or (coupling.kind is None and coupling.loss_factor is not None):
             yield Flag(where, "rubber: is this the dynamic stiffness, at what temperature and at what mean torque?")
 

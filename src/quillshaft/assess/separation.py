@@ -32,25 +32,26 @@ class Separation:
 
 
 def judged_ranges(operation: Operation) -> tuple[JudgedRange, ...]:
-    """The running ranges cut at the barred ones; a shared edge belongs to the free stretch."""
+    """The running ranges cut at the barred ones; the edges of a barred range are running speeds."""
     out = []
+    ends = {high for _, high in operation.barred_rad_s}
     for low, high in operation.ranges_rad_s:
         edge = low
         for barred_low, barred_high in operation.barred_rad_s:
-            start, end = max(barred_low, low), min(barred_high, high)
+            start, end = max(barred_low, edge), min(barred_high, high)
             if start >= end:
                 continue
-            if start > edge or (start == edge == low and barred_low == low):
+            if start > edge or barred_low == edge == low:
                 out.append(JudgedRange(edge, start, False))
             out.append(JudgedRange(start, end, True))
-            edge = max(edge, end)
-        if edge < high or edge == low:
+            edge = end
+        if edge < high or edge == low or edge in ends:
             out.append(JudgedRange(edge, high, False))
     return tuple(out)
 
 
 def _margin(natural: Range, band: Range, margin_on: str) -> float:
-    """Smallest signed margin between two closed bands [Hz]; 0 where they touch or overlap."""
+    """Smallest signed margin between two closed bands [Hz]; 0 where they overlap or touch within rounding."""
     if natural[1] < band[0]:
         gap, source, own = natural[1] - band[0], band[0], natural[1]
     elif natural[0] > band[1]:
@@ -58,7 +59,8 @@ def _margin(natural: Range, band: Range, margin_on: str) -> float:
     else:
         return 0.0
     below = source if margin_on == "excitation" else own
-    return gap / below if below > 0 else math.inf
+    margin = gap / below if below > 0 else math.inf
+    return 0.0 if abs(margin) <= EQUAL else margin
 
 
 def _nearest_speed(source: Source, stretch: JudgedRange, natural_hz: float) -> float:

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import gc
+import io
+import os
 import sys
 from pathlib import Path
 from typing import Annotated
@@ -10,6 +12,8 @@ from typing import Annotated
 import typer
 
 from quillshaft.cli.output import check_folder, check_target, console, refuse, write_many, write_whole
+
+gc.set_threshold(100_000, 50, 50)  # start-up makes many objects that live to the end
 
 app = typer.Typer(
     help="Torsional analysis of drivetrains, from the train file to a report ready for sign-off.",
@@ -61,6 +65,8 @@ def new(
 
     if kind not in KINDS:
         refuse(f"--kind {kind}: there is no such kind{did_you_mean(kind, KINDS)}. Allowed: {' | '.join(KINDS)}")
+    if schema is not None and os.path.realpath(schema) == os.path.realpath(out):
+        refuse(f"{schema}: the train file and its schema need two files")
     for target in (out, schema):
         if target is not None:
             check_target(target)
@@ -148,12 +154,18 @@ def report(
 
 
 def run() -> None:
-    """Entry point of the command; a closed pipe ends it quietly."""
+    """Entry point of the command; a closed pipe ends it quietly, a full disk with one line and exit code 2."""
+    for stream in (sys.stdout, sys.stderr):
+        if isinstance(stream, io.TextIOWrapper):
+            stream.reconfigure(errors="backslashreplace")
     try:
         app()
     except BrokenPipeError:
         sys.stderr.close()
         raise SystemExit(1) from None
+    except OSError as error:
+        sys.stderr.write(f"The output cannot be written: {error.strerror or error}\n")
+        raise SystemExit(2) from None
 
 
 if __name__ == "__main__":

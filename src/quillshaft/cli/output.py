@@ -31,55 +31,85 @@ def refuse(text: str) -> NoReturn:
 
 def check_target(path: Path, source: Path | None = None) -> None:
     """Refuse early a place that cannot be written, or that is the train file itself (`source`)."""
-    if source is not None and path.exists() and source.exists() and path.samefile(source):
+    folder = os.path.dirname(os.path.realpath(path))
+    if source is not None and os.path.realpath(path) == os.path.realpath(source):
         refuse(f"{path}: this is the train file; name another file")
-    if path.is_dir():
+    if os.path.isdir(path):
         refuse(f"{path}: this is a folder; name a file")
-    if not path.parent.is_dir():
+    if not os.path.isdir(folder):
         refuse(f"{path}: there is no folder {path.parent}")
-    if not os.access(path.parent, os.W_OK):
+    if os.path.exists(path) and not os.access(path, os.W_OK):
+        refuse(f"{path}: exists and must not be written to")
+    if not _is_stream(path) and not os.access(folder, os.W_OK):
         refuse(f"{path}: the folder {path.parent} cannot be written to")
 
 
+def _is_stream(path: Path) -> bool:
+    """Whether a path is an existing device or pipe, which is written to and must never be replaced."""
+    return os.path.exists(path) and not os.path.isfile(path)
+
+
 def write_whole(path: Path, data: bytes) -> None:
-    """Write a file whole or not at all; an existing one stays until the new one is complete."""
+    """Write a file whole or not at all; an existing one stays until the new one is complete.
+
+    A device or a pipe is written to as it is. Raises typer.Exit with code 2 where the place cannot be written.
+    """
     check_target(path)
     try:
-        handle, name = tempfile.mkstemp(prefix=".writing-", dir=path.parent)
-    except OSError as error:
-        refuse(f"{path}: cannot be written: {error.strerror}")
+        if _is_stream(path):
+            path.write_bytes(data)
+        else:
+            _replace(os.path.realpath(path), data)
+    except (OSError, ValueError) as error:
+        refuse(f"{path}: cannot be written: {getattr(error, 'strerror', None) or error}")
+
+
+def _replace(target: str, data: bytes) -> None:
+    handle, name = tempfile.mkstemp(prefix=".writing-", dir=os.path.dirname(target))
     try:
         with os.fdopen(handle, "wb") as stream:
             stream.write(data)
-        mask = os.umask(0)
-        os.umask(mask)
-        os.chmod(name, 0o666 & ~mask)
-        os.replace(name, path)
-    except OSError as error:
-        with contextlib.suppress(OSError):
-            os.unlink(name)
-        refuse(f"{path}: cannot be written: {error.strerror}")
+        os.chmod(name, _mode_for(target))
+        os.replace(name, target)
     except BaseException:
         with contextlib.suppress(OSError):
             os.unlink(name)
         raise
 
 
+def _mode_for(target: str) -> int:
+    """Permissions of the file that is replaced, or those of a new one."""
+    if os.path.exists(target):
+        return os.stat(target).st_mode & 0o777
+    mask = os.umask(0)
+    os.umask(mask)
+    return 0o666 & ~mask
+
+
 def check_folder(folder: Path) -> None:
     """Refuse early a folder that cannot be made or written to."""
-    if folder.exists() and not folder.is_dir():
+    there = os.path.exists(folder)
+    if there and not os.path.isdir(folder):
         refuse(f"{folder}: this is a file; name a folder")
-    if not folder.exists() and not folder.parent.is_dir():
+    if not there and not os.path.isdir(folder.parent):
         refuse(f"{folder}: there is no folder {folder.parent}")
-    if not os.access(folder if folder.exists() else folder.parent, os.W_OK):
+    if not os.access(folder if there else folder.parent, os.W_OK):
         refuse(f"{folder}: cannot be written to")
+
+
+def make_folder(folder: Path) -> None:
+    """Make a folder unless it is there. Raises typer.Exit with code 2 where it cannot be made."""
+    try:
+        folder.mkdir(exist_ok=True)
+    except (OSError, ValueError) as error:
+        refuse(f"{folder}: cannot be made: {getattr(error, 'strerror', None) or error}")
 
 
 def write_many(folder: Path, files: dict[str, Callable[[], bytes]]) -> list[Path]:
     """Make every file's bytes first, then write them all into `folder` (made if its parent exists)."""
     check_folder(folder)
     made = {name: make() for name, make in files.items()}
-    folder.mkdir(exist_ok=True)
+    make_folder(folder)
     for name, data in made.items():
         write_whole(folder / name, data)
     return [folder / name for name in made]

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import io
+import json
 import re
 import sys
 from collections.abc import Callable
@@ -11,7 +12,7 @@ from typing import TYPE_CHECKING
 
 from quillshaft.assess.results import Screening
 from quillshaft.assess.screening import screen
-from quillshaft.cli.output import refuse, write_whole
+from quillshaft.cli.output import make_folder, refuse, write_whole
 from quillshaft.train.document import read_document
 from quillshaft.train.overlay import case_names
 from quillshaft.train.problems import TrainFileError
@@ -48,9 +49,19 @@ def put_json(screening: Screening, target: str) -> None:
 
     text = screening_json(screening)
     if target == "-":
-        sys.stdout.write(text)
+        sys.stdout.write(_encodable(text))
+        sys.stdout.flush()
     else:
         write_whole(Path(target), text.encode())
+
+
+def _encodable(text: str) -> str:
+    """JSON text as standard output can hold it: with escapes where its encoding is not Unicode."""
+    try:
+        text.encode(sys.stdout.encoding or "utf-8")
+    except UnicodeEncodeError:
+        return json.dumps(json.loads(text), indent=1) + "\n"
+    return text
 
 
 def report_bytes(screening: Screening) -> bytes:
@@ -85,6 +96,5 @@ def report_path(screening: Screening) -> Path:
     words += train.cases
     name = re.sub(r"[^A-Za-z0-9._-]+", "-", " ".join(words)).strip("-.") or "report"
     folder = Path("reports")
-    if not folder.exists():
-        folder.mkdir()
+    make_folder(folder)
     return folder / f"{name}.pdf"

@@ -7,13 +7,18 @@ multiplied by the square of it. Stations that a rigid gear mesh holds together s
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING, TypeAlias
 
 import numpy as np
-from numpy.typing import NDArray
 
-Floats = NDArray[np.float64]
-Ints = NDArray[np.intp]
-Bools = NDArray[np.bool_]
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
+
+    Floats: TypeAlias = NDArray[np.float64]
+    Ints: TypeAlias = NDArray[np.intp]
+    Bools: TypeAlias = NDArray[np.bool_]
+else:  # numpy.typing is slow to import
+    Floats = Ints = Bools = np.ndarray
 
 
 @dataclass(frozen=True)

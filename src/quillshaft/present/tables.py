@@ -51,7 +51,10 @@ def modes_table(screening: Screening) -> Table:
 
 def matrix_table(screening: Screening) -> Table:
     """Every judged pair of source and mode."""
-    columns = "Mode>|Hz>|source|critical speed, rpm>|margin, %>|over tolerances, %>|required, %>|excitability>|nominal|over tolerances"
+    columns = (
+        "Mode>|Hz>|source|critical speed, rpm>|margin, %>|over tolerances, %>|required, %>|excitability>"
+        "|nominal|over tolerances"
+    )
     rows = (pair_row(screening, pair) for pair in screening.interferences)
     return make_table("All pairs of mode and source", columns, rows)
 

@@ -17,15 +17,14 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from decimal import Decimal
-from typing import Any
+from typing import Any, TypeAlias
 
 import numpy as np
-from numpy.typing import NDArray
 
 from quillshaft.graph.network import Floats, Ints, Network
 from quillshaft.solve.plan import NO_PAIR, CoreStep, Plan
 
-Numbers = NDArray[Any]  # float64 or complex128
+Numbers: TypeAlias = np.ndarray[Any, Any]  # float64 or complex128
 Value = Any  # a number or an array over the points
 Values = Numbers | Sequence[Value]
 

@@ -113,7 +113,7 @@ def _merged(sources: list[Source]) -> tuple[Source, ...]:
     """Sources on the same stations and the same line as one row that lists all its origins."""
     rows: dict[object, Source] = {}
     for source in sources:
-        sign = 1.0 if source.order >= 0 else -1.0
+        sign = -1.0 if (source.order or source.frequency_hz) < 0 else 1.0
         line = (
             source.action,
             round(abs(source.order) * source.speed_ratio, 9),

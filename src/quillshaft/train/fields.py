@@ -22,6 +22,8 @@ from quillshaft.train.quantity import (
     which_measure,
 )
 
+LEAST_INERTIA_KGM2 = 1e-12
+LEAST_LENGTH_M = 1e-4
 NUMBER_OR_TEXT: dict[str, Any] = {"anyOf": [{"type": "string"}, {"type": "number"}]}
 
 
@@ -64,17 +66,26 @@ def quantity_of(value: object, measure: str, info: ValidationInfo) -> float:
 
 @dataclass(frozen=True)
 class Measured:
-    """A quantity of a measure: above `low`, or at least `low` where `closed`."""
+    """A quantity of a measure: above `low`, or at least `low` where `closed`; its size is 0 or at least `least`.
+
+    `least`, in the SI unit, is far below any part of a drivetrain: it keeps slips of the unit and numbers that
+    arithmetic cannot hold from being screened.
+    """
 
     measure: str
     low: float = 0.0
     closed: bool = False
+    least: float = 0.0
 
     def read(self, value: object, info: ValidationInfo) -> float:
         """The SI value. Raises PydanticCustomError when it is no such quantity or too low."""
         number = quantity_of(value, self.measure, info)
         if number < self.low or (number == self.low and not self.closed):
             raise complain(f"must be {'at least' if self.closed else 'above'} {self.low:g}")
+        if 0 < abs(number) < self.least:
+            zero = "0 or " if self.closed else ""
+            least = f"{self.least:g} {MEASURES[self.measure].si_unit}"
+            raise complain("is smaller than any part of a train", f"{zero}{least} and more")
         return number
 
     def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
@@ -188,7 +199,7 @@ class Hubs:
         items = value if isinstance(value, list) else [value]
         if not 1 <= len(items) <= 2:
             raise complain(f"has {len(items)} members", "a hub engagement, or a list with one for each end")
-        return tuple(Measured("length").read(item, info) for item in items)
+        return tuple(Measured("length", least=LEAST_LENGTH_M).read(item, info) for item in items)
 
     def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
         return core_schema.with_info_plain_validator_function(self.read)
@@ -248,14 +259,14 @@ def _iso(value: Any) -> Any:
     return value.isoformat() if hasattr(value, "isoformat") else value
 
 
-Inertia = Annotated[float, Measured("inertia", closed=True)]
-Wr2 = Annotated[float, Measured("wr2", closed=True)]
-Gd2 = Annotated[float, Measured("gd2", closed=True)]
+Inertia = Annotated[float, Measured("inertia", closed=True, least=LEAST_INERTIA_KGM2)]
+Wr2 = Annotated[float, Measured("wr2", closed=True, least=LEAST_INERTIA_KGM2)]
+Gd2 = Annotated[float, Measured("gd2", closed=True, least=LEAST_INERTIA_KGM2)]
 Stiffness = Annotated[float, Measured("stiffness")]
 Flexibility = Annotated[float, Measured("flexibility")]
 Torque = Annotated[float, Measured("torque")]
-Length = Annotated[float, Measured("length")]
-LengthOrZero = Annotated[float, Measured("length", closed=True)]
+Length = Annotated[float, Measured("length", least=LEAST_LENGTH_M)]
+LengthOrZero = Annotated[float, Measured("length", closed=True, least=LEAST_LENGTH_M)]
 Angle = Annotated[float, Measured("angle", closed=True)]
 SeparationField = Annotated[dict[str, float], Separation()]
 SignedSpeed = Annotated[float, Measured("signed_speed", low=-1e9)]
@@ -270,9 +281,11 @@ Share = Annotated[float, Measured("share", closed=True)]
 MeshStiffness = Annotated[tuple[str, float], AnyMeasure(("mesh_stiffness_per_face", "linear_stiffness", "stiffness"))]
 ExcitationTorque = Annotated[tuple[str, float], AnyMeasure(("share", "torque"))]
 Ratio = Annotated[float, Field(gt=0, le=50, strict=True, allow_inf_nan=False)]
-Diameters = Annotated[tuple[float, float], MeasuredPair(Measured("length"))]
-Bores = Annotated[tuple[float, float], MeasuredPair(Measured("length", closed=True))]
-HalfInertias = Annotated[tuple[float, float], MeasuredPair(Measured("inertia", closed=True), alone=False)]
+Diameters = Annotated[tuple[float, float], MeasuredPair(Measured("length", least=LEAST_LENGTH_M))]
+Bores = Annotated[tuple[float, float], MeasuredPair(Measured("length", closed=True, least=LEAST_LENGTH_M))]
+HalfInertias = Annotated[
+    tuple[float, float], MeasuredPair(Measured("inertia", closed=True, least=LEAST_INERTIA_KGM2), alone=False)
+]
 HubLengths = Annotated[tuple[float, ...], Hubs()]
 Ranges = Annotated[tuple[tuple[float, float], ...], SpeedRanges()]
 ToleranceField = Annotated[tuple[float, float], RelativeTolerance()]

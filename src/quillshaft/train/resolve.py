@@ -131,6 +131,8 @@ def shafts(rows: Rows, said: Assumptions) -> tuple[Shaft, ...]:
         if row.pieces is not None and own_inertia is None:
             own_inertia = "ends"
             said.add(element, "own-inertia", "ends", "default for shafts given by pieces: lumped at both ends")
+        if own_inertia == "ends" and row.pieces is not None and row.inertia_tolerance is None:
+            said.add(element, "inertia-tolerance", "0 %", "default for a shaft's own inertia")
         out.append(
             Shaft(
                 name,
@@ -202,6 +204,11 @@ def couplings(rows: Rows, said: Assumptions) -> tuple[Coupling, ...]:
         if row.shaft_in_hub is None:
             why = "not said: the stated stiffness is taken not to hold the shaft ends in its hubs"
             said.add(element, "shaft-in-hub", "excluded", why)
+        half = row.inertia_tolerance
+        if half is None and row.half_inertias is not None and any(row.half_inertias):
+            share = DEFAULT_TOLERANCE["station"] if said.tolerances else 0.0
+            said.add(element, "inertia-tolerance", f"±{share * 100:.3g} %", "default for half inertias")
+            half = (-share, share)
         out.append(
             Coupling(
                 name,
@@ -210,7 +217,7 @@ def couplings(rows: Rows, said: Assumptions) -> tuple[Coupling, ...]:
                 tolerance,
                 row.kind,
                 row.half_inertias or (0.0, 0.0),
-                row.inertia_tolerance or (0.0, 0.0),
+                half or (0.0, 0.0),
                 row.shaft_in_hub,
                 _damping(row),
                 row.rated_torque,

@@ -34,6 +34,7 @@ STRIP_MM = 15.0
 PLOT_MM = look.WIDTH_MM - LEFT_MM - RIGHT_MM
 LABEL_MM = look.SMALL_PT * look.POINT_MM * 1.15
 NUMBERED = 8
+FARTHEST_MM = 14.0
 NEAR_RANGE = 0.4
 """A line that leaves the frame below this share of the slowest running speed gets no label of its own."""
 
@@ -60,12 +61,12 @@ def interference_diagram(screening: Screening) -> Figure:
     content = Content(screening, source_lines(screening, top), mode_bands(screening), pair_marks(screening), top)
     plots = panels(content.bands, content.lines)
     exits = [_exits(content, plots, index, True) for index in range(len(plots))]
-    heads = [max((look.width_mm(text) for *_, text in found), default=-1.0) + 4.0 for found in exits]
+    heads = [_head_mm(content, found) for found in exits]
     note = line_note(content.lines, _unlabelled(content, plots))
-    foot = key_height(content.marks[:NUMBERED], len(content.marks)) + len(note) * look.line_mm()
+    foot = key_height(content.marks, NUMBERED) + len(note) * look.line_mm()
     total = foot + STRIP_MM + sum(panel.height_mm for panel in plots) + sum(heads)
     made = look.frame(interference_title(screening), total)
-    draw_key(made, foot, content.marks[:NUMBERED], len(content.marks), note)
+    draw_key(made, foot, content.marks, NUMBERED, note)
     draw_operation(made, screening, (LEFT_MM, foot, PLOT_MM, STRIP_MM), top)
     y = foot + STRIP_MM
     for index, (panel, head, found) in enumerate(zip(plots, heads, exits, strict=True)):
@@ -112,7 +113,7 @@ def line_label(line: SourceLine) -> str:
     text = ", ".join(line.names) + tail
     if look.width_mm(text) > RIGHT_MM - 5.0 and len(line.names) > 1:
         text = f"{line.names[0]} +{len(line.names) - 1}" + tail
-    return look.shorten(text, RIGHT_MM - 5.0)
+    return look.shorten_name(text, RIGHT_MM - 5.0)
 
 
 def _exits(content: Content, plots: tuple[Panel, ...], number: int, by_top: bool) -> list[tuple[float, float, str]]:
@@ -135,18 +136,40 @@ def _y(panel: Panel, frequency_hz: float, foot_mm: float) -> float:
     return foot_mm + panel.height_mm * (frequency_hz - panel.low_hz) / (panel.high_hz - panel.low_hz)
 
 
-def _write_top_exits(
-    made: look.Frame, content: Content, found: list[tuple[float, float, str]], foot_mm: float, head_mm: float
-) -> None:
-    """Upright labels over a panel, moved apart, each joined to the end of its line."""
+def _level_centres(content: Content, found: list[tuple[float, float, str]]) -> list[float] | None:
+    """Centres [mm] of labels set level over a panel; None where they would move too far from their lines."""
+    wanted = [_x(content, rpm) for rpm, *_ in found]
+    sizes = [look.width_mm(text) + 3.0 for *_, text in found]
+    centres = spread(wanted, sizes, LEFT_MM, look.WIDTH_MM)
+    far = max((abs(centre - at) for centre, at in zip(centres, wanted, strict=True)), default=0.0)
+    return centres if far <= FARTHEST_MM and sum(sizes) <= look.WIDTH_MM - LEFT_MM else None
+
+
+def _head_mm(content: Content, found: list[tuple[float, float, str]]) -> float:
+    """Height [mm] over a panel for the labels of the lines that leave it by its top."""
     if not found:
-        return
+        return 3.0
+    if _level_centres(content, found) is not None:
+        return 2.4 + look.line_mm() + 1.0
+    return max(look.width_mm(text) for *_, text in found) + 4.0
+
+
+def _write_top_exits(
+    made: look.Frame,
+    content: Content,
+    found: list[tuple[float, float, str]],
+    foot_mm: float,
+    head_mm: float,
+) -> None:
+    """Labels over a panel, moved apart, level or upright, each joined to the end of its line."""
     axes = look.millimetre_axes(made, foot_mm, foot_mm + head_mm)
     wanted = [_x(content, rpm) for rpm, *_ in found]
-    centres = spread(wanted, [LABEL_MM] * len(found), LEFT_MM, look.WIDTH_MM)
+    level = _level_centres(content, found)
+    centres = level or spread(wanted, [LABEL_MM] * len(found), LEFT_MM, look.WIDTH_MM)
     for (*_, text), at, centre in zip(found, wanted, centres, strict=True):
         axes.plot([at, centre], [0.0, 2.0], lw=look.HAIR_PT, color=look.QUIET)
-        look.put(axes, centre, 2.5, text, rotation=90, va="bottom", gid="source")
+        turn = 90 if level is None else 0
+        look.put(axes, centre, 2.4, text, rotation=turn, va="bottom", gid="source")
 
 
 def _write_right_exits(made: look.Frame, panel: Panel, found: list[tuple[float, float, str]], foot_mm: float) -> None:

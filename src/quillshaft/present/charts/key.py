@@ -36,9 +36,10 @@ def entry(mark: PairMark, number: int) -> str:
     return text + (", dismissed" if pair.dismissed is not None else "")
 
 
-def key_height(marks: Sequence[PairMark], total: int) -> float:
+def key_height(marks: Sequence[PairMark], numbered: int) -> float:
     """Height [mm] of the key without the lines' note."""
-    return _rows(marks) * ROW_MM + (ROW_MM if marks else 0.0) + (ROW_MM if total > len(marks) else 0.0) + 3.0
+    lines = _rows(marks[:numbered]) + (1 if marks else 0) + (1 if len(marks) > numbered else 0)
+    return lines * ROW_MM + 3.0
 
 
 def _rows(marks: Sequence[PairMark]) -> int:
@@ -46,20 +47,21 @@ def _rows(marks: Sequence[PairMark]) -> int:
     return len(marks) if len(marks) <= 3 else -(-len(marks) // 2)
 
 
-def draw_key(made: look.Frame, height_mm: float, marks: Sequence[PairMark], total: int, note: list[str]) -> None:
+def draw_key(made: look.Frame, height_mm: float, marks: Sequence[PairMark], numbered: int, note: list[str]) -> None:
     """Numbered marks in two columns, the shapes in use, the lines in use."""
     axes = look.millimetre_axes(made, 0.0, height_mm)
     y = height_mm - 1.5 - ROW_MM / 2
-    rows, half = _rows(marks), look.WIDTH_MM / 2
-    wide = half if rows < len(marks) else look.WIDTH_MM
-    for index, mark in enumerate(marks):
+    keyed = marks[:numbered]
+    rows, half = _rows(keyed), look.WIDTH_MM / 2
+    wide = half if rows < len(keyed) else look.WIDTH_MM
+    for index, mark in enumerate(keyed):
         x = 0.0 if index < rows else half
         row_y = y - (index % rows) * ROW_MM
         _sample(axes, mark_kind(mark), mark.nominal, x + 1.6, row_y)
         look.put(axes, x + 4.0, row_y, look.shorten(entry(mark, index + 1), wide - 6.0), ha="left", gid="key")
     y -= rows * ROW_MM
-    if total > len(marks):
-        text = f"Marks without a number: {total - len(marks)} more that are not clear; the table lists them."
+    if len(marks) > numbered:
+        text = f"Marks without a number: {len(marks) - numbered} more that are not clear; the table lists them."
         look.put(axes, 0.0, y, text, ha="left", color=look.QUIET)
         y -= ROW_MM
     if marks:
@@ -86,7 +88,8 @@ def _draw_shapes(axes: Axes, marks: Sequence[PairMark], y: float) -> None:
         text = look.MARKERS[kind][1]
         look.put(axes, x + 4.0, y, text, ha="left", color=look.QUIET)
         x += look.width_mm(text) + 8.0
-    look.put(axes, x, y, "open: only over the tolerances", ha="left", color=look.QUIET)
+    if not all(mark.nominal for mark in marks):
+        look.put(axes, x, y, "open: only over the tolerances", ha="left", color=look.QUIET)
 
 
 def line_note(lines: Sequence[SourceLine], unlabelled: Sequence[str]) -> list[str]:

@@ -101,8 +101,14 @@ def wrap_name(name: str, limit_mm: float, size_pt: float = SMALL_PT, bold: bool 
             lines.append(part)
     if len(lines) <= 3:
         return lines
-    tail = shorten(lines[-2] + lines[-1], limit_mm, size_pt, bold, from_start=True)
-    return [lines[0], lines[1], tail]
+    return [lines[0], lines[1], shorten_name("".join(lines[2:]), limit_mm, size_pt, bold)]
+
+
+def breaks_well(name: str, limit_mm: float) -> bool:
+    """True where a name fits three lines broken only after its hyphens."""
+    return all(width_mm(part + "-") <= limit_mm for part in name.split("-")) and "…" not in "".join(
+        wrap_name(name, limit_mm)
+    )
 
 
 def _chunks(name: str, limit_mm: float, size_pt: float, bold: bool) -> list[str]:
@@ -121,12 +127,21 @@ def _chunks(name: str, limit_mm: float, size_pt: float, bold: bool) -> list[str]
     return chunks
 
 
-def shorten(text: str, limit_mm: float, size_pt: float = SMALL_PT, bold: bool = False, from_start: bool = False) -> str:
-    """The text, or as much of it as fits beside an ellipsis at its end (or start)."""
+def shorten(text: str, limit_mm: float, size_pt: float = SMALL_PT, bold: bool = False) -> str:
+    """The text, or as much of its beginning as fits beside an ellipsis."""
     if width_mm(text, size_pt, bold) <= limit_mm:
         return text
-    for length in range(len(text) - 1, 0, -1):
-        short = "…" + text[-length:] if from_start else text[:length] + "…"
+    shorts = (text[:length].rstrip() + "…" for length in range(len(text) - 1, 0, -1))
+    return next((short for short in shorts if width_mm(short, size_pt, bold) <= limit_mm), "…")
+
+
+def shorten_name(name: str, limit_mm: float, size_pt: float = SMALL_PT, bold: bool = False) -> str:
+    """The name, or its two ends about an ellipsis: names of one family often differ only at the end."""
+    if width_mm(name, size_pt, bold) <= limit_mm:
+        return name
+    for kept in range(len(name) - 1, 1, -1):
+        head = kept * 2 // 5
+        short = f"{name[:head]}…{name[head - kept :]}"
         if width_mm(short, size_pt, bold) <= limit_mm:
             return short
     return "…"

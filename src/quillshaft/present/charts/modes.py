@@ -19,9 +19,14 @@ if TYPE_CHECKING:
 BAR_MM = 3.6
 LEFT_MM = 12.0
 START_MM = 6.0
+END_MM = 5.0
 NARROWEST_MM = 12.5
+UPRIGHT_MM = 28.0
 SMALLEST = 0.0005
 """Shares below this are not mentioned."""
+
+Shares = tuple[list[tuple[str, float]], float]
+"""Names with their shares, the largest first, and what all others sum to."""
 
 
 @dataclass(frozen=True)
@@ -37,7 +42,8 @@ class Setting:
     @property
     def upright(self) -> bool:
         """True where names stand upright because columns are too narrow for them."""
-        return self.pitch_mm < NARROWEST_MM
+        names = self.screening.graph.stations
+        return self.pitch_mm < NARROWEST_MM or not all(look.breaks_well(name, self.pitch_mm - 1.5) for name in names)
 
     @property
     def actual(self) -> bool:
@@ -75,7 +81,8 @@ def mode_shapes(screening: Screening, numbers: Sequence[int]) -> Figure:
 def _setting(screening: Screening, modes: int) -> Setting:
     runs = strips(screening.graph)
     most = max(len(run.stations) for run in runs)
-    pitch = min(26.0, (look.WIDTH_MM - LEFT_MM - START_MM) / max(0.5, most - 0.5))
+    room = look.WIDTH_MM - LEFT_MM - START_MM
+    pitch = min(26.0, room / (most - 0.5), (room - END_MM) / max(1, most - 1))
     rows: list[list[Strip]] = []
     for run in runs:
         used = sum(_strip_width(other, pitch) for other in rows[-1]) if rows else look.WIDTH_MM
@@ -96,7 +103,7 @@ def _names_height(setting: Setting, run: Strip) -> float:
     """Height [mm] of the station names under a strip."""
     names = [setting.screening.graph.stations[station] for station in run.stations]
     if setting.upright:
-        return min(24.0, max(look.width_mm(name) for name in names)) + 1.5
+        return min(UPRIGHT_MM, max(look.width_mm(name) for name in names)) + 1.5
     lines = max(len(look.wrap_name(name, setting.pitch_mm - 1.5)) for name in names)
     return lines * look.line_mm() + 1.0
 
@@ -108,7 +115,7 @@ def _row_height(setting: Setting, row: tuple[Strip, ...]) -> float:
     return caption + setting.curve_mm + names + actual + 1.5
 
 
-def _bars(shares: dict[str, float], most: int) -> tuple[list[tuple[str, float]], float]:
+def _bars(shares: dict[str, float], most: int) -> Shares:
     """The largest shares above 1 %, and what the others sum to."""
     ranked = sorted(shares.items(), key=lambda item: -item[1])
     shown = [item for item in ranked[:most] if item[1] >= 0.01]
@@ -138,7 +145,7 @@ def _draw_mode(made: look.Frame, setting: Setting, mode: ModeResult, top_mm: flo
     _draw_bars(axes, "Kinetic energy by station", kinetic, half + 2.0, y - 1.5, hatched=False)
 
 
-def _draw_bars(axes: Axes, heading: str, shares: dict[str, float], left: float, top: float, hatched: bool) -> None:
+def _draw_bars(axes: Axes, heading: str, shares: Shares, left: float, top: float, hatched: bool) -> None:
     """A ranked list of shares with bars; the rest summed up in its last line."""
     from matplotlib.patches import Rectangle
 
@@ -147,7 +154,7 @@ def _draw_bars(axes: Axes, heading: str, shares: dict[str, float], left: float, 
     look.put(axes, left, top - BAR_MM / 2, heading, ha="left", color=look.ACCENT, fontweight="bold")
     for index, (name, share) in enumerate(shown, start=1):
         y = top - (index + 0.5) * BAR_MM
-        look.put(axes, left, y, look.shorten(name, name_mm - 1.5), ha="left", gid="bar")
+        look.put(axes, left, y, look.shorten_name(name, name_mm - 1.5), ha="left", gid="bar")
         axes.add_patch(
             Rectangle(
                 (left + name_mm, y - 1.1),
@@ -267,7 +274,9 @@ def _write_names(
     for k, station in enumerate(run.stations):
         name, at = setting.screening.graph.stations[station], left + START_MM + setting.pitch_mm * k
         if setting.upright:
-            look.put(axes, at, top - foot - 0.8, look.shorten(name, 24.0), rotation=90, va="top", gid="station")
+            look.put(
+                axes, at, top - foot - 0.8, look.shorten_name(name, UPRIGHT_MM), rotation=90, va="top", gid="station"
+            )
             continue
         for row, text in enumerate(look.wrap_name(name, setting.pitch_mm - 1.5)):
             look.put(axes, at, top - foot - (row + 0.5) * look.line_mm(), text, gid="station")

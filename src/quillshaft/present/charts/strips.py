@@ -48,7 +48,7 @@ def _strip(graph: TorsionalGraph, around: dict[int, list[tuple[int, int]]], path
         place, other, _ = ends[0]
         path = [other, *(path if place == 0 else path[::-1])]
     links = tuple(link_between(around, a, b) for a, b in pairwise(path))
-    return Strip(tuple(path), links, lead, _caption(graph, path, joins, ends, done))
+    return Strip(tuple(path), links, lead, _caption(graph, path, joins, ends))
 
 
 def _caption(
@@ -56,12 +56,25 @@ def _caption(
     path: list[int],
     joins: list[tuple[int, int, int]],
     ends: list[tuple[int, int, int]],
-    done: set[int],
 ) -> str:
-    if ends:
-        return f"branch from {graph.stations[ends[0][1]]} by {graph.links[ends[0][2]].name}"
-    if joins:
-        place, other, link = joins[0]
-        return f"joined at {graph.stations[path[place]]} to {graph.stations[other]} by {graph.links[link].name}"
-    stage = next((link for link in graph.links if len(link.stations) > 2 and set(link.stations) & set(path)), None)
-    return f"at stage {stage.name}" if stage is not None and done else ""
+    """How a run joins what was drawn before; `joins` and `ends` hold (place, other station, link)."""
+    home = ends[:1] or joins[:1]
+    texts = [
+        f"branch from {graph.stations[other]} by {graph.links[link].name}"
+        if ends
+        else f"joined from {graph.stations[path[place]]} to {graph.stations[other]} by {graph.links[link].name}"
+        for place, other, link in home
+    ]
+    texts += [
+        f"also joined to {graph.stations[other]} by {graph.links[link].name}"
+        for _, other, link in joins
+        if (link, other) not in {(known, station) for _, station, known in home}
+    ]
+    texts += [
+        f"part of stage {link.name} at {graph.stations[station]}"
+        for link in graph.links
+        if len(link.stations) > 2
+        for station in link.stations
+        if station in path
+    ]
+    return "; ".join(texts)

@@ -43,7 +43,7 @@ def data_parts(screening: Any) -> list[Any]:
         data_table(
             link_heads(screening),
             link_rows(screening),
-            column_widths=(62, 47, 72, 50, 50, 46, 45, 41, 46),
+            column_widths=(66, 47, 66, 55, 48, 51, 44, 43, 39),
             align="lllrrrrrl",
         ),
         note(

@@ -121,7 +121,8 @@ def _interferences(screening: Screening) -> list[Any]:
         FigureFlowable(interference_diagram(screening), bookmark_alt="Interference diagram"),
         paragraph(
             f"Margin = (f natural − f source) / f {base}, the smallest over the judged range; it is zero where "
-            f"they meet there. Required nominally: {required}; over the tolerances: {worst}."
+            f"they meet there. Required nominally: {required}; over the tolerances: {worst}. These are the file's "
+            "own requirements; no edition of a standard or class rule is applied or claimed."
         ),
         heading("What is not clear, worst first", 2),
     ]
