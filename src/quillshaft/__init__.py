@@ -10,6 +10,8 @@ from __future__ import annotations
 import importlib
 from typing import TYPE_CHECKING
 
+from quillshaft.version import __version__
+
 if TYPE_CHECKING:
     from quillshaft.assess.results import Interference, ModeResult, Screening
     from quillshaft.assess.screening import screen
@@ -21,8 +23,6 @@ if TYPE_CHECKING:
     from quillshaft.train.problems import Problem, TrainFileError
     from quillshaft.train.read import load
 
-__version__ = "0.1.0"
-
 __all__ = [
     "Interference",
     "ModeResult",
@@ -31,6 +31,7 @@ __all__ = [
     "TorsionalGraph",
     "Train",
     "TrainFileError",
+    "__version__",
     "build_graph",
     "load",
     "report_pdf",

@@ -171,9 +171,7 @@ y = "\\"] # no"
 
 
 def paths_of(value, start=()):
-    members = (
-        value.items() if isinstance(value, dict) else enumerate(value) if isinstance(value, list) else ()
-    )
+    members = value.items() if isinstance(value, dict) else enumerate(value) if isinstance(value, list) else ()
     for key, member in members:
         yield (*start, key)
         yield from paths_of(member, (*start, key))
@@ -209,9 +207,7 @@ def test_a_missing_key_gives_the_line_of_the_longest_part_that_stands():
     assert line_of(document, ()) is None
 
 
-VALUES = st.sampled_from(
-    ['"a # [ b"', "1", "true", "'x'", "2026-11-30", '"\\""', "[]", "{}", "[[1], [2, 3]]"]
-)
+VALUES = st.sampled_from(['"a # [ b"', "1", "true", "'x'", "2026-11-30", '"\\""', "[]", "{}", "[[1], [2, 3]]"])
 NAMES = st.sampled_from(["a", "b-1", '"c d"', '"e.[f"', "g"])
 
 

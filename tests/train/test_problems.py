@@ -48,9 +48,7 @@ def test_a_problem_without_line_and_path_names_the_file_only():
 
 
 def test_a_long_problem_takes_a_second_line_for_what_is_allowed():
-    long = Problem(
-        "a.toml", 1, ("shafts", "x", "od"), None, "is " + "very " * 20 + "long", "short " * 20 + "ones"
-    )
+    long = Problem("a.toml", 1, ("shafts", "x", "od"), None, "is " + "very " * 20 + "long", "short " * 20 + "ones")
     first, second = describe(long).split("\n")
     assert first.endswith("long.")
     assert second.startswith("    Allowed: short")

@@ -40,7 +40,7 @@ def main(
 ) -> None:
     """Torsional analysis of drivetrains, from the train file to a report ready for sign-off."""
     if version:
-        from quillshaft import __version__
+        from quillshaft.version import __version__
 
         typer.echo(f"quillshaft {__version__}")
         raise typer.Exit

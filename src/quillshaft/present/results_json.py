@@ -8,6 +8,7 @@ from typing import Any
 
 from quillshaft.assess.results import Interference, ModeResult, Screening
 from quillshaft.sources.line import Source
+from quillshaft.version import __version__
 
 
 def _finite(value: float | None) -> float | None:
@@ -72,8 +73,6 @@ def _interference(pair: Interference) -> dict[str, Any]:
 
 def screening_data(screening: Screening) -> dict[str, Any]:
     """A screening as plain data, ready for JSON."""
-    from quillshaft import __version__
-
     train, check = screening.train, screening.self_check
     return {
         "schema": 1,

@@ -59,7 +59,8 @@ def _given(excitation: Excitation, graph: TorsionalGraph, findings: Findings) ->
         station = graph.link(excitation.at).stations[0]
         action = Action("link", link=excitation.at)
     if excitation.order and graph.speed_ratio[station] == 0:
-        findings.add(("excitations", excitation.name, "order"), "an order needs a station that turns", excitation.at)
+        message = f"an order needs a station that turns, and {excitation.at} stands still"
+        findings.add(("excitations", excitation.name, "order"), message, excitation.order)
     torque = None
     if excitation.torque_share is not None:
         torque = f"{excitation.torque_share * 100:.3g} % of mean torque"

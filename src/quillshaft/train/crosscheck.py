@@ -14,6 +14,7 @@ from quillshaft.train.validate import Findings, Rows
 
 LINK_TABLES = ("shafts", "couplings", "gears", "ties")
 DEGREES = 57.29577951308232
+LEAST_POWER_W = 1e-9
 LAWS = ("square", "constant-torque", "constant-power")
 
 
@@ -193,6 +194,8 @@ def read_power(
             continue
         _station(findings, rows, ("power", name), name)
         stations[name] = None if value == BALANCE else _read(value, "power", system, ("power", name), findings)
+        if 0 < abs(stations[name] or 0.0) < LEAST_POWER_W:
+            findings.add(("power", name), "is less than any machine's power", value, "0, or a power that counts")
     return stations, _read_law(data.get("law"), system, findings)
 
 

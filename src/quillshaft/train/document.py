@@ -13,6 +13,7 @@ from typing import Any
 
 from quillshaft.train.problems import Problem, TrainFileError
 
+MOST_LEVELS = 20
 KeyPath = tuple[str | int, ...]
 """The way through the tables: keys, and list positions counted from 0."""
 
@@ -75,7 +76,23 @@ def parse_document(text: str, name: str) -> Document:
     if not data:
         raise _failure(name, None, "the file is empty", "a train file, as `quillshaft new` writes one")
     digest = hashlib.sha256(text.encode("utf-8", "surrogatepass")).hexdigest()
-    return Document(name, text, data, digest)
+    document = Document(name, text, data, digest)
+    deep = _deepest(data)
+    if len(deep) > MOST_LEVELS:
+        message = "tables nested too deeply"
+        raise _failure(name, line_of(document, deep[:MOST_LEVELS]), message, f"at most {MOST_LEVELS} levels")
+    return document
+
+
+def _deepest(data: dict[str, Any]) -> KeyPath:
+    """The way to a place deeper than MOST_LEVELS where there is one, else to some place that is not."""
+    paths: list[tuple[KeyPath, Any]] = [((), data)]
+    path: KeyPath = ()
+    while paths and len(path) <= MOST_LEVELS:
+        path, value = paths.pop()
+        members = value.items() if isinstance(value, dict) else enumerate(value) if isinstance(value, list) else ()
+        paths += [((*path, key), member) for key, member in members]
+    return path
 
 
 def line_of(document: Document, path: KeyPath) -> int | None:

@@ -22,7 +22,6 @@ from quillshaft.train.quantity import (
     which_measure,
 )
 
-LEAST_INERTIA_KGM2 = 1e-12
 LEAST_LENGTH_M = 1e-4
 NUMBER_OR_TEXT: dict[str, Any] = {"anyOf": [{"type": "string"}, {"type": "number"}]}
 
@@ -75,7 +74,7 @@ class Measured:
     measure: str
     low: float = 0.0
     closed: bool = False
-    least: float = 0.0
+    least: float = 1e-12
 
     def read(self, value: object, info: ValidationInfo) -> float:
         """The SI value. Raises PydanticCustomError when it is no such quantity or too low."""
@@ -259,11 +258,11 @@ def _iso(value: Any) -> Any:
     return value.isoformat() if hasattr(value, "isoformat") else value
 
 
-Inertia = Annotated[float, Measured("inertia", closed=True, least=LEAST_INERTIA_KGM2)]
-Wr2 = Annotated[float, Measured("wr2", closed=True, least=LEAST_INERTIA_KGM2)]
-Gd2 = Annotated[float, Measured("gd2", closed=True, least=LEAST_INERTIA_KGM2)]
+Inertia = Annotated[float, Measured("inertia", closed=True)]
+Wr2 = Annotated[float, Measured("wr2", closed=True)]
+Gd2 = Annotated[float, Measured("gd2", closed=True)]
 Stiffness = Annotated[float, Measured("stiffness")]
-Flexibility = Annotated[float, Measured("flexibility")]
+Flexibility = Annotated[float, Measured("flexibility", least=0.0)]
 Torque = Annotated[float, Measured("torque")]
 Length = Annotated[float, Measured("length", least=LEAST_LENGTH_M)]
 LengthOrZero = Annotated[float, Measured("length", closed=True, least=LEAST_LENGTH_M)]
@@ -283,9 +282,7 @@ ExcitationTorque = Annotated[tuple[str, float], AnyMeasure(("share", "torque"))]
 Ratio = Annotated[float, Field(gt=0, le=50, strict=True, allow_inf_nan=False)]
 Diameters = Annotated[tuple[float, float], MeasuredPair(Measured("length", least=LEAST_LENGTH_M))]
 Bores = Annotated[tuple[float, float], MeasuredPair(Measured("length", closed=True, least=LEAST_LENGTH_M))]
-HalfInertias = Annotated[
-    tuple[float, float], MeasuredPair(Measured("inertia", closed=True, least=LEAST_INERTIA_KGM2), alone=False)
-]
+HalfInertias = Annotated[tuple[float, float], MeasuredPair(Measured("inertia", closed=True), alone=False)]
 HubLengths = Annotated[tuple[float, ...], Hubs()]
 Ranges = Annotated[tuple[tuple[float, float], ...], SpeedRanges()]
 ToleranceField = Annotated[tuple[float, float], RelativeTolerance()]

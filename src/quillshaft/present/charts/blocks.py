@@ -92,13 +92,13 @@ def text_blocks(screening: Screening, parts: Lanes, plan: Plan, pitch_mm: float,
             if bead == GROUND:
                 continue
             far = home in used[k] and away not in used[k]
-            lines = _station_lines(screening, bead, pitch_mm - 1.6, numbers)
+            lines = _station_lines(screening, bead, pitch_mm - 2.0, numbers)
             beside = _heading(placed) if len(used[k]) > 1 else 0
             side = away if far else home
             blocks.append(Block(lines, placed.row, placed.columns[k], side, far, "station", beside))
         for k, link in enumerate(lane.links):
             column = (placed.columns[k] + placed.columns[k + 1]) / 2
-            lines = _link_lines(screening, link, pitch_mm - 1.6, numbers)
+            lines = _link_lines(screening, link, pitch_mm - 2.0, numbers)
             blocks.append(Block(lines, placed.row, column, away, False, "link"))
     return [*blocks, *_cut_blocks(screening, parts, plan, pitch_mm, numbers)]
 
@@ -109,7 +109,7 @@ def _cut_blocks(screening: Screening, parts: Lanes, plan: Plan, pitch_mm: float,
         if joint.cut:
             row, column = plan.spot(joint.ends[0])
             forward = _direction(plan, joint.ends[0])
-            lines = _link_lines(screening, joint.link, pitch_mm - 1.6, numbers)
+            lines = _link_lines(screening, joint.link, pitch_mm - 2.0, numbers)
             home = any("above" in sides for end, sides in joint_sides(plan).items() if end[0] == joint.ends[0][0])
             yield Block(lines, row, column + 0.5 * forward, "above" if home else "below", False, "link")
 

@@ -19,7 +19,7 @@ from quillshaft.assess.results import Screening
 from quillshaft.present.charts import look
 from quillshaft.present.charts.key import draw_key, key_height, line_note
 from quillshaft.present.charts.operating import draw_operation
-from quillshaft.present.charts.panels import Panel, leaves, panels
+from quillshaft.present.charts.panels import Panel, leaves, panels, shrunk
 from quillshaft.present.charts.phrases import governing_pair, interference_title
 from quillshaft.present.charts.spread import Box, free_spot, spread
 from quillshaft.present.words import number
@@ -60,10 +60,12 @@ def interference_diagram(screening: Screening) -> Figure:
     top = top_speed_rpm(screening)
     content = Content(screening, source_lines(screening, top), mode_bands(screening), pair_marks(screening), top)
     plots = panels(content.bands, content.lines)
-    exits = [_exits(content, plots, index, True) for index in range(len(plots))]
-    heads = [_head_mm(content, found) for found in exits]
     note = line_note(content.lines, _unlabelled(content, plots))
     foot = key_height(content.marks, NUMBERED) + len(note) * look.line_mm()
+    heads = [_head_mm(content, _exits(content, plots, index, True)) for index in range(len(plots))]
+    plots = shrunk(plots, look.TALLEST_MM - 10.0 - foot - STRIP_MM - sum(heads))
+    exits = [_exits(content, plots, index, True) for index in range(len(plots))]
+    heads = [_head_mm(content, found) for found in exits]
     total = foot + STRIP_MM + sum(panel.height_mm for panel in plots) + sum(heads)
     made = look.frame(interference_title(screening), total)
     draw_key(made, foot, content.marks, NUMBERED, note)
@@ -118,14 +120,16 @@ def line_label(line: SourceLine) -> str:
 
 def _exits(content: Content, plots: tuple[Panel, ...], number: int, by_top: bool) -> list[tuple[float, float, str]]:
     """(rpm, Hz, label) of the lines labelled at a panel's top, or at its right edge."""
-    found = []
+    found: list[tuple[SourceLine, tuple[float, float]]] = []
     for line in content.lines:
         at = leaves(line, plots[number])
         if at is None or _labelled_in(content, line, plots) != number:
             continue
         if (at[0] < content.top_rpm * (1.0 - 1e-9)) == by_top:
-            found.append((*at, line_label(line)))
-    return found
+            found.append((line, at))
+    room = int((PLOT_MM if by_top else plots[number].height_mm) / LABEL_MM)
+    found.sort(key=lambda item: (not item[0].pairs, _leading_source(content) not in item[0].names))
+    return [(*at, line_label(line)) for line, at in found[:room]]
 
 
 def _x(content: Content, rpm: float) -> float:
@@ -176,7 +180,7 @@ def _write_right_exits(made: look.Frame, panel: Panel, found: list[tuple[float, 
     """Labels right of a panel, moved apart, each joined to the end of its line."""
     ends = [_y(panel, frequency, 0.0) for _, frequency, _ in found]
     axes = look.millimetre_axes(made, foot_mm - 3.0, foot_mm + panel.height_mm + 3.0)
-    centres = spread(ends, [LABEL_MM] * len(found), -2.5, panel.height_mm + 2.5)
+    centres = spread(ends, [LABEL_MM] * len(found), -0.3, panel.height_mm + 0.3)
     edge = LEFT_MM + PLOT_MM
     for y, (*_, text), centre in zip(ends, found, centres, strict=True):
         axes.plot([edge, edge + 2.6], [y + 3.0, centre + 3.0], lw=look.HAIR_PT, color=look.QUIET)

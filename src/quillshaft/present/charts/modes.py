@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 from quillshaft.assess.results import ModeResult, Screening
 from quillshaft.graph.torsional import GraphLink
 from quillshaft.present.charts import look
-from quillshaft.present.charts.phrases import capital, mode_title
+from quillshaft.present.charts.phrases import capital, count, listed, mode_title
 from quillshaft.present.charts.strips import Strip, strips
 
 if TYPE_CHECKING:
@@ -21,12 +21,26 @@ LEFT_MM = 12.0
 START_MM = 6.0
 END_MM = 5.0
 NARROWEST_MM = 12.5
-UPRIGHT_MM = 28.0
+CAPTION_MM = 64.0
 SMALLEST = 0.0005
 """Shares below this are not mentioned."""
 
 Shares = tuple[list[tuple[str, float]], float]
 """Names with their shares, the largest first, and what all others sum to."""
+
+
+@dataclass(frozen=True)
+class Size:
+    """Room [mm] and rows that one of several modes in a figure gets."""
+
+    rows: int
+    curve_mm: float
+    bars: int
+    upright_mm: float
+
+
+SIZES = {1: Size(3, 30.0, 7, 28.0), 2: Size(2, 24.0, 5, 18.0), 3: Size(1, 17.0, 3, 12.0)}
+"""By the number of modes in the figure."""
 
 
 @dataclass(frozen=True)
@@ -38,6 +52,8 @@ class Setting:
     pitch_mm: float
     curve_mm: float
     bars: int
+    upright_mm: float
+    left_out: tuple[Strip, ...]
 
     @property
     def upright(self) -> bool:
@@ -60,7 +76,7 @@ def mode_shapes(screening: Screening, numbers: Sequence[int]) -> Figure:
     if not 1 <= len(numbers) <= 3:
         raise ValueError(f"a figure shows one to three modes, not {len(numbers)}")
     modes = [screening.mode(number) for number in numbers]
-    setting = _setting(screening, len(modes))
+    setting = _setting(screening, modes)
     note = _note_lines(setting)
     panels = [_panel_height(setting, mode) for mode in modes]
     heads = [look.wrap(mode_title(screening, mode), look.WIDTH_MM - 2.0, look.TITLE_PT, True) for mode in modes]
@@ -78,32 +94,58 @@ def mode_shapes(screening: Screening, numbers: Sequence[int]) -> Figure:
     return made.figure
 
 
-def _setting(screening: Screening, modes: int) -> Setting:
-    runs = strips(screening.graph)
+def _setting(screening: Screening, modes: Sequence[ModeResult]) -> Setting:
+    """Strips side by side in rows; where there are too many rows, those that move least are left out."""
+    runs = list(strips(screening.graph))
     most = max(len(run.stations) for run in runs)
     room = look.WIDTH_MM - LEFT_MM - START_MM
     pitch = min(26.0, room / (most - 0.5), (room - END_MM) / max(1, most - 1))
+    size = SIZES[len(modes)]
+    left_out: list[Strip] = []
+    rows = _rows(runs, pitch)
+    while len(rows) > size.rows:
+        least = min(runs[1:], key=lambda run: _share(screening, run, modes))
+        runs.remove(least)
+        left_out.append(least)
+        rows = _rows(runs, pitch)
+    curve = size.curve_mm * {1: 1.0, 2: 0.75}.get(len(rows), 0.6)
+    upright = size.upright_mm if len(rows) == 1 else min(16.0, size.upright_mm)
+    return Setting(screening, rows, pitch, curve, size.bars, upright, tuple(left_out))
+
+
+def _rows(runs: Sequence[Strip], pitch_mm: float) -> tuple[tuple[Strip, ...], ...]:
     rows: list[list[Strip]] = []
     for run in runs:
-        used = sum(_strip_width(other, pitch) for other in rows[-1]) if rows else look.WIDTH_MM
-        if used + _strip_width(run, pitch) <= look.WIDTH_MM + 0.01:
+        used = sum(_strip_width(other, pitch_mm) for other in rows[-1]) if rows else look.WIDTH_MM
+        if used + _strip_width(run, pitch_mm) <= look.WIDTH_MM + 0.01:
             rows[-1].append(run)
         else:
             rows.append([run])
-    curve = {1: 30.0, 2: 25.0, 3: 21.0}[modes] * (1.0 if len(rows) == 1 else 0.75)
-    return Setting(screening, tuple(map(tuple, rows)), pitch, curve, {1: 7, 2: 5, 3: 4}[modes])
+    return tuple(map(tuple, rows))
+
+
+def _share(screening: Screening, run: Strip, modes: Sequence[ModeResult]) -> float:
+    """Largest share of the energies, over the modes, that sits on a strip."""
+    graph = screening.graph
+    own = run.stations[1:] if run.lead else run.stations
+    return max(
+        sum(mode.kinetic_energy[graph.stations[station]] for station in own)
+        + sum(mode.strain_energy[graph.links[link].name] for link in run.links)
+        for mode in modes
+    )
 
 
 def _strip_width(run: Strip, pitch_mm: float) -> float:
-    """Width [mm] of a strip with its axis, from name to name."""
-    return LEFT_MM + START_MM + pitch_mm * (len(run.stations) - 0.5)
+    """Width [mm] of a strip with its axis, from name to name, or with its caption if that is wider."""
+    plain = START_MM + pitch_mm * (len(run.stations) - 0.5)
+    return LEFT_MM + max(plain, min(look.width_mm(run.caption) + 3.0, CAPTION_MM))
 
 
 def _names_height(setting: Setting, run: Strip) -> float:
     """Height [mm] of the station names under a strip."""
     names = [setting.screening.graph.stations[station] for station in run.stations]
     if setting.upright:
-        return min(UPRIGHT_MM, max(look.width_mm(name) for name in names)) + 1.5
+        return min(setting.upright_mm, max(look.width_mm(name) for name in names)) + 1.5
     lines = max(len(look.wrap_name(name, setting.pitch_mm - 1.5)) for name in names)
     return lines * look.line_mm() + 1.0
 
@@ -184,7 +226,8 @@ def _draw_strip(
     left, top = corner_mm[0] + LEFT_MM, corner_mm[1] - head_mm
     if run.caption:
         head = look.millimetre_axes(made, top, corner_mm[1])
-        look.put(head, left, head_mm / 2, capital(run.caption), ha="left", color=look.QUIET, gid="caption")
+        text = look.shorten(capital(run.caption), _strip_width(run, setting.pitch_mm) - LEFT_MM - 1.5)
+        look.put(head, left, head_mm / 2, text, ha="left", color=look.QUIET, gid="caption")
     pitch = setting.pitch_mm
     width = START_MM + pitch * max(0.6, len(run.stations) - 1) + 1.0
     axes = look.plot_axes(made, (left, top - setting.curve_mm, width, setting.curve_mm))
@@ -243,7 +286,7 @@ def _label_points(axes: Axes, x: list[float], y: list[float], pitch: float, lead
     """Referred angles at the points: all of them, or only turning points where columns are narrow."""
     for k, height in enumerate(y):
         inner = 0 < k < len(y) - 1
-        turning = inner and (height - y[k - 1]) * (y[k + 1] - height) <= 0
+        turning = inner and (height - y[k - 1]) * (y[k + 1] - height) < -1e-4
         if pitch < 9.0 and inner and not turning:
             continue
         if lead and k == 0:
@@ -275,7 +318,13 @@ def _write_names(
         name, at = setting.screening.graph.stations[station], left + START_MM + setting.pitch_mm * k
         if setting.upright:
             look.put(
-                axes, at, top - foot - 0.8, look.shorten_name(name, UPRIGHT_MM), rotation=90, va="top", gid="station"
+                axes,
+                at,
+                top - foot - 0.8,
+                look.shorten_name(name, setting.upright_mm),
+                rotation=90,
+                va="top",
+                gid="station",
             )
             continue
         for row, text in enumerate(look.wrap_name(name, setting.pitch_mm - 1.5)):
@@ -293,4 +342,7 @@ def _note_lines(setting: Setting) -> list[str]:
         text += " Actual: each shaft's own angle, the largest 1."
     if any(run.lead for row in setting.rows for run in row):
         text += " Open point: a station of another strip."
+    if setting.left_out:
+        names = [setting.screening.graph.stations[run.stations[-1]] for run in setting.left_out]
+        text += f" Not drawn: {count(len(names), 'branch', 'branches')} with the least energy, to {listed(names, 5)}."
     return look.wrap(text, look.WIDTH_MM - 5.0)

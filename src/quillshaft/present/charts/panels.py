@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from quillshaft.assess.diagram_data import ModeBand, SourceLine
 
@@ -28,7 +28,7 @@ def panels(bands: Sequence[ModeBand], lines: Sequence[SourceLine]) -> tuple[Pane
     low, high = bands[0].nominal_hz, bands[-1].nominal_hz
     if high <= WIDE_SPAN * low or len(bands) == 1:
         return (Panel(0.0, _roomy(1.08 * _top(bands), lines), tuple(bands), 98.0),)
-    cut = max(range(1, len(bands)), key=lambda i: bands[i].nominal_hz / bands[i - 1].nominal_hz)
+    cut = min(range(1, len(bands)), key=lambda i: (_crowded(bands, i), bands[i - 1].nominal_hz / bands[i].nominal_hz))
     below, above = tuple(bands[:cut]), tuple(bands[cut:])
     share = 30.0 + 55.0 * len(below) / len(bands)
     foot = 0.97 * min(above[0].low_hz, above[0].free_from_hz)
@@ -36,6 +36,19 @@ def panels(bands: Sequence[ModeBand], lines: Sequence[SourceLine]) -> tuple[Pane
         Panel(0.0, min(foot, _roomy(1.12 * _top(below), lines)), below, share),
         Panel(foot, 1.03 * _top(above), above, 115.0 - share),
     )
+
+
+def _crowded(bands: Sequence[ModeBand], cut: int) -> int:
+    """Modes pressed together at the foot of either panel, if the bands are cut there."""
+    low = [band.nominal_hz for band in bands[:cut]]
+    high = [band.nominal_hz - bands[cut].nominal_hz for band in bands[cut + 1 :]]
+    return sum(f < low[-1] / WIDE_SPAN for f in low) + sum(f < high[-1] / WIDE_SPAN for f in high)
+
+
+def shrunk(plots: tuple[Panel, ...], room_mm: float) -> tuple[Panel, ...]:
+    """The panels lower in proportion where they do not fit a height [mm], down to 60 per cent."""
+    share = max(0.6, min(1.0, room_mm / sum(panel.height_mm for panel in plots)))
+    return tuple(replace(panel, height_mm=share * panel.height_mm) for panel in plots)
 
 
 def _roomy(high_hz: float, lines: Sequence[SourceLine]) -> float:

@@ -13,10 +13,10 @@ RPM = 30.0 / 3.141592653589793
 _COUNTS = ["no", "one", "two", "three", "four", "five", "six", "seven", "eight", "nine", "ten", "eleven", "twelve"]
 
 
-def count(amount: int, noun: str) -> str:
+def count(amount: int, noun: str, plural: str | None = None) -> str:
     """ "seven stations", "one shaft", "25 stations"."""
     word = _COUNTS[amount] if amount < len(_COUNTS) else str(amount)
-    return f"{word} {noun}" + ("" if amount == 1 else "s")
+    return f"{word} {noun if amount == 1 else plural or noun + 's'}"
 
 
 def capital(text: str) -> str:

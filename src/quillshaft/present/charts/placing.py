@@ -46,7 +46,7 @@ def place(parts: Lanes, widest: int) -> Plan:
         joint = _next_joint(parts.joints, placed)
         if joint is None:
             lane = min(set(range(len(parts.lanes))) - set(placed))
-            placed[lane] = _new_row(lane, parts, placed, 0)
+            placed[lane] = _anywhere(lane, parts, placed, widest)
             continue
         known, new = joint.ends if joint.ends[0][0] in placed else joint.ends[::-1]
         placed[new[0]] = _beside(joint, known, new, parts, placed, widest)
@@ -67,6 +67,19 @@ def _stretched(lane: int, parts: Lanes) -> list[int]:
         offsets.append(at)
         at += 2 if busy.count((lane, index)) > 1 else 1
     return offsets
+
+
+def _anywhere(lane: int, parts: Lanes, placed: dict[int, Placed], widest: int) -> Placed:
+    """The first free stretch of a row, from the top; else a row of its own at the bottom."""
+    offsets = _stretched(lane, parts)
+    left = min((min(other.columns) for other in placed.values()), default=0)
+    rows = sorted({other.row for other in placed.values()})
+    for row in rows:
+        for start in range(left, left + widest - offsets[-1]):
+            columns = tuple(start + offset for offset in offsets)
+            if not _taken(row, columns, placed):
+                return Placed(lane, row, columns)
+    return _new_row(lane, parts, placed, left)
 
 
 def _new_row(lane: int, parts: Lanes, placed: dict[int, Placed], left: int) -> Placed:
@@ -100,7 +113,7 @@ def _beside(
             cost = growth * (high - low - (right - left)) + 2 * (row < home.row) + 8 * turned
             if best is None or cost < best[0]:
                 best = cost, Placed(new[0], row, columns)
-    return best[1] if best else _new_row(new[0], parts, placed, left)
+    return best[1] if best else _anywhere(new[0], parts, placed, widest)
 
 
 def _aligned(offsets: list[int], index: int, column: int, turned: bool) -> tuple[int, ...]:

@@ -113,7 +113,7 @@ def planets(axes: Axes, start: Point, end: Point) -> None:
 def letter(axes: Axes, at: Point, text: str) -> None:
     """A letter in a ring: the same letter stands at the other end of the joint."""
     axes.plot(*at, marker="o", ms=8.5, mfc=look.PAPER, mec=look.INK, mew=look.THIN_PT, zorder=6)
-    look.put(axes, at[0], at[1], text, 6.5, zorder=7, fontweight="bold", va="center_baseline")
+    look.put(axes, at[0], at[1], text, 6.5, zorder=7, fontweight="bold", va="center_baseline", gid="letter")
 
 
 def arrow(axes: Axes, start: Point, end: Point) -> None:

@@ -68,6 +68,10 @@ def _lay_out(screening: Screening, widest: int, numbers: bool) -> Sheet:
     room = look.WIDTH_MM - SPEED_MM
     pitch = min(WIDEST_PITCH_MM, room / (plan.columns + (0.5 if cut else 0.0)))
     blocks = text_blocks(screening, parts, plan, pitch, numbers)
+    beside = max((block.column + 1.4 for block in blocks if block.beside > 0), default=0.0)
+    if beside * pitch > room:
+        pitch = room / beside
+        blocks = text_blocks(screening, parts, plan, pitch, numbers)
     labels = _joint_labels(screening, plan, pitch)
     gaps: dict[int, int] = {}
     for joint, lines, _, _ in labels:
@@ -77,28 +81,23 @@ def _lay_out(screening: Screening, widest: int, numbers: bool) -> Sheet:
 
 
 def _joint_labels(screening: Screening, plan: Plan, pitch: float) -> list[tuple[Joint, list[str], float, str]]:
-    """(joint, lines, offset from its column [mm], alignment): on the side with more room up to the next joint."""
-    labels = []
-    for joint in plan.straight:
-        row, column = min(plan.spot(end) for end in joint.ends)
-        others = sorted(
-            plan.spot(end)[1]
-            for other in plan.straight
-            if other != joint
-            for end in other.ends[:1]
-            if min(plan.spot(e)[0] for e in other.ends) == row
-        )
-        right = next((c for c in others if c > column), None)
-        left = next((c for c in reversed(others) if c < column), None)
-        here = SPEED_MM + (column + 0.5) * pitch
-        room_right = (right - column) * pitch - 4.0 if right is not None else look.WIDTH_MM - here - 2.5
-        room_left = (column - left) * pitch / 2 - 4.0 if left is not None else here - 2.5
-        room_right = room_right if right is None else min(room_right, max(room_right / 2, room_right - 4.0))
+    """(joint, lines, offset from its column [mm], alignment): right of the joint where there is room, else left."""
+    labels: list[tuple[Joint, list[str], float, str]] = []
+    joints = sorted(plan.straight, key=lambda joint: min(plan.spot(end) for end in joint.ends))
+    places = [min(plan.spot(end) for end in joint.ends) for joint in joints]
+    written = (-1, 0.0)
+    for joint, (row, column) in zip(joints, places, strict=True):
+        x = SPEED_MM + (column + 0.5) * pitch
+        nearest = min((c for r, c in places if r == row and c > column), default=None)
+        right = look.WIDTH_MM - x - 3.0 if nearest is None else (nearest - column) * pitch - 4.0
+        left = x - 4.0 - (written[1] if written[0] == row else 0.0)
         text = joint_text(screening, joint, plan.straight + plan.lettered)
-        if look.width_mm(text) > room_right and room_left > room_right:
-            labels.append((joint, look.wrap(text, room_left), -2.2, "right"))
-        else:
-            labels.append((joint, look.wrap(text, room_right), 2.2, "left"))
+        to_left = look.width_mm(text) > right and left > right
+        room = left if to_left else right
+        lines = [look.shorten_name(line, room) for line in look.wrap(text, room)]
+        labels.append((joint, lines, -2.2, "right") if to_left else (joint, lines, 2.2, "left"))
+        reach = 1.0 if to_left else 2.2 + max(look.width_mm(line) for line in lines)
+        written = (row, x + reach)
     return labels
 
 

@@ -29,6 +29,7 @@ from quillshaft.present.words import (
     range_words,
     verdict_sentence,
 )
+from quillshaft.version import __version__
 
 RPM = 30.0 / math.pi
 MOST_ON_PAGE_ONE = 4
@@ -54,8 +55,6 @@ def front_parts(screening: Screening) -> list[Any]:
 
 
 def _identification(screening: Screening) -> list[Any]:
-    from quillshaft import __version__
-
     train, sign = screening.train, screening.train.sign_off
     pairs = [
         ("Train", train.title + (f" ({train.tag})" if train.tag else "")),
