@@ -7,6 +7,7 @@ from typing import Any
 
 import numpy as np
 import scipy.linalg
+
 from trains import train_text
 
 
@@ -199,7 +200,7 @@ def equations(draft: Draft) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
 
 def rank(matrix: np.ndarray) -> int:
     """Rank, 0 for an empty matrix."""
-    return int(np.linalg.matrix_rank(matrix)) if matrix.size else 0
+    return int(np.linalg.matrix_rank(matrix, tol=1e-9)) if matrix.size else 0
 
 
 def free_motions(draft: Draft) -> tuple[np.ndarray, np.ndarray, np.ndarray]:

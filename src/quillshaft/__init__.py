@@ -14,7 +14,7 @@ from quillshaft.version import __version__
 
 if TYPE_CHECKING:
     from quillshaft.assess.results import Interference, ModeResult, Screening
-    from quillshaft.assess.screening import screen
+    from quillshaft.assess.screening import screen, screen_temperatures
     from quillshaft.graph.build import build_graph
     from quillshaft.graph.torsional import TorsionalGraph
     from quillshaft.present.report import report_pdf
@@ -36,6 +36,7 @@ __all__ = [
     "load",
     "report_pdf",
     "screen",
+    "screen_temperatures",
     "screening_json",
 ]
 
@@ -51,6 +52,7 @@ _HOME = {
     "load": "train.read",
     "report_pdf": "present.report",
     "screen": "assess.screening",
+    "screen_temperatures": "assess.screening",
     "screening_json": "present.results_json",
 }
 

@@ -6,10 +6,10 @@ from dataclasses import replace
 
 import numpy as np
 import pytest
-from trains import omegas, screening_of, train_text
 
 from quillshaft.solve.modes import natural_frequencies
 from quillshaft.solve.plan import plan_elimination
+from trains import omegas, screening_of, train_text
 
 # A geared train with twin branches, a tie, an elastic mesh and lopsided tolerances: value, low, high.
 STATIONS = {

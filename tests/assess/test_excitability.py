@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import pytest
+
 from trains import screening_of, train_text
 
 # J = 8, 6, 4; k = 4e6, 2e6: shapes (1, 0, −2) and (1, −2, 1), ω² = 500² · 2 and · 6 (three-disc closed form).
@@ -89,9 +90,7 @@ def test_a_rigid_mesh_carries_the_shaft_torque_less_the_inertia_torque_of_its_ow
 def test_the_worst_is_the_largest_of_nominal_and_both_corners():
     def text(scale_k, scale_j, **tables):
         stations = {name: {"inertia": value * scale_j[name]} for name, value in STATIONS.items()}
-        shafts = {
-            name: {"between": row[:2], "stiffness": row[2] * scale_k[name]} for name, row in SHAFTS.items()
-        }
+        shafts = {name: {"between": row[:2], "stiffness": row[2] * scale_k[name]} for name, row in SHAFTS.items()}
         for row in (*stations.values(), *shafts.values()):
             row.update(tables)
         return train_text(stations, shafts=shafts, excitations=AT_ALL, operation=WIDE)

@@ -7,8 +7,10 @@ from collections import Counter
 import numpy as np
 from hypothesis import given, settings
 from hypothesis import strategies as st
+
 from random_trains import dense_inverse_squares, draft_rigid_motions, expected_modes, random_draft
 from trains import screening_of
+
 
 def tables_for(draft):
     """Machines, power and tolerances, so that every room of the path has work."""

@@ -8,6 +8,7 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
+
 from random_trains import random_draft
 from trains import RPM, screening_of, train_text
 
@@ -136,7 +137,8 @@ HP_KW = 0.45359237 * 9.80665 * 0.3048 * 550 / 1000
 @settings(max_examples=60, deadline=None, derandomize=True)
 def test_the_unit_system_changes_nothing(seed):
     draft = random_draft(seed)
-    first, last = list(draft.stations)[0], list(draft.stations)[-1]
+    names = list(draft.stations)
+    first, last = names[0], names[-1]
     power = {"power": {first: "LOAD", last: "balance"}} if first != last and not draft.speeds else {}
     extra = {"assumptions": {"tolerances": "default"}, **power}
     si = screening_of(draft.text(**extra).replace('"LOAD"', "100.0"))
@@ -220,5 +222,5 @@ def test_energy_shares_sum_to_one_and_are_never_negative(seed):
 
 def test_rated_speed_in_any_unit_is_one_speed():
     for rated in ("1500 rpm", "1500 r/min", f"{1500 * RPM!r} rad/s", "25 rev/s"):
-        result = screening_of(train_text({"a": 1.0, "b": 1.0}, shafts={"s": ("a", "b", 1e5)}, operation={"rated": rated}))
-        assert result.train.operation.rated_rad_s == pytest.approx(1500 * RPM, rel=1e-14)
+        text = train_text({"a": 1.0, "b": 1.0}, shafts={"s": ("a", "b", 1e5)}, operation={"rated": rated})
+        assert screening_of(text).train.operation.rated_rad_s == pytest.approx(1500 * RPM, rel=1e-14)

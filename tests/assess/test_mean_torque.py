@@ -6,6 +6,10 @@ import math
 
 import numpy as np
 import pytest
+from hypothesis import assume, given, settings
+from hypothesis import strategies as st
+
+from random_trains import free_motions, random_draft
 from trains import duty, graph_of, refusal, screening_of, train_text
 
 CHAIN = {"motor": 10.0, "hub": 1.0, "pinion": 0.3, "wheel": 3.0, "pump": 6.0}
@@ -233,3 +237,42 @@ def test_the_arm_of_a_resting_ring_carries_the_reaction():
     result = screening_of(text)
     assert abs(torque(result, "arm")) == pytest.approx(4 * 300e3 / (3000 * math.pi / 30), rel=1e-11)
     assert "does not turn" in refusal(text.replace('"carrier" = "balance"', '"ring" = "balance"'))
+
+
+def dense_torques(draft, graph, load_nm):
+    """Torque [N·m] of every shaft and coupling in its first end's own rotation, by a dense solution.
+
+    Actual signed angles; rigid gears by elimination, ties at turning stations left out.
+    """
+    names = list(draft.stations)
+    ratio = np.array([float(graph.speed_ratio[graph.number(name)]) for name in names])
+    draft.ties = {name: row for name, row in draft.ties.items() if ratio[names.index(row[0])] == 0}
+    twists, stiffness, basis = free_motions(draft)
+    reduced = twists @ basis
+    spring = reduced.T @ (stiffness[:, None] * reduced)
+    torque = np.array([load_nm.get(name, 0.0) for name in names])
+    angle = basis @ np.linalg.lstsq(spring, basis.T @ torque, rcond=1e-12)[0]
+    links = {**draft.springs, **draft.flexible}
+    sign = {name: 1.0 if value >= 0 else -1.0 for name, value in zip(names, ratio, strict=True)}
+    return {
+        name: sign[row[0]] * k * float(twist @ angle)
+        for (name, row), twist, k in zip(links.items(), twists, stiffness, strict=False)
+    }
+
+
+@given(st.integers(0, 2**32))
+@settings(max_examples=120, deadline=None, derandomize=True)
+def test_torques_of_any_train_agree_with_a_dense_solution(seed):
+    draft = random_draft(seed)
+    graph = graph_of(draft.text())
+    turning = [name for name in draft.stations if graph.speed_ratio[graph.number(name)] != 0]
+    resting_only = all(value == "0 rpm" for value in draft.speeds.values())
+    assume(len(turning) > 1 and resting_only)
+    result = screening_of(draft.text(power={turning[0]: "100 kW", turning[-1]: "balance"}))
+    speed = 1500 * math.pi / 30
+    ends = {turning[0]: 1.0, turning[-1]: -1.0}
+    load = {name: sign * 1e5 / speed / float(graph.speed_ratio[graph.number(name)]) for name, sign in ends.items()}
+    expected = dense_torques(draft, graph, load)
+    largest = max((abs(value) for value in expected.values()), default=0.0)
+    for name, value in expected.items():
+        assert duty(result, name).mean_torque_nm == pytest.approx(value, rel=1e-7, abs=1e-8 * largest + 1e-9)

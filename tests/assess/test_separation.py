@@ -3,16 +3,17 @@
 from __future__ import annotations
 
 import math
+from itertools import pairwise
 
 import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
-from trains import RPM, screening_of, train_text
 
 from quillshaft.assess.separation import critical_speeds, judged_ranges, required_separation, separate
 from quillshaft.sources.line import Action, Source, frequencies_over, meeting_speeds
 from quillshaft.train.model import Operation
+from trains import RPM, screening_of, train_text
 
 TWO_PI = 2 * math.pi
 
@@ -184,7 +185,7 @@ def stretches(ranges, barred):
     """(low, high, barred) of every piece of the running ranges; the edges of barred stretches run."""
     for low, high in ranges:
         cuts = sorted({low, high, *(edge for pair in barred for edge in pair if low <= edge <= high)})
-        for a, b in zip(cuts, cuts[1:], strict=False):
+        for a, b in pairwise(cuts):
             yield a, b, any(start < (a + b) / 2 < end for start, end in barred)
         for cut in cuts:
             yield cut, cut, any(start < cut < end for start, end in joined(barred))

@@ -7,9 +7,9 @@ import math
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
-from trains import refusal, screening_of, train_text
 
 from quillshaft.assess.results import SEVERITY
+from trains import refusal, screening_of, train_text
 
 # Two discs at f = √(k (1/J1 + 1/J2))/2π; 2x of 1500 rpm is 50 Hz, the judged range 49 to 51 Hz.
 BECAUSE = {"because": "measured torque below 2 % of mean", "by": "site test"}

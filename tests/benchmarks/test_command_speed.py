@@ -33,7 +33,9 @@ def twelve_stations(folder: Path) -> Path:
     """The generator set with a fan on its nose: twelve stations."""
     text = (ROOT / "examples" / "dairy-generator.toml").read_text()
     text = text.replace("[stations]\n", '[stations]\nfan = { inertia = "0.12 kg m^2" }\n')
-    text = text.replace("[shafts]\n", '[shafts]\nfan-drive = { between = ["fan", "pulley"], stiffness = "0.9 MN m/rad" }\n')
+    text = text.replace(
+        "[shafts]\n", '[shafts]\nfan-drive = { between = ["fan", "pulley"], stiffness = "0.9 MN m/rad" }\n'
+    )
     path = folder / "twelve.toml"
     path.write_text(text)
     return path

@@ -6,10 +6,10 @@ import math
 from fractions import Fraction
 
 import pytest
-from trains import graph_of, omegas, train_text
 
 from quillshaft.elements.gear import base_radius, mesh_ratio
 from quillshaft.train.model import GearGeometry, GearMesh
+from trains import graph_of, omegas, train_text
 
 # c = 20 N/(mm·µm), face 60 mm, pitch radius 100 mm (40 teeth of module 5), 20°: k = c b r_b². Derived:
 # 1.2e9 N/m · (0.093969262078591 m)² = 10596266.658714 N·m/rad.

@@ -8,10 +8,10 @@ import mpmath
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
-from trains import graph_of, train_text
 
 from quillshaft.elements import shaft
 from quillshaft.train.model import Material, Piece
+from trains import graph_of, train_text
 
 G = 80e9
 STEEL = Material("steel", G, 7850.0)

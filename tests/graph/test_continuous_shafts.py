@@ -6,6 +6,7 @@ import math
 
 import numpy as np
 import pytest
+
 from trains import omegas, train_text
 
 G, RHO, L = 80e9, 7850.0, 2.0
@@ -30,8 +31,7 @@ def cut_shaft(cuts, first=0.0, last=0.0, own=1.0, wall=False):
     else:
         stations["p0"] = first
     shafts = {
-        f"s{i}": {"between": [f"p{i}", f"p{i + 1}"], "pieces": [piece], "own-inertia": "ends"}
-        for i in range(count - 1)
+        f"s{i}": {"between": [f"p{i}", f"p{i + 1}"], "pieces": [piece], "own-inertia": "ends"} for i in range(count - 1)
     }
     return omegas(train_text(stations, shafts=shafts, ties=ties))
 

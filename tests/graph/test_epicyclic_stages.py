@@ -7,6 +7,7 @@ from fractions import Fraction
 import numpy as np
 import pytest
 import scipy.linalg
+
 from trains import graph_of, omegas, refusal, screening_of, train_text
 
 SUN, RING = 24, 96

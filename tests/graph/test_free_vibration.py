@@ -6,6 +6,7 @@ import math
 
 import numpy as np
 import pytest
+
 from trains import graph_of, omegas, screening_of, train_text
 
 TWO_PI = 2 * math.pi

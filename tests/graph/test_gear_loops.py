@@ -5,6 +5,7 @@ from __future__ import annotations
 import numpy as np
 import pytest
 import scipy.linalg
+
 from trains import graph_of, omegas, refusal, screening_of, train_text
 
 # Two countershafts between one pinion and one wheel, a torque-splitting gear.
@@ -54,7 +55,8 @@ def test_a_loop_whose_ratios_agree_is_accepted_and_agrees_with_the_dense_solutio
 
 
 def test_a_loop_whose_ratios_disagree_is_refused_and_names_its_gears():
-    message = refusal(train_text(STATIONS, shafts=SHAFTS, gears={**GEARS, "lower-out": ("lower-pinion", "bull", 20, 91)}))
+    gears = {**GEARS, "lower-out": ("lower-pinion", "bull", 20, 91)}
+    message = refusal(train_text(STATIONS, shafts=SHAFTS, gears=gears))
     assert "cannot turn" in message
     for gear in GEARS:
         assert gear in message
@@ -111,3 +113,47 @@ def test_a_spring_whose_ends_are_rigidly_one_stores_nothing():
     (mode,) = result.modes
     assert mode.strain_energy["fast"] == mode.strain_energy["slow"] == 0.0
     assert mode.strain_energy["out"] == pytest.approx(1.0, rel=1e-14)
+
+
+@pytest.mark.parametrize("order", range(12))
+def test_a_resting_gear_loop_is_solved_whatever_the_order_of_rows(order):
+    # The ring of a stage stands still on a spring and carries a torque-splitting gear: the last wheel hangs on
+    # two rigid meshes and nothing else. Checked against elimination of the constraints.
+    stations = {
+        "sun": 0.4,
+        "carrier": 5.0,
+        "ring": 2.0,
+        "up": 0.3,
+        "up-out": 0.9,
+        "low": 0.4,
+        "low-out": 0.2,
+        "last": 3,
+    }
+    shafts = {"upper": ("up", "up-out", 2e5), "lower": ("low", "low-out", 4e5)}
+    stage = {"kind": "epicyclic", "sun": "sun", "ring": "ring", "carrier": "carrier", "planets": 3}
+    meshes = {
+        "m1": ("ring", "up", 20, 40),
+        "m2": ("up-out", "last", 20, 60),
+        "m3": ("ring", "low", 20, 60),
+        "m4": ("low-out", "last", 20, 40),
+    }
+    names = np.random.default_rng(order).permutation(list(stations)).tolist()
+    text = train_text(
+        {name: float(stations[name]) for name in names},
+        operation={"speed-at": "sun", "speeds": {"ring": "0 rpm"}},
+        shafts=shafts,
+        gears={"stage": {**stage, "teeth": {"sun": 24, "ring": 96}}, **meshes},
+        ties={"arm": ("ring", 3e5)},
+    )
+
+    def row(*terms):
+        return np.array([dict(terms).get(name, 0.0) for name in stations])
+
+    rigid = [row(("sun", 24), ("ring", 96), ("carrier", -120))]
+    rigid += [row((a, z1), (b, z2)) for a, b, z1, z2 in meshes.values()]
+    twists = [(row((a, 1.0), (b, -1.0)), k) for a, b, k in shafts.values()] + [(row(("ring", 1.0)), 3e5)]
+    free = scipy.linalg.null_space(np.array(rigid))
+    spring = free.T @ sum(k * np.outer(twist, twist) for twist, k in twists) @ free
+    mass = free.T @ np.diag(list(stations.values())) @ free
+    exact = np.sqrt(scipy.linalg.eigh(spring, mass, eigvals_only=True)[1:])
+    assert omegas(text) == pytest.approx(exact, rel=1e-9)

@@ -5,9 +5,9 @@ from __future__ import annotations
 from fractions import Fraction
 
 import pytest
-from trains import graph_of, omegas, refusal, screening_of, train_text
 
 from quillshaft.graph.torsional import TorsionalGraph
+from trains import graph_of, omegas, refusal, screening_of, train_text
 
 STATIONS = {"motor": 1.0, "pinion": 0.1, "wheel": 0.3, "rotor": 0.2}
 SHAFTS = {"low": ("motor", "pinion", 3e5), "high": ("wheel", "rotor", 1e5)}

@@ -253,6 +253,29 @@ right-last = { between = ["right-pinion", "output"], teeth = [19, 83] }
 hoist = { kind = "other", at = "drum", passes = [4] }
 """
 
+FOLLOWS_TORQUE = (
+    BRANCHES.replace(
+        'stiffness = "1.1 MN m/rad", kind = "disc"',
+        'kind = "elastomer", stiffness = { "0 kN m" = "0.2 MN m/rad", "4 kN m" = "0.9 MN m/rad" }',
+    )
+    + """
+[power]
+turbine = "480 kW"
+hp-impeller = "-240 kW"
+lp-impeller = "-200 kW"
+oil-pump = "balance"
+law = "square"
+"""
+)
+
+ALONE = """
+[operation]
+speed-at = "rotor"
+rated = "1000 rpm"
+[stations]
+rotor = { inertia = "1 kg m^2" }
+"""
+
 TRAINS = {
     "pump": PUMP,
     "clear": CLEAR,
@@ -266,6 +289,7 @@ TRAINS = {
     "long-names": LONG_NAMES,
     "dismissed": DISMISSED,
     "loop": LOOP,
+    "follows-torque": FOLLOWS_TORQUE,
 }
 
 
@@ -274,5 +298,5 @@ def screened(name: str) -> Screening:
     """The screening of one of the trains."""
     with tempfile.TemporaryDirectory() as folder:
         path = Path(folder) / "train.toml"
-        path.write_text(HEAD + TRAINS[name], encoding="utf-8")
+        path.write_text(HEAD + {**TRAINS, "alone": ALONE}[name], encoding="utf-8")
         return screen(load(path))

@@ -11,9 +11,9 @@ import sys
 from pathlib import Path
 
 import pytest
-from issue_reports import ISSUED, ROOT, issue
 from pypdf import PdfReader
 
+from issue_reports import ISSUED, ROOT, issue
 from quillshaft import load, screen
 from quillshaft.present.report import report_pdf
 

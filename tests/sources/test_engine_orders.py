@@ -5,9 +5,9 @@ from __future__ import annotations
 import math
 
 import pytest
-from trains import screening_of, sources_of, train_text
 
 from quillshaft.sources.engine import is_major, orders_of, phase_vector_sum
+from trains import screening_of, sources_of, train_text
 
 # Firing orders of in-line four-stroke engines, even firing. Source: Den Hartog, Mechanical Vibrations, ch. 5,
 # star diagrams; β falls from 1 at cylinder 1 by 1/N per cylinder. Sums by arithmetic.
@@ -59,6 +59,12 @@ def test_major_orders_of_a_rigid_crank_are_multiples_of_half_the_cylinders(count
         assert is_major(order, firing) is major
 
 
+@pytest.mark.parametrize(("degrees", "major"), [(0, True), (119, True), (120, True), (121, False), (180, False)])
+def test_an_order_is_major_where_the_pulses_add_to_at_least_half_their_number(degrees, major):
+    # Two pulses φ apart add to 2 |cos(φ/2)|: half their number at 120° (arithmetic).
+    assert is_major(1.0, [0.0, math.radians(degrees)]) is major
+
+
 def test_orders_are_halves_up_to_12_in_four_strokes_and_whole_in_two():
     # Common practice.
     assert orders_of(4) == tuple(i / 2 for i in range(1, 25))
@@ -92,9 +98,7 @@ def test_excitability_of_an_engine_order_is_the_phase_vector_sum_of_the_shape(or
         angles = [mode.shape[f"throw{i}"] for i in range(1, 7)]
         expected = phase_vector_sum(order, angles, firing) / 6.0
         pair = next(
-            item
-            for item in result.interferences
-            if item.mode == mode.mode and item.source == f"engine order-{order:g}"
+            item for item in result.interferences if item.mode == mode.mode and item.source == f"engine order-{order:g}"
         )
         assert pair.excitability == pytest.approx(expected, abs=1e-12)
 

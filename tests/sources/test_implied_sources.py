@@ -3,9 +3,9 @@
 from __future__ import annotations
 
 import pytest
-from trains import RPM, refusal, sources_of, train_text
 
 from quillshaft.sources.line import frequencies_over
+from trains import RPM, refusal, sources_of, train_text
 
 CHAIN = {"motor-core": 10.0, "motor-hub": 1.0, "pinion": 0.3, "wheel": 3.0, "impeller": 6.0}
 SHAFTS = {"motor-end": ("motor-core", "motor-hub", 5e6), "wheel-shaft": ("wheel", "impeller", 3e6)}

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import pytest
+
 from trains import refusal, screening_of, sources_of, train_text
 
 STATIONS = {"motor": 10.0, "hub": 1.0, "rotor": 6.0}

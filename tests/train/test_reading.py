@@ -9,9 +9,12 @@ from pathlib import Path
 import pytest
 
 from quillshaft.train.document import parse_document
+from quillshaft.train.machine_rows import MACHINE_ROWS
+from quillshaft.train.messages import keys_of
 from quillshaft.train.problems import TrainFileError
 from quillshaft.train.read import load, train_of
-from quillshaft.train.validate import MOST_PROBLEMS
+from quillshaft.train.rows import CouplingRow, PieceRow
+from quillshaft.train.validate import MOST_PROBLEMS, TOP_LEVEL
 from train_files import MORE, NAME, TEXT, complaint, edited, screened
 
 JARGON = re.compile(r"input should|valid (string|list|dict|int|bool|num)|instance of|after validation|[a-z]Row\b|'")
@@ -50,9 +53,31 @@ def _mistake(block: str) -> Mistake:
 MISTAKES = [_mistake(block) for block in (Path(__file__).parent / "mistakes.txt").read_text("utf-8").split("### ")[1:]]
 
 
+LISTED = re.compile(
+    r"((?:is not a key of this table|there is no table of this name|is not a kind that is known|kind: is missing)"
+    r"[^\n]*?[.?])\s+Allowed: [^\n]*"
+)
+
+
 @pytest.mark.parametrize("mistake", MISTAKES, ids=lambda mistake: mistake.name)
 def test_a_mistake_is_answered_in_full(mistake):
-    assert complaint(mistake.text, *mistake.cases) == mistake.said
+    """Lists of every key, table or kind stand as "(names)" in mistakes.txt: they grow with the program."""
+    assert LISTED.sub(r"\1 Allowed: (names).", complaint(mistake.text, *mistake.cases)) == mistake.said
+
+
+def test_an_unknown_key_is_answered_with_every_key_of_its_row():
+    said = complaint(edited("psi = 1.1", "psii = 1.1"))
+    assert f"Allowed: {', '.join(keys_of(CouplingRow))}." in said
+    assert 'did you mean "psi"?' in said
+    said = complaint(edited("fillet", "filet"))
+    assert f"Allowed: {', '.join(keys_of(PieceRow))}." in said
+
+
+def test_an_unknown_table_or_kind_is_answered_with_all_there_are():
+    assert f"Allowed: {', '.join(TOP_LEVEL)}." in complaint(TEXT + "[zzz]\nx = 1\n")
+    said = complaint(edited('"induction-motor"', '"inductionmotor"'))
+    assert f"Allowed: {' | '.join(MACHINE_ROWS)}." in said
+    assert 'did you mean "induction-motor"?' in said
 
 
 def test_there_are_many_mistakes_and_the_file_without_them_is_sound():

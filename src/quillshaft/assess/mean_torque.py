@@ -44,6 +44,21 @@ def mean_torques(train: Train, graph: TorsionalGraph) -> tuple[LinkDuty, ...]:
     return tuple(_duty(link_index, float(torques[link_index]), graph) for link_index in range(len(graph.links)))
 
 
+def mean_powers(train: Train, graph: TorsionalGraph) -> tuple[tuple[str, float], ...]:
+    """Mean power [W] at each station of [power], the balancing ones worked out; empty where no power is given.
+
+    Raises TrainFileError as `mean_torques` does.
+    """
+    if train.power is None:
+        return ()
+    findings = Findings(train.file, train.cases)
+    load = _station_torque(train, train.power, graph, findings)
+    if load is None or findings.problems:
+        raise TrainFileError(tuple(findings.problems))
+    rated = train.operation.rated_rad_s
+    return tuple((name, float(load[graph.number(name)]) * rated) for name in train.power.stations_w)
+
+
 def _duty(index: int, referred_nm: float, graph: TorsionalGraph) -> LinkDuty:
     link = graph.links[index]
     if np.isnan(referred_nm):
@@ -60,7 +75,8 @@ def _station_torque(train: Train, power: Power, graph: TorsionalGraph, findings:
     for name, watts in power.stations_w.items():
         station = graph.number(name)
         if graph.speed_ratio[station] == 0:
-            findings.add(("power", name), "this station does not turn, so it takes no power")
+            allowed = "a member held still carries its torque by a tie"
+            findings.add(("power", name), "this station does not turn, so it takes no power", None, allowed)
         elif watts is None:
             balance.append(station)
         else:

@@ -7,7 +7,7 @@ from collections.abc import Iterator
 
 from quillshaft.assess.results import Flag, LinkDuty
 from quillshaft.graph.torsional import TorsionalGraph
-from quillshaft.train.model import Coupling, GearMesh, Station, Train
+from quillshaft.train.model import Coupling, Epicyclic, GearMesh, Station, Train
 
 RPM = 30.0 / math.pi
 STIFFNESS_OVER_TORQUE = {
@@ -31,6 +31,8 @@ def plausibility_flags(train: Train, graph: TorsionalGraph, duties: tuple[LinkDu
         *_coupling_flags(train),
         *_gear_flags(train),
         *_duty_flags(train, graph, duties),
+        *_power_flags(train),
+        *_inertia_flags(train, graph),
         *_operation_flags(train),
     )
 
@@ -47,7 +49,7 @@ def _disc_flags(stations: tuple[Station, ...]) -> Iterator[Flag]:
             yield Flag(where, f"{text}: a GD² value given as inertia would be 4 ×")
         elif share > 2.0:
             yield Flag(where, f"{text}: more than all its mass at the rim")
-        elif share < 0.2:
+        elif share < 0.3:
             yield Flag(where, f"{text}: a quarter would be GD² divided by four twice; ask what the sheet means")
 
 
@@ -127,8 +129,19 @@ def _coupling_flags(train: Train) -> Iterator[Flag]:
             yield Flag(where, "rubber: is this the dynamic stiffness, at what temperature and at what mean torque?")
 
 
+def _stage_flags(gear: Epicyclic) -> Iterator[Flag]:
+    """Planets that cannot be spaced evenly, or that would touch."""
+    where, planet = f"gears.{gear.name}", (gear.ring_teeth - gear.sun_teeth) / 2.0
+    if (gear.sun_teeth + gear.ring_teeth) % gear.planets:
+        yield Flag(where, f"{gear.planets} planets cannot be spaced evenly: sun + ring teeth are not a multiple")
+    if (gear.sun_teeth + planet) * math.sin(math.pi / gear.planets) <= planet + 2.0:
+        yield Flag(where, f"{gear.planets} planets of about {planet:.0f} teeth would touch each other")
+
+
 def _gear_flags(train: Train) -> Iterator[Flag]:
     for gear in train.gears:
+        if isinstance(gear, Epicyclic):
+            yield from _stage_flags(gear)
         if not isinstance(gear, GearMesh) or gear.mesh_n_m is None or gear.geometry is None:
             continue
         if gear.geometry.face_m:
@@ -156,8 +169,29 @@ def _duty_flags(train: Train, graph: TorsionalGraph, duties: tuple[LinkDuty, ...
             yield Flag(f"couplings.{duty.link}", text)
 
 
+def _power_flags(train: Train) -> Iterator[Flag]:
+    bare = {station.name for station in train.stations if station.inertia_kgm2 == 0}
+    for name in train.power.stations_w if train.power else ():
+        if name in bare:
+            yield Flag(f"stations.{name}", "it drives or absorbs power and has no inertia")
+
+
+def _inertia_flags(train: Train, graph: TorsionalGraph) -> Iterator[Flag]:
+    """A shaft heavy against its ends is poorly held by two lumps."""
+    for shaft in train.shafts:
+        own = sum(part.inertia_kgm2 for part in graph.parts if part.element == f"shafts.{shaft.name}")
+        ends = [graph.inertia_kgm2[graph.number(name)] for name in shaft.between]
+        if own > 0.3 * min(ends) and own > 0.1 * sum(ends):
+            text = f"its own inertia is {own / sum(ends):.0%} of that at its ends: two lumps are coarse, add a station"
+            yield Flag(f"shafts.{shaft.name}", text)
+
+
 def _operation_flags(train: Train) -> Iterator[Flag]:
     operation = train.operation
+    rated, ranges = operation.rated_rad_s, operation.ranges_rad_s
+    if not any(low * 0.9999 <= rated <= high * 1.0001 for low, high in ranges):
+        text = f"the rated speed of {rated * RPM:.0f} rpm lies outside the running range: is it judged as meant?"
+        yield Flag("operation.rated", text)
     engine = any(machine.kind == "reciprocating-engine" for machine in train.machines)
     if engine and operation.idle_rad_s is None:
         yield Flag(

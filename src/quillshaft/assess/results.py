@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Literal
 
+from quillshaft.graph.states import Temperature
 from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.solve.modes import Modes
 from quillshaft.sources.line import Source
@@ -13,6 +14,13 @@ from quillshaft.train.model import Assumed, Dismissal, Train
 Verdict = Literal["clear", "barred", "close", "crossing"]
 SEVERITY: dict[Verdict, int] = {"clear": 0, "barred": 1, "close": 2, "crossing": 3}
 """How bad a verdict is: the train's verdict is that of its worst pair."""
+
+
+EQUAL = 1e-9
+"""Margins that differ by less are equal."""
+
+NEAR_NODE = 0.05
+"""Excitability below which a source acts near a node, or its shares cancel."""
 
 
 def graver(first: Verdict, second: Verdict) -> Verdict:
@@ -49,6 +57,8 @@ class ModeResult:
                       meshes leaves the split open
     bounds_hz         lowest and highest frequency over all tolerances
     damping_ratio     half the loss factors weighted by strain energy, low damping
+    frequency_along   (rpm, nominal, low, high) rows [rpm, Hz] where it follows speed; else None, and the other
+                      numbers hold at every speed (with it they are those at rated speed)
     cluster           numbers of the modes that share this frequency, itself included
     """
 
@@ -67,6 +77,7 @@ class ModeResult:
     proof: Proof
     residual: float
     cluster: tuple[int, ...]
+    frequency_along: tuple[tuple[float, float, float, float], ...] | None = None
 
 
 @dataclass(frozen=True)
@@ -78,6 +89,9 @@ class Interference:
     judged_at_rpm         speed of `speed-at` at which the margin is smallest
     excitability          nominal; worst_excitability the largest of nominal and both corners; None where a
                           rigid loop leaves the torque at the source open
+    free_margin           where they meet only inside a barred range: the margin over the speeds that stay free,
+                          nominal, and over the tolerances (free_worst_margin); else None
+    bar_needed_rpm        where that is too small: the barred range that would give the required separation
     """
 
     source: str
@@ -94,6 +108,29 @@ class Interference:
     verdict: Verdict
     worst_verdict: Verdict
     dismissed: Dismissal | None
+    free_margin: float | None = None
+    free_worst_margin: float | None = None
+    bar_needed_rpm: tuple[float, float] | None = None
+
+    @property
+    def bar_too_narrow(self) -> bool:
+        """True where a barred range keeps them apart, but not by the required separation at its edges."""
+        if self.free_margin is None or self.free_worst_margin is None:
+            return False
+        short = abs(self.free_margin) < self.required - EQUAL
+        return short or abs(self.free_worst_margin) < self.worst_required - EQUAL
+
+
+def _badness(pair: Interference) -> tuple[bool, int, int, bool, float]:
+    """Sorting key, the worst first: counted, gravest verdict, nominal verdict, excited, least margin to spare."""
+    excited = pair.worst_excitability is None or pair.worst_excitability >= NEAR_NODE
+    return (
+        pair.dismissed is not None,
+        -SEVERITY[graver(pair.verdict, pair.worst_verdict)] - 2 * pair.bar_too_narrow,
+        -SEVERITY[pair.verdict],
+        not excited,
+        min(abs(pair.margin) - pair.required, abs(pair.worst_margin) - pair.worst_required),
+    )
 
 
 @dataclass(frozen=True)
@@ -136,9 +173,22 @@ class Flag:
 
 
 @dataclass(frozen=True)
+class CaseResult:
+    """One case of the file screened beside the base: its result, or why it cannot be."""
+
+    name: str
+    screening: Screening | None
+    problem: str | None = None
+
+
+@dataclass(frozen=True)
 class Screening:
     """The whole result of screening a train.
 
+    temperature       of the couplings: cold, reference (30 °C), hot, or one temperature [K] for all
+    station_power_w   mean power at rated speed [W] per station of [power], the balancing ones worked out
+    case_names        cases of the file that are not laid over it here
+    cases             what screening each of them gave; None where they were not screened
     judged_modes      numbers of the modes up to the highest source, margin included
     interferences     every judged pair of continuous source and mode, in order of mode and source
     verdict           of the worst pair not dismissed, nominal; worst_verdict over the tolerances
@@ -159,6 +209,20 @@ class Screening:
     self_check: SelfCheck
     verdict: Verdict
     worst_verdict: Verdict
+    temperature: Temperature = "reference"
+    station_power_w: tuple[tuple[str, float], ...] = ()
+    case_names: tuple[str, ...] = ()
+    cases: tuple[CaseResult, ...] | None = None
+
+    @property
+    def fails(self) -> bool:
+        """True where the train cannot be passed, not even with a restriction."""
+        return self.gravest_verdict in ("close", "crossing") or bool(self.narrow_bars)
+
+    @property
+    def narrow_bars(self) -> tuple[Interference, ...]:
+        """Pairs that a barred range keeps apart by less than the required separation at its edges."""
+        return tuple(pair for pair in self.interferences if pair.bar_too_narrow and pair.dismissed is None)
 
     @property
     def gravest_verdict(self) -> Verdict:
@@ -167,28 +231,13 @@ class Screening:
 
     def not_clear(self) -> tuple[Interference, ...]:
         """Pairs not clear, nominal or over the tolerances, the worst first; dismissed ones after the others."""
-
-        def badness(pair: Interference) -> tuple[bool, int, int, float, float]:
-            return (
-                pair.dismissed is not None,
-                -SEVERITY[graver(pair.verdict, pair.worst_verdict)],
-                -SEVERITY[pair.verdict],
-                abs(pair.margin),
-                -(pair.worst_excitability if pair.worst_excitability is not None else 1.0),
-            )
-
         bad = [pair for pair in self.interferences if pair.worst_verdict != "clear" or pair.verdict != "clear"]
-        return tuple(sorted(bad, key=badness))
+        return tuple(sorted(bad, key=_badness))
 
     def governing(self) -> Interference | None:
-        """The pair not dismissed that decides the verdict: the gravest, then the least margin to spare."""
+        """The pair not dismissed that decides the verdict, the first of `not_clear` where there is one."""
         counted = [pair for pair in self.interferences if pair.dismissed is None]
-
-        def room(pair: Interference) -> tuple[int, float]:
-            spare = min(abs(pair.margin) - pair.required, abs(pair.worst_margin) - pair.worst_required)
-            return -SEVERITY[graver(pair.verdict, pair.worst_verdict)], spare
-
-        return min(counted, key=room, default=None)
+        return min(counted, key=_badness, default=None)
 
     def mode(self, number: int) -> ModeResult:
         """A mode by its number. Raises IndexError where there is none."""

@@ -3,15 +3,18 @@
 from __future__ import annotations
 
 import math
+from dataclasses import dataclass, replace
 
 import numpy as np
 
+from quillshaft.assess.along import Track, follow, settle
 from quillshaft.assess.excitability import excitabilities
-from quillshaft.assess.mean_torque import mean_torques
+from quillshaft.assess.mean_torque import mean_powers, mean_torques
 from quillshaft.assess.mode_results import mode_results
 from quillshaft.assess.plausibility import plausibility_flags
 from quillshaft.assess.results import (
     SEVERITY,
+    CaseResult,
     Flag,
     Interference,
     ModeResult,
@@ -22,34 +25,45 @@ from quillshaft.assess.results import (
 )
 from quillshaft.assess.separation import (
     JudgedRange,
+    Separation,
+    bar_needed,
     critical_speeds,
     highest_frequency,
     judged_ranges,
     required_separation,
     separate,
 )
+from quillshaft.assess.separation_along import critical_speeds_along, separate_along
 from quillshaft.graph.build import build_graph
 from quillshaft.graph.network import Floats
+from quillshaft.graph.states import Temperature, follows_torque
 from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.solve.modes import Modes, natural_modes
 from quillshaft.solve.plan import plan_elimination
 from quillshaft.sources.collect import collect_sources
 from quillshaft.sources.line import Source
-from quillshaft.train.model import Dismissal, Train
+from quillshaft.train.model import Dismissal, Operation, Train
+from quillshaft.train.overlay import case_names
 from quillshaft.train.problems import TrainFileError, did_you_mean
+from quillshaft.train.read import train_of
 from quillshaft.train.validate import Findings
 
 RPM = 30.0 / math.pi
 MATCH = 0.03
 
 
-def screen(train: Train) -> Screening:
-    """Screen a train: natural frequencies, margins, critical speeds and verdicts.
+def screen_alone(train: Train, temperature: Temperature = "reference") -> Screening:
+    """Screen a train without the cases of its file: frequencies, margins, critical speeds and verdicts.
+
+    Couplings stand at the given temperature: cold, reference (30 °C), hot, or one temperature [K] for all. Where
+    a coupling's stiffness follows mean torque, every mode is judged along the speed.
 
     Raises TrainFileError when the train cannot turn, is not connected, its power does not close, or a
     machine, a criterion or a dismissal names what does not exist.
     """
-    graph = build_graph(train)
+    graph = build_graph(train, temperature)
+    settled = settle(train, graph, temperature) if follows_torque(train) else None
+    graph = graph if settled is None else settled.graph
     sources = collect_sources(train, graph)
     _check_dismissals(train, (*sources.active, *(source for source, _ in sources.off)))
     plan = plan_elimination(graph.network)
@@ -58,9 +72,11 @@ def screen(train: Train) -> Screening:
     )
     two_pi = 2.0 * math.pi
     modes = mode_results(graph, nominal, soft.omega_rad_s / two_pi, stiff.omega_rad_s / two_pi, train.zeta[0])
-    duties = mean_torques(train, graph)
+    track = None if settled is None else follow(train, settled, temperature)
+    modes = modes if track is None else tuple(_with_track(mode, track) for mode in modes)
+    duties = mean_torques(train, graph) if settled is None else settled.duties
     excitable = _excitability(graph, nominal, soft, stiff, sources.active)
-    judged, pairs, stale = _judge(train, modes, sources.active, excitable)
+    judged, pairs, stale = _judge(train, modes, sources.active, excitable, track)
     counted = [pair for pair in pairs if pair.dismissed is None]
     return Screening(
         train=train,
@@ -78,7 +94,43 @@ def screen(train: Train) -> Screening:
         self_check=_self_check(nominal, modes),
         verdict=_worst([pair.verdict for pair in counted]),
         worst_verdict=_worst([pair.worst_verdict for pair in counted]),
+        temperature=temperature,
+        station_power_w=mean_powers(train, graph),
+        case_names=() if train.cases else case_names(train.file.data),
     )
+
+
+def screen(train: Train, temperature: Temperature = "reference") -> Screening:
+    """The train screened, and each case of its file beside it. Raises TrainFileError where the train cannot be."""
+    base = screen_alone(train, temperature)
+    results = []
+    for name in base.case_names:
+        try:
+            results.append(CaseResult(name, screen_alone(train_of(train.file, (name,)), temperature)))
+        except TrainFileError as error:
+            results.append(CaseResult(name, None, str(error)))
+    return replace(base, cases=tuple(results))
+
+
+def screen_temperatures(train: Train) -> dict[str, Screening]:
+    """The train screened with its couplings cold, at 30 °C and hot. Raises TrainFileError as `screen` does."""
+    return {
+        "cold": screen_alone(train, "cold"),
+        "30 °C": screen_alone(train),
+        "hot": screen_alone(train, "hot"),
+    }
+
+
+def _with_track(mode: ModeResult, track: Track) -> ModeResult:
+    column = mode.mode - 1
+    rows = zip(
+        (track.speed_rad_s * RPM).tolist(),
+        track.nominal_hz[:, column].tolist(),
+        track.low_hz[:, column].tolist(),
+        track.high_hz[:, column].tolist(),
+        strict=True,
+    )
+    return replace(mode, frequency_along=tuple(rows))
 
 
 def _worst(verdicts: list[Verdict]) -> Verdict:
@@ -110,53 +162,133 @@ def _excitability(
 
 
 def _judge(
-    train: Train, modes: tuple[ModeResult, ...], sources: tuple[Source, ...], excitable: tuple[Floats, Floats]
+    train: Train,
+    modes: tuple[ModeResult, ...],
+    sources: tuple[Source, ...],
+    excitable: tuple[Floats, Floats],
+    track: Track | None,
 ) -> tuple[tuple[int, ...], tuple[Interference, ...], tuple[StaleDismissal, ...]]:
     top = highest_frequency(sources, train.operation, train.criteria)
-    judged = tuple(mode.mode for mode in modes if mode.bounds_hz[0] <= top)
+    judged = tuple(mode.mode for mode in modes if _lowest(mode, train.operation) <= top)
     ranges = judged_ranges(train.operation)
     applied, stale = _sort_dismissals(train, modes, sources)
     pairs = tuple(
-        _pair(train, mode, source, ranges, (own[row, mode.mode - 1], worst[row, mode.mode - 1]), applied)
+        _pair(
+            train,
+            mode,
+            source,
+            _seen(mode, source, train, ranges, track),
+            (own[row, i - 1], worst[row, i - 1]),
+            applied,
+        )
         for own, worst in (excitable,)
-        for mode in modes[: len(judged)]
+        for i, mode in ((mode.mode, mode) for mode in modes if mode.mode in judged)
         for row, source in enumerate(sources)
         if source.when == "continuous"
     )
     return judged, pairs, stale
 
 
+def _lowest(mode: ModeResult, operation: Operation) -> float:
+    """Lowest frequency [Hz] of a mode over the tolerances and, where it follows speed, over the judged range."""
+    if mode.frequency_along is None:
+        return mode.bounds_hz[0]
+    low, high = operation.ranges_rad_s[0][0] * RPM, operation.ranges_rad_s[-1][1] * RPM
+    inside = [row[2] for row in mode.frequency_along if low * (1 - 1e-9) <= row[0] <= high * (1 + 1e-9)]
+    return min(inside, default=mode.bounds_hz[0])
+
+
+@dataclass(frozen=True)
+class _Seen:
+    """A pair as judged: nominal and over the tolerances, over the free stretches alone, and where they meet."""
+
+    nominal: Separation
+    worst: Separation
+    free: tuple[Separation, Separation] | None
+    speeds_rpm: tuple[float, ...]
+    chosen_rpm: float | None
+
+
+def _seen(
+    mode: ModeResult, source: Source, train: Train, ranges: tuple[JudgedRange, ...], track: Track | None
+) -> _Seen:
+    on = train.criteria.margin_on
+    required = required_separation(source, train.criteria.separation)
+    worst_required = required_separation(source, train.criteria.worst_case)
+
+    def both(stretches: tuple[JudgedRange, ...]) -> tuple[Separation, Separation]:
+        if track is None:
+            own = (mode.frequency_hz, mode.frequency_hz)
+            nominal = separate(source, own, stretches, required, on)
+            return nominal, separate(source, mode.bounds_hz, stretches, worst_required, on)
+        column = mode.mode - 1
+        middle, low, high = (values[:, column] for values in (track.nominal_hz, track.low_hz, track.high_hz))
+        nominal = separate_along(source, track, (middle, middle), stretches, required, on)
+        return nominal, separate_along(source, track, (low, high), stretches, worst_required, on)
+
+    nominal, worst = both(ranges)
+    barred = "barred" in (nominal.verdict, worst.verdict)
+    free = both(tuple(stretch for stretch in ranges if not stretch.barred)) if barred else None
+    if track is None:
+        speeds, chosen = critical_speeds(source, mode.frequency_hz, train.operation)
+    else:
+        speeds, chosen = critical_speeds_along(source, track, mode.mode - 1, train.operation)
+    return _Seen(nominal, worst, free, speeds, chosen)
+
+
+def _bar(mode: ModeResult, source: Source, train: Train, seen: _Seen) -> tuple[float, float] | None:
+    """The barred range [rpm] that nominal and worst-case requirements together ask for."""
+    if mode.frequency_along is not None:
+        return None
+    on, inside = train.criteria.margin_on, seen.nominal.at_rad_s
+    required = required_separation(source, train.criteria.separation)
+    worst_required = required_separation(source, train.criteria.worst_case)
+    first = bar_needed(source, (mode.frequency_hz, mode.frequency_hz), required, on, inside)
+    second = bar_needed(source, mode.bounds_hz, worst_required, on, inside)
+    if first is None or second is None:
+        return None
+    return min(first[0], second[0]), max(first[1], second[1])
+
+
+def _where(seen: _Seen, operation: Operation) -> float:
+    """Speed [rpm] of the smallest margin; where they meet in range, the critical speed."""
+    meets = seen.nominal.margin == 0.0 and seen.chosen_rpm is not None
+    if meets and any(low <= (seen.chosen_rpm or 0.0) / RPM <= high for low, high in operation.ranges_rad_s):
+        return seen.chosen_rpm or 0.0
+    return seen.nominal.at_rad_s * RPM
+
+
 def _pair(
     train: Train,
     mode: ModeResult,
     source: Source,
-    ranges: tuple[JudgedRange, ...],
+    seen: _Seen,
     excitable: tuple[float, float],
     applied: tuple[Dismissal, ...],
 ) -> Interference:
-    criteria, on = train.criteria, train.criteria.margin_on
+    criteria = train.criteria
     required = required_separation(source, criteria.separation)
     worst_required = required_separation(source, criteria.worst_case)
-    nominal = separate(source, (mode.frequency_hz, mode.frequency_hz), ranges, required, on)
-    worst = separate(source, mode.bounds_hz, ranges, worst_required, on)
-    speeds, chosen = critical_speeds(source, mode.frequency_hz, train.operation)
     dismissed = next((item for item in applied if item.mode == mode.mode and source.answers_to(item.source)), None)
     own, largest = (None if math.isnan(value) else float(value) for value in excitable)
     return Interference(
         source.name,
         mode.mode,
-        chosen,
-        speeds,
-        nominal.margin,
-        worst.margin,
-        nominal.at_rad_s * RPM,
+        seen.chosen_rpm,
+        seen.speeds_rpm,
+        seen.nominal.margin,
+        seen.worst.margin,
+        _where(seen, train.operation),
         required,
         worst_required,
         own,
         largest,
-        nominal.verdict,
-        worst.verdict,
+        seen.nominal.verdict,
+        seen.worst.verdict,
         dismissed,
+        None if seen.free is None else seen.free[0].margin,
+        None if seen.free is None else seen.free[1].margin,
+        None if seen.free is None else _bar(mode, source, train, seen),
     )
 
 

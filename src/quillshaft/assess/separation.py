@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 from dataclasses import dataclass
 
-from quillshaft.assess.results import Verdict
-from quillshaft.sources.line import Source, frequencies_over, meeting_speeds
+from quillshaft.assess.results import EQUAL, Verdict
+from quillshaft.sources.line import Source, frequencies_over, meeting_speeds, slope
 from quillshaft.train.model import Criteria, Operation, Range
 
-EQUAL = 1e-9
 RPM = 30.0 / math.pi
 
 
@@ -91,6 +91,11 @@ def separate(
         meets_barred |= margin == 0.0 and stretch.barred
         if abs(margin) < abs(best.margin):
             best = Separation(margin, _nearest_speed(source, stretch, middle), "clear")
+    return judged(best, meets_free, meets_barred, required)
+
+
+def judged(best: Separation, meets_free: bool, meets_barred: bool, required: float) -> Separation:
+    """The smallest margin with its verdict: where they meet decides, else whether the margin suffices."""
     verdict: Verdict = "clear"
     if meets_free:
         verdict = "crossing"
@@ -131,11 +136,37 @@ def critical_speeds(
     if not speeds:
         return (), None
 
+    return in_rpm(speeds, operation)
+
+
+def in_rpm(speeds_rad_s: Sequence[float], operation: Operation) -> tuple[tuple[float, ...], float]:
+    """Speeds in rpm, and the one in range nearest rated, else nearest the range."""
+
     def outside(speed: float) -> float:
         return min(
             0.0 if low <= speed <= high else min(abs(speed - low), abs(speed - high))
             for low, high in operation.ranges_rad_s
         )
 
-    chosen = min(speeds, key=lambda speed: (outside(speed), abs(speed - operation.rated_rad_s)))
-    return tuple(speed * RPM for speed in speeds), chosen * RPM
+    chosen = min(speeds_rad_s, key=lambda speed: (outside(speed), abs(speed - operation.rated_rad_s)))
+    return tuple(speed * RPM for speed in speeds_rad_s), chosen * RPM
+
+
+def bar_needed(
+    source: Source, natural_hz: Range, required: float, margin_on: str, inside_rad_s: float
+) -> tuple[float, float] | None:
+    """Speeds [rpm] about `inside_rad_s` between which the source is nearer than required; None if it is constant.
+
+    The nearest frequencies allowed: f (1 − m) and f (1 + m) of the source where the margin is on the natural
+    frequency, f / (1 + m) and f / (1 − m) where it is on the source.
+    """
+    rise = slope(source)
+    if rise == 0.0:
+        return None
+    if margin_on == "excitation":
+        wanted = (natural_hz[0] / (1.0 + required), natural_hz[1] / (1.0 - required))
+    else:
+        wanted = (natural_hz[0] * (1.0 - required), natural_hz[1] * (1.0 + required))
+    sign = math.copysign(1.0, rise * inside_rad_s + source.frequency_hz)
+    speeds = sorted((sign * frequency - source.frequency_hz) / rise for frequency in wanted)
+    return max(speeds[0], 0.0) * RPM, speeds[1] * RPM

@@ -7,11 +7,18 @@ import io
 import os
 import sys
 from pathlib import Path
-from typing import Annotated
+from typing import TYPE_CHECKING, Annotated
 
 import typer
 
+from quillshaft.cli.compare_command import compare
+from quillshaft.cli.drift_command import drift
 from quillshaft.cli.output import check_folder, check_target, console, refuse, write_many, write_whole
+from quillshaft.cli.tolerance_command import tolerance
+from quillshaft.cli.windows_command import windows
+
+if TYPE_CHECKING:
+    from quillshaft.study.levers import WaysOut
 
 gc.set_threshold(100_000, 50, 50)  # start-up makes many objects that live to the end
 
@@ -64,7 +71,8 @@ def new(
     from quillshaft.train.starters import KINDS, schema_text, starter_text
 
     if kind not in KINDS:
-        refuse(f"--kind {kind}: there is no such kind{did_you_mean(kind, KINDS)}. Allowed: {' | '.join(KINDS)}")
+        hint = did_you_mean(kind, KINDS) or "."
+        refuse(f"--kind {kind}: there is no such kind{hint} Allowed: {' | '.join(KINDS)}.")
     if schema is not None and os.path.realpath(schema) == os.path.realpath(out):
         refuse(f"{schema}: the train file and its schema need two files")
     for target in (out, schema):
@@ -79,7 +87,11 @@ def new(
 
 
 @app.command()
-def check(train: TrainPath, case: Cases = None) -> None:
+def check(
+    train: TrainPath,
+    case: Cases = None,
+    questions: Annotated[bool, typer.Option(help="Show only what to ask each supplier, as a numbered list.")] = False,
+) -> None:
     """Show what the file says: the equivalent system, mean torques, sources, what was assumed, what is odd."""
     from quillshaft.cli.show import show_check
     from quillshaft.cli.work import check_all_cases, screened
@@ -87,7 +99,12 @@ def check(train: TrainPath, case: Cases = None) -> None:
     screening = screened(train, case)
     if not case:
         check_all_cases(train)
-    show_check(screening, console())
+    if questions:
+        from quillshaft.cli.more_output import show_questions
+
+        show_questions(screening, console())
+    else:
+        show_check(screening, console())
 
 
 @app.command()
@@ -97,6 +114,7 @@ def screen(
     json: JsonPath = None,
     charts: Annotated[Path | None, typer.Option(metavar="DIR", help="Write the charts as PDF files.")] = None,
     every: Annotated[bool, typer.Option("--all", help="Show every pair of mode and source.")] = False,
+    levers: Annotated[bool, typer.Option(help="Show the cheapest ways out of each interference.")] = False,
     strict: Annotated[bool, typer.Option(help="Exit with 3 when the worst case is not clear.")] = False,
 ) -> None:
     """Natural frequencies, margins, critical speeds and verdicts."""
@@ -109,10 +127,19 @@ def screen(
         check_folder(charts)
     screening = screened(train, case)
     written = [] if charts is None else write_many(charts, chart_makers(screening))
-    if json is not None:
+    found: tuple[WaysOut, ...] = ()
+    if levers:
+        from quillshaft.cli.more_output import find_levers, put_json_with_levers, show_levers
+
+        found = find_levers(screening)
+    if json is not None and levers:
+        put_json_with_levers(screening, found, json)
+    elif json is not None:
         put_json(screening, json)
     if json != "-":
         show_screening(screening, console(), every)
+    if json != "-" and levers:
+        show_levers(screening, found, console())
     for path in written:
         console(quiet=json == "-").print(f"Wrote {path}")
     if strict and screening.worst_verdict != "clear":
@@ -131,26 +158,35 @@ def report(
     strict: Annotated[bool, typer.Option(help="Exit with 3 when the worst case is not clear.")] = False,
 ) -> None:
     """Write the report as PDF."""
-    from quillshaft.cli.work import put_json, report_bytes, report_path, screened
+    from quillshaft.cli.work import check_pdf, put_json, report_bytes, report_path, screened
 
     if json not in (None, "-"):
         check_target(Path(json or ""), train)
     if out is not None:
         check_target(out, train)
+        check_pdf(out)
     screening = screened(train, case)
     target = out or report_path(screening)
     check_target(target, train)
     write_whole(target, report_bytes(screening))
     if json is not None:
         put_json(screening, json)
-    from quillshaft.present.words import verdict_sentence
+    from quillshaft.present.words import case_lines, verdict_sentence
 
     said = console(quiet=json == "-")
     said.print(f"Nominal: {verdict_sentence(screening, worst=False)}")
     said.print(f"Over the tolerances: {verdict_sentence(screening, worst=True)}")
+    for line in case_lines(screening):
+        said.print(line)
     said.print(f"Wrote {target}")
     if strict and screening.worst_verdict != "clear":
         raise typer.Exit(3)
+
+
+app.command()(compare)
+app.command()(windows)
+app.command()(tolerance)
+app.command()(drift)
 
 
 def run() -> None:

@@ -38,6 +38,12 @@ def check_target(path: Path, source: Path | None = None) -> None:
         refuse(f"{path}: this is a folder; name a file")
     if not os.path.isdir(folder):
         refuse(f"{path}: there is no folder {path.parent}")
+    try:
+        os.lstat(path)
+    except FileNotFoundError:
+        pass
+    except OSError as error:
+        refuse(f"{path}: cannot be written: {error.strerror}")
     if os.path.exists(path) and not os.access(path, os.W_OK):
         refuse(f"{path}: exists and must not be written to")
     if not _is_stream(path) and not os.access(folder, os.W_OK):

@@ -6,7 +6,9 @@ from rich.console import Console
 
 from quillshaft.assess.results import Screening
 from quillshaft.present import tables
-from quillshaft.present.words import range_words, verdict_sentence
+from quillshaft.present.words import case_lines, counted, range_words, unjudged_lines, verdict_sentence
+
+MOST_SHOWN = 12
 
 
 def _head(screening: Screening, out: Console) -> None:
@@ -22,11 +24,18 @@ def show_screening(screening: Screening, out: Console, every: bool) -> None:
     _head(screening, out)
     out.print(f"Nominal:             {verdict_sentence(screening, worst=False)}")
     out.print(f"Over the tolerances: {verdict_sentence(screening, worst=True)}")
+    for line in case_lines(screening):
+        out.print(line)
+    for line in unjudged_lines(screening):
+        out.print(line)
     out.print()
     attention = tables.attention_lines(screening, dismissed=False)
-    out.print("Not clear, worst first" if attention else "Every pair that counts is clear.", style="bold")
-    for line in attention:
+    quiet = "Every pair that counts is clear." if screening.interferences else "No pair of mode and source is judged."
+    out.print("Not clear, worst first" if attention else quiet, style="bold")
+    for line in attention if every else attention[:MOST_SHOWN]:
         out.print(line)
+    if not every and len(attention) > MOST_SHOWN:
+        out.print(f"… and {len(attention) - MOST_SHOWN} more of the same: --all shows them.")
     accepted = tables.attention_lines(screening, dismissed=True)
     if accepted:
         out.print("Not clear, but dismissed by name", style="bold")
@@ -38,7 +47,8 @@ def show_screening(screening: Screening, out: Console, every: bool) -> None:
     out.print(tables.modes_table(screening))
     beyond = len(screening.modes) - len(screening.judged_modes)
     if beyond:
-        out.print(f"{beyond} modes above the highest source are listed and not judged.")
+        verb = "is" if beyond == 1 else "are"
+        out.print(f"{counted(beyond, 'mode')} above the highest source {verb} listed and not judged.")
     if every:
         out.print()
         out.print(tables.matrix_table(screening))
@@ -46,8 +56,8 @@ def show_screening(screening: Screening, out: Console, every: bool) -> None:
     check = screening.self_check
     proven = "all proven by counting" if check.all_proven else "NOT all proven"
     out.print(
-        f"{check.modes} modes, {proven}; {len(screening.assumed)} values assumed, "
-        f"{len(screening.flags)} questions about the data (see `quillshaft check`)."
+        f"{counted(check.modes, 'mode')}, {proven}; {counted(len(screening.assumed), 'value')} assumed, "
+        f"{counted(len(screening.flags), 'question')} about the data (see `quillshaft check`)."
     )
     if not every:
         out.print("The full matrix of pairs: --all.")

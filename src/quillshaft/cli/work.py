@@ -25,7 +25,8 @@ if TYPE_CHECKING:
 def screened(path: Path, cases: list[str] | None) -> Screening:
     """Load and screen; leaves with exit code 2 and every problem on standard error when the file is bad."""
     try:
-        return screen(load(path, tuple(cases or ())))
+        train = load(path, tuple(cases or ()))
+        return screen(train)
     except TrainFileError as error:
         refuse(str(error))
 
@@ -85,6 +86,12 @@ def chart_makers(screening: Screening) -> dict[str, Callable[[], bytes]]:
         return make
 
     return {name: maker(name, figure) for name, figure in chart_files(screening).items()}
+
+
+def check_pdf(path: Path) -> None:
+    """Refuse a report under a name that does not say PDF."""
+    if path.suffix.lower() != ".pdf":
+        refuse(f"{path}: the report is a PDF; name it something.pdf")
 
 
 def report_path(screening: Screening) -> Path:

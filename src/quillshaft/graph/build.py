@@ -12,14 +12,18 @@ from quillshaft.graph.links import LinkDraft, draft_links
 from quillshaft.graph.motions import held_by_nothing, independent_rows, rigid_motion_count
 from quillshaft.graph.network import Floats, Ints, Network, TorqueLink
 from quillshaft.graph.speeds import speed_ratios
+from quillshaft.graph.states import Temperature
 from quillshaft.graph.torsional import GraphLink, InertiaPart, RigidMeshes, TorsionalGraph
 from quillshaft.train.model import Train
 from quillshaft.train.problems import TrainFileError
 from quillshaft.train.validate import Findings
 
 
-def build_graph(train: Train) -> TorsionalGraph:
+def build_graph(train: Train, temperature: Temperature = "reference") -> TorsionalGraph:
     """The torsional graph of a train, referred to the speed of `speed-at`.
+
+    Couplings stand at the given temperature; those whose stiffness follows torque at zero torque (see
+    `graph.states`).
 
     Raises TrainFileError when the train is not connected, cannot turn (a loop whose ratios disagree), leaves
     a speed undetermined, or has a part without inertia and without stiffness to hold it.
@@ -28,17 +32,19 @@ def build_graph(train: Train) -> TorsionalGraph:
     ratios = speed_ratios(train, findings)
     if ratios is None:
         raise TrainFileError(tuple(findings.problems))
-    graph = _assemble(train, ratios, findings)
+    graph = _assemble(train, ratios, findings, temperature)
     if findings.problems:
         raise TrainFileError(tuple(findings.problems))
     return graph
 
 
-def _assemble(train: Train, ratios: tuple[Fraction, ...], findings: Findings) -> TorsionalGraph:
+def _assemble(
+    train: Train, ratios: tuple[Fraction, ...], findings: Findings, temperature: Temperature
+) -> TorsionalGraph:
     names = tuple(station.name for station in train.stations)
     scale = np.array([abs(float(ratio)) or 1.0 for ratio in ratios])
     parts = _inertia_parts(train, names, scale, ratios, findings)
-    drafts = draft_links(train, names, ratios)
+    drafts = draft_links(train, names, ratios, temperature)
     node = _merge(len(names), drafts)
     coefficients = [draft.node_coefficients(node, ratios) if draft.slot == "torque" else {} for draft in drafts]
     rigid_rows = [i for i, draft in enumerate(drafts) if draft.slot == "torque" and draft.stiffness is None]

@@ -7,8 +7,10 @@ from fractions import Fraction
 from typing import Literal
 
 from quillshaft.elements import shaft as shaft_formulas
+from quillshaft.elements.coupling import coupling_loss_factor, coupling_stiffness
 from quillshaft.elements.gear import mesh_stiffness_at_first, turning_members
 from quillshaft.graph.network import Ints
+from quillshaft.graph.states import Temperature, coupling_temperature
 from quillshaft.graph.torsional import Slot
 from quillshaft.train.model import Coupling, Epicyclic, GearMesh, Shaft, Tolerance, Train
 
@@ -50,11 +52,13 @@ class LinkDraft:
         return {number: value for number, value in out.items() if value}
 
 
-def draft_links(train: Train, names: tuple[str, ...], ratios: tuple[Fraction, ...]) -> list[LinkDraft]:
+def draft_links(
+    train: Train, names: tuple[str, ...], ratios: tuple[Fraction, ...], temperature: Temperature
+) -> list[LinkDraft]:
     """Drafts of all links in file order: shafts, couplings, gears, ties."""
     number = {name: index for index, name in enumerate(names)}
     drafts = [_shaft(shaft, number, ratios) for shaft in train.shafts]
-    drafts += [_coupling(coupling, number, ratios) for coupling in train.couplings]
+    drafts += [_coupling(coupling, number, ratios, temperature) for coupling in train.couplings]
     drafts += [
         _mesh(gear, number, ratios) if isinstance(gear, GearMesh) else _stage(gear, number, ratios)
         for gear in train.gears
@@ -77,7 +81,7 @@ def _unreferred(
 
 
 def shaft_stiffness(shaft: Shaft) -> float:
-    """Stiffness [N·m/rad] of a shaft however it is spelled."""
+    """Stiffness [N·m/rad] of a shaft however it is spelled. Raises ValueError for geometry without a material."""
     if shaft.stiffness_nm_rad is not None:
         return shaft.stiffness_nm_rad
     if shaft.material is None:
@@ -93,11 +97,15 @@ def _shaft(shaft: Shaft, number: dict[str, int], ratios: tuple[Fraction, ...]) -
     return LinkDraft(shaft.name, "shaft", ends, stiffness, shaft.tolerance, shaft.loss_factor, "spring")
 
 
-def _coupling(coupling: Coupling, number: dict[str, int], ratios: tuple[Fraction, ...]) -> LinkDraft:
-    given, first = coupling.stiffness_nm_rad, coupling.between[0]
+def _coupling(
+    coupling: Coupling, number: dict[str, int], ratios: tuple[Fraction, ...], temperature: Temperature
+) -> LinkDraft:
+    kelvin, first = coupling_temperature(coupling, temperature), coupling.between[0]
+    given = coupling_stiffness(coupling, None, kelvin)
     stiffness = _unreferred(given, coupling.referred_to, first, number, ratios)
     ends = (number[first], number[coupling.between[1]])
-    return LinkDraft(coupling.name, "coupling", ends, stiffness, coupling.tolerance, coupling.loss_factor, "spring")
+    loss = coupling_loss_factor(coupling, kelvin)
+    return LinkDraft(coupling.name, "coupling", ends, stiffness, coupling.tolerance, loss, "spring")
 
 
 def _pair_slot(stiffness: float | None, ends: tuple[int, ...], ratios: tuple[Fraction, ...]) -> Slot:

@@ -26,7 +26,7 @@ def _mode(mode: ModeResult) -> dict[str, Any]:
         "strain_energy": mode.strain_energy,
         "kinetic_energy": mode.kinetic_energy,
         "bounds_hz": list(mode.bounds_hz),
-        "frequency_along": None,
+        "frequency_along": None if mode.frequency_along is None else [list(row) for row in mode.frequency_along],
         "nodes": [{"link": node.link, "share": node.share} for node in mode.nodes],
         "cluster": list(mode.cluster),
         "proof": {
@@ -65,6 +65,9 @@ def _interference(pair: Interference) -> dict[str, Any]:
         "worst_required": pair.worst_required,
         "excitability": pair.excitability,
         "worst_excitability": pair.worst_excitability,
+        "free_margin": _finite(pair.free_margin),
+        "free_worst_margin": _finite(pair.free_worst_margin),
+        "bar_needed_rpm": None if pair.bar_needed_rpm is None else list(pair.bar_needed_rpm),
         "verdict": pair.verdict,
         "worst_verdict": pair.worst_verdict,
         "dismissed": None if dismissed is None else {"because": dismissed.because, "by": dismissed.by},
@@ -78,6 +81,7 @@ def screening_data(screening: Screening) -> dict[str, Any]:
         "schema": 1,
         "version": __version__,
         "input_sha256": train.file.sha256,
+        "temperature": screening.temperature,
         "train": {"title": train.title, "tag": train.tag, "cases": list(train.cases)},
         "modes": [_mode(mode) for mode in screening.modes],
         "judged_modes": list(screening.judged_modes),
@@ -97,6 +101,17 @@ def screening_data(screening: Screening) -> dict[str, Any]:
                 "wind_up_rad": duty.wind_up_rad,
             }
             for link, duty in zip(screening.graph.links, screening.duties, strict=True)
+        ],
+        "cases": None
+        if screening.cases is None
+        else [
+            {
+                "case": case.name,
+                "verdict": case.screening.verdict if case.screening else None,
+                "worst_verdict": case.screening.worst_verdict if case.screening else None,
+                "problem": case.problem,
+            }
+            for case in screening.cases
         ],
         "assumed": [
             {"element": item.element, "key": item.key, "value": item.value, "why": item.why}

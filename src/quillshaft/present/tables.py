@@ -7,7 +7,7 @@ from collections.abc import Iterable
 from rich.table import Table
 from rich.text import Text
 
-from quillshaft.assess.results import Screening, graver
+from quillshaft.assess.results import Screening
 from quillshaft.present.rows import (
     link_heads,
     link_rows,
@@ -16,7 +16,7 @@ from quillshaft.present.rows import (
     station_heads,
     station_rows,
 )
-from quillshaft.present.words import VERDICT_WORDS, hertz, mode_words, pair_sentence
+from quillshaft.present.words import attention_sentences, hertz, mode_words
 
 
 def make_table(title: str, columns: str, rows: Iterable[Iterable[str]]) -> Table:
@@ -45,27 +45,24 @@ def modes_table(screening: Screening) -> Table:
         for mode in screening.modes
     )
     return make_table(
-        "Natural frequencies", "Mode>|Hz>|cycles/min>|over tolerances, Hz>|damping>|count|what it does", rows
+        "Natural frequencies", "Mode>|Hz>|cycles/min>|over tolerances, Hz>|damping>|proof|what it does", rows
     )
 
 
 def matrix_table(screening: Screening) -> Table:
     """Every judged pair of source and mode."""
     columns = (
-        "Mode>|Hz>|source|critical speed, rpm>|margin, %>|over tolerances, %>|required, %>|excitability>"
-        "|nominal|over tolerances"
+        "Mode>|Hz>|source|critical speed, rpm>|margin, %>|worst margin, %>|required, %>|excitability>"
+        "|nominal|worst case"
     )
     rows = (pair_row(screening, pair) for pair in screening.interferences)
     return make_table("All pairs of mode and source", columns, rows)
 
 
 def attention_lines(screening: Screening, dismissed: bool) -> list[str]:
-    """What is not clear, worst first, one sentence each: the dismissed ones, or all others."""
-    pairs = [pair for pair in screening.not_clear() if (pair.dismissed is not None) == dismissed]
-    return [
-        f"{index}. [{VERDICT_WORDS[graver(pair.verdict, pair.worst_verdict)]}] {pair_sentence(screening, pair)}"
-        for index, pair in enumerate(pairs, start=1)
-    ]
+    """What is not clear, worst first, one numbered sentence each: the dismissed ones, or all others."""
+    sentences = attention_sentences(screening, dismissed)
+    return [f"{index}. [{verdict}] {text}" for index, (verdict, text) in enumerate(sentences, start=1)]
 
 
 def stations_table(screening: Screening) -> Table:

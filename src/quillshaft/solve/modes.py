@@ -7,7 +7,7 @@ of inertia) proves it bracketed, with none missed.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -72,7 +72,13 @@ def natural_modes(network: Network, plan: Plan | None = None) -> Modes:
     start = _first_modes(network)
     if start is None:
         return _no_modes(network)
-    omega, solution, cluster = _refined(network, plan, *start)
+    modes = _modes(network, plan, *start)
+    return modes if modes.proven.all() else _modes(network, replace(plan, precisely=True), *start)
+
+
+def _modes(network: Network, plan: Plan, momentum: Floats, omega: Floats) -> Modes:
+    """Refine and prove the modes of given momentum (nodes, m) and frequencies (m,)."""
+    omega, solution, cluster = _refined(network, plan, momentum, omega)
     strain, kinetic = _shares(network, solution, cluster)
     springs, links = len(network.spring_ends), strain.shape[1] - len(network.torque_links)
     below, above, proven, width = _proof(network, plan, omega, cluster)

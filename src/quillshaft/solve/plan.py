@@ -47,6 +47,7 @@ class Plan:
     group          group of each unknown: nodes of one group share a rigid state; torque links have -1
     resting_group  number of the group of resting nodes, -1 without any
     groups         number of groups, 1 or 2
+    precisely      True sends every count and every solution next to a mode through the long arithmetic
     """
 
     nodes: int
@@ -62,6 +63,7 @@ class Plan:
     group: tuple[int, ...]
     resting_group: int
     groups: int
+    precisely: bool = False
 
 
 @dataclass
@@ -80,7 +82,9 @@ def plan_elimination(network: Network, last: tuple[int, ...] = ()) -> Plan:
     """Return the order of elimination of a network, O(nodes) for a tree.
 
     The nodes in `last` are eliminated after everything else, in the order given. A torque link goes after at
-    least one of its nodes; a part without inertia and without a tie goes after a torque link that holds it.
+    least one of its nodes, and links that share a node after one node each: two rigid links that wait on one
+    node alone would leave a pivot of exactly zero. A part without inertia and without a tie goes after a torque
+    link that holds it.
     """
     size = network.nodes + len(network.torque_links)
     ends = network.spring_ends.tolist()
@@ -245,8 +249,8 @@ def _minimum_degree(
         neighbours = _remove(joined, u)
         order.append((u, neighbours))
         for other in neighbours:
-            if u < nodes <= other:
-                ready[other - nodes] = True
+            if other >= nodes:
+                ready[other - nodes] = u < nodes
             if other not in last:
                 heapq.heappush(heap, (len(joined[other]), -other, other))
     return order

@@ -37,7 +37,7 @@ def count_below(network: Network, plan: Plan, omega2: Floats) -> Ints:
 def _count_chunk(network: Network, plan: Plan, omega2: Floats) -> Ints:
     elimination = eliminate(network, plan, omega2, watch=True)
     negative: Ints = np.count_nonzero(elimination.pivot < 0, axis=0)
-    doubtful = _doubtful(elimination)
+    doubtful = _doubtful(elimination) | plan.precisely
     if doubtful.any():
         with localcontext(LONG):
             pivot = _eliminate_precisely(network, plan, omega2[doubtful]).pivot
@@ -49,7 +49,7 @@ def solve_at(network: Network, plan: Plan, omega2: Floats, torque: Floats) -> So
     """Solve (K − ω²M) θ = torque (nodes, F) [N·m] at points that may lie next to a natural frequency."""
     elimination = eliminate(network, plan, omega2, watch=True)
     solution = solve(elimination, torque)
-    doubtful = _doubtful(elimination)
+    doubtful = _doubtful(elimination) | plan.precisely
     if doubtful.any():
         with localcontext(LONG):
             precise = _eliminate_precisely(network, plan, omega2[doubtful])

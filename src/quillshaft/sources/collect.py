@@ -104,9 +104,10 @@ def _check_names(sources: list[Source], train: Train, findings: Findings) -> Non
         ("worst-case-separation", train.criteria.worst_case),
     ):
         for kind in table:
-            if kind not in labels:
+            said_before = key != "separation" and kind in train.criteria.separation
+            if kind not in labels and not said_before:
                 hint = did_you_mean(kind, sorted(labels))
-                allowed = "default, a source as `check` lists it, or a family: " + ", ".join(FAMILIES)
+                allowed = "a source as `check` lists it, or one of: " + ", ".join(FAMILIES)
                 findings.add(("criteria", key, kind), f"no source is of this kind{hint}", None, allowed)
 
 

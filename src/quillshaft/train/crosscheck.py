@@ -23,7 +23,7 @@ def _names(findings: Findings, rows: Rows) -> None:
         findings.add(("stations",), "a train needs stations", None, "[stations] with at least one row")
     for table in ("stations", *LINK_TABLES):
         for name in rows.declared[table]:
-            if name in (FIXED, BALANCE):
+            if name in (FIXED, BALANCE, "law"):
                 findings.add((table, name), f"the name {name} is reserved", None, "another name")
     seen: dict[str, str] = {}
     for table in LINK_TABLES:
@@ -126,11 +126,26 @@ def _operation(findings: Findings, rows: Rows) -> None:
     _station(findings, rows, ("operation", "speed-at"), operation.speed_at, operation.speed_at)
     for station in operation.speeds:
         _station(findings, rows, ("operation", "speeds", station), station)
+    _bars(findings, operation)
     if operation.range:
         ranges = operation.range
         for (_, high), (low, _) in pairwise(ranges):
             if low <= high:
                 findings.add(("operation", "range"), "two ranges overlap: write them as one", None)
+
+
+def _bars(findings: Findings, operation: Any) -> None:
+    """Barred ranges leave something to run in, and the rated speed is not inside one."""
+    bars = operation.barred or ()
+    path = ("operation", "barred")
+    if any(low < operation.rated < high for low, high in bars):
+        findings.add(path, "the rated speed lies inside a barred range", None, "a rated speed the train may run at")
+    for low, high in operation.range or ():
+        reached = low
+        for bar_low, bar_high in bars:
+            reached = max(reached, bar_high) if bar_low <= reached else reached
+        if reached >= high:
+            findings.add(path, "the barred ranges leave nothing of a running range", None, "a range with free speeds")
 
 
 def _materials(findings: Findings, rows: Rows) -> None:

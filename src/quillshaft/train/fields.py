@@ -7,6 +7,7 @@ The validation context is `{"system": "SI" | "US", "notes": list[tuple[str, str]
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import Annotated, Any
 
 from pydantic import AfterValidator, BeforeValidator, Field, StrictInt, ValidationInfo
@@ -190,6 +191,43 @@ class Separation:
 
 
 @dataclass(frozen=True)
+class MeasuredTable:
+    """A table { "argument" = value, … }: at least two points, read into (argument, value) pairs rising.
+
+    `alone` says that one value without a table is allowed: it becomes a table of one point at argument 0.
+    """
+
+    argument: str
+    value: Measured
+    alone: bool = False
+
+    def read(self, value: object, info: ValidationInfo) -> tuple[tuple[float, float], ...]:
+        """(argument, value) pairs in SI. Raises PydanticCustomError when it is no such table."""
+        if not isinstance(value, dict):
+            if self.alone:
+                return ((0.0, self.value.read(value, info)),)
+            raise complain("a table is wanted", '{ "30 degC" = 1.0, "60 degC" = 0.83 }')
+        points = sorted(
+            (quantity_of(argument, self.argument, info), self.value.read(item, info))
+            for argument, item in value.items()
+        )
+        if len(points) < 2:
+            raise complain("a table of one point says nothing about the rest", "two points or more")
+        for (low, _), (high, _) in pairwise(points):
+            if high <= low:
+                raise complain("two points of this table have the same argument")
+        return tuple(points)
+
+    def __get_pydantic_core_schema__(self, _source: Any, _handler: Any) -> CoreSchema:
+        return core_schema.with_info_plain_validator_function(self.read)
+
+    def __get_pydantic_json_schema__(self, _schema: Any, _handler: Any) -> dict[str, Any]:
+        described = f"{measure_help(self.argument, 'SI')} = {measure_help(self.value.measure, 'SI')}"
+        table = {"type": "object", "additionalProperties": NUMBER_OR_TEXT, "description": described}
+        return {"anyOf": [*NUMBER_OR_TEXT["anyOf"], table]} if self.alone else table
+
+
+@dataclass(frozen=True)
 class Hubs:
     """Hub engagements of a piece [m]: one length, or a list with one for each end."""
 
@@ -277,6 +315,10 @@ Modulus = Annotated[float, Measured("modulus")]
 Density = Annotated[float, Measured("density")]
 Stress = Annotated[float, Measured("stress")]
 Share = Annotated[float, Measured("share", closed=True)]
+Points = tuple[tuple[float, float], ...]
+StiffnessTable = Annotated[Points, MeasuredTable("torque", Measured("stiffness"), alone=True)]
+FactorTable = Annotated[Points, MeasuredTable("temperature", Measured("number"))]
+TemperaturePair = Annotated[tuple[float, float], MeasuredPair(Measured("temperature"), alone=False)]
 MeshStiffness = Annotated[tuple[str, float], AnyMeasure(("mesh_stiffness_per_face", "linear_stiffness", "stiffness"))]
 ExcitationTorque = Annotated[tuple[str, float], AnyMeasure(("share", "torque"))]
 Ratio = Annotated[float, Field(gt=0, le=50, strict=True, allow_inf_nan=False)]

@@ -10,6 +10,9 @@ from quillshaft.train.document import Document
 Tolerance = tuple[float, float]
 """Relative deviations (low ≤ 0, high ≥ 0): (-0.05, 0.05) is ±5 %."""
 
+Table = tuple[tuple[float, float], ...]
+"""(argument, value) pairs rising in the argument, in SI."""
+
 Range = tuple[float, float]
 """Lowest and highest speed of a range [rad/s]."""
 
@@ -62,6 +65,7 @@ class Station:
     diameter_m: float | None = None
     spelling: Literal["inertia", "wr2", "gd2"] = "inertia"
     provenance: Provenance = Provenance()
+    group: str | None = None
 
 
 @dataclass(frozen=True)
@@ -100,11 +104,18 @@ class Shaft:
     referred_to: str | None = None
     loss_factor: float | None = None
     provenance: Provenance = Provenance()
+    group: str | None = None
 
 
 @dataclass(frozen=True)
 class Coupling:
-    """A coupling between two stations; half inertias [kg·m²] are added to the stations they sit at."""
+    """A coupling between two stations; half inertias [kg·m²] are added to the stations they sit at.
+
+    stiffness_nm_rad     as given; the value at zero torque where it is stated against torque
+    stiffness_points     (mean torque [N·m], stiffness [N·m/rad]); empty where the stiffness is one number
+    temperature_points   (temperature [K], factor on the stiffness); damping_points likewise on the damping
+    operating_k          coldest and hottest temperature [K] of the coupling in service
+    """
 
     name: str
     between: tuple[str, str]
@@ -118,6 +129,11 @@ class Coupling:
     rated_torque_nm: float | None = None
     referred_to: str | None = None
     provenance: Provenance = Provenance()
+    stiffness_points: Table = ()
+    temperature_points: Table = ()
+    damping_points: Table = ()
+    operating_k: tuple[float, float] | None = None
+    group: str | None = None
 
 
 @dataclass(frozen=True)
@@ -144,6 +160,7 @@ class GearMesh:
     loss_factor: float | None = None
     tolerance: Tolerance = (0.0, 0.0)
     provenance: Provenance = Provenance()
+    group: str | None = None
 
 
 @dataclass(frozen=True)
@@ -161,6 +178,7 @@ class Epicyclic:
     loss_factor: float | None = None
     tolerance: Tolerance = (0.0, 0.0)
     provenance: Provenance = Provenance()
+    group: str | None = None
 
     @property
     def members(self) -> tuple[tuple[str, int], ...]:
@@ -182,6 +200,7 @@ class Tie:
     tolerance: Tolerance
     loss_factor: float | None = None
     provenance: Provenance = Provenance()
+    group: str | None = None
 
 
 @dataclass(frozen=True)

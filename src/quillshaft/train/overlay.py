@@ -39,7 +39,8 @@ def _merge_table(name: str, base: Any, over: Any) -> Any:
     if not isinstance(base, dict) or not isinstance(over, dict):
         return over
     if name in PLAIN_TABLES:
-        return {**base, **over}
+        laid = {**base, **over}
+        return {key: value for key, value in laid.items() if value != {"omit": True}}
     merged = dict(base)
     for element, row in over.items():
         if isinstance(row, dict) and row.get("omit") is True:

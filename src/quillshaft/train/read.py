@@ -110,6 +110,8 @@ def _operation(rows: Rows, said: Assumptions) -> Operation:
     speed_band = _band(row.speed_band, "speed-band", speed_words, row.range is None, said)
     supplied = any(getattr(machine, "supply", None) is not None for machine in rows.keyed["machines"].values())
     supply_band = _band(row.supply_band, "supply-band", "variation of the supply frequency", supplied, said)
+    if row.speeds:
+        said.add("operation", "speeds", "in proportion", "a second speed follows that of speed-at over the range")
     ranges = row.range or ((row.rated * (1 - speed_band), row.rated * (1 + speed_band)),)
     return Operation(
         row.speed_at,
@@ -133,6 +135,8 @@ def _criteria(rows: Rows, said: Assumptions) -> Criteria:
         separation["default"] = DEFAULT_SEPARATION
         said.add("criteria", "separation", "10 %", "default requirement (common practice)")
     worst = dict(row.worst_case_separation) if row.worst_case_separation is not None else dict(separation)
+    if row.worst_case_separation is None:
+        said.add("criteria", "worst-case-separation", "as separation", "not given: the same over the tolerances")
     if "default" not in worst:
         worst = {**separation, **worst}
     if row.margin_on is None:

@@ -27,6 +27,7 @@ from quillshaft.train.model import (
 from quillshaft.train.validate import Rows
 
 TWO_PI = 6.283185307179586
+ICE_K = 273.15
 DEFAULT_TOLERANCE = {
     "station": 0.05,
     "impeller": 0.10,
@@ -104,6 +105,7 @@ def _station(name: str, row: Any, wetted: bool, said: Assumptions) -> Station:
         row.diameter,
         spelling,  # type: ignore[arg-type]
         provenance(row, element, said),
+        row.group,
     )
 
 
@@ -147,6 +149,7 @@ def shafts(rows: Rows, said: Assumptions) -> tuple[Shaft, ...]:
                 row.referred_to,
                 _damping(row),
                 provenance(row, element, said),
+                row.group,
             )
         )
     return tuple(out)
@@ -209,11 +212,18 @@ def couplings(rows: Rows, said: Assumptions) -> tuple[Coupling, ...]:
             share = DEFAULT_TOLERANCE["station"] if said.tolerances else 0.0
             said.add(element, "inertia-tolerance", f"±{share * 100:.3g} %", "default for half inertias")
             half = (-share, share)
+        points = row.stiffness or ((0.0, 1.0 / row.flexibility),)
+        temperature = row.temperature or ()
+        operating = row.operating_temperature
+        if temperature and operating is None:
+            operating = (temperature[0][0], temperature[-1][0])
+            cold, hot = (f"{value - ICE_K:.4g} °C" for value in operating)
+            said.add(element, "operating-temperature", f"{cold} to {hot}", "not given: the ends of the table")
         out.append(
             Coupling(
                 name,
                 (row.between[0], row.between[1]),
-                _stiffness(row) or 0.0,
+                points[0][1],
                 tolerance,
                 row.kind,
                 row.half_inertias or (0.0, 0.0),
@@ -223,6 +233,11 @@ def couplings(rows: Rows, said: Assumptions) -> tuple[Coupling, ...]:
                 row.rated_torque,
                 row.referred_to,
                 provenance(row, element, said),
+                points if len(points) > 1 else (),
+                temperature,
+                row.damping_temperature or (),
+                operating,
+                row.group,
             )
         )
     return tuple(out)
@@ -237,7 +252,10 @@ def gears(rows: Rows, said: Assumptions) -> tuple[GearMesh | Epicyclic, ...]:
 
 
 def _mesh_tolerance(row: Any, element: str, said: Assumptions) -> Tolerance:
+    if row.kind == "epicyclic":
+        said.add(element, "planet inertia", "0", "planets turn and travel without inertia of their own")
     if row.mesh_stiffness is None:
+        said.add(element, "mesh-stiffness", "rigid", "not given")
         return (0.0, 0.0)
     return said.tolerance(row.tolerance, element, "a gear mesh", DEFAULT_TOLERANCE["mesh"])
 
@@ -265,6 +283,7 @@ def _mesh(name: str, row: Any, said: Assumptions) -> GearMesh:
         _damping(row),
         _mesh_tolerance(row, element, said),
         provenance(row, element, said),
+        row.group,
     )
 
 
@@ -282,6 +301,7 @@ def _epicyclic(name: str, row: Any, said: Assumptions) -> Epicyclic:
         _damping(row),
         _mesh_tolerance(row, element, said),
         provenance(row, element, said),
+        row.group,
     )
 
 
@@ -295,6 +315,7 @@ def ties(rows: Rows, said: Assumptions) -> tuple[Tie, ...]:
             said.tolerance(row.tolerance, f"ties.{name}", "a tie", DEFAULT_TOLERANCE["tie"]),
             _damping(row),
             provenance(row, f"ties.{name}", said),
+            row.group,
         )
         for name, row in rows.keyed["ties"].items()
     )
@@ -314,6 +335,11 @@ def _machine(name: str, row: Any, said: Assumptions) -> Machine:
     slip = getattr(row, "slip", None)
     if hasattr(row, "slip") and slip is None:
         said.add(element, "slip", "0 Hz", "not given: output frequency = pole pairs · speed")
+    if row.kind == "converter-fed-motor":
+        said.add(element, "harmonics", "1, 2, 6 and 12", "of the output frequency: the set screened")
+    if row.kind == "reciprocating-engine":
+        low = "0.5" if row.strokes == 4 else "1"
+        said.add(element, "orders", f"{low} to 12", "the orders screened; higher ones are not")
     cylinders = tuple(Cylinder(item.at, item.fires_at) for item in getattr(row, "cylinders", ()))
     return Machine(
         name,

@@ -13,6 +13,7 @@ from quillshaft.train.fields import (
     Density,
     Diameters,
     ExcitationTorque,
+    FactorTable,
     Flexibility,
     Frequency,
     Gd2,
@@ -29,8 +30,10 @@ from quillshaft.train.fields import (
     Share,
     SignedFrequency,
     Stiffness,
+    StiffnessTable,
     Stress,
     Teeth,
+    TemperaturePair,
     Text,
     ToleranceField,
     Torque,
@@ -57,9 +60,10 @@ class ElementRow(Row):
 
 
 class ToleratedRow(ElementRow):
-    """An element with a relative tolerance on its main number."""
+    """An element with a relative tolerance on its main number; those of one group deviate together."""
 
     tolerance: ToleranceField | None = None
+    group: Name | None = None
 
 
 def _exactly_one(row: Row, keys: tuple[str, ...], help_text: str = "") -> None:
@@ -159,16 +163,26 @@ class CouplingRow(SpringRow):
     """[couplings]: stiffness | flexibility."""
 
     kind: CouplingKind | None = None
-    stiffness: Stiffness | None = None
+    stiffness: StiffnessTable | None = None
     flexibility: Flexibility | None = None
     half_inertias: HalfInertias | None = None
     shaft_in_hub: Literal["included", "excluded"] | None = None
     rated_torque: Torque | None = None
+    temperature: FactorTable | None = None
+    damping_temperature: FactorTable | None = None
+    operating_temperature: TemperaturePair | None = None
 
     @model_validator(mode="after")
     def _spelling(self) -> Self:
         _exactly_one(self, ("stiffness", "flexibility"))
         _loss_factor(self)
+        if self.damping_temperature is not None and self.psi is None and self.loss_factor is None:
+            raise complain("damping-temperature needs psi or loss-factor to multiply")
+        if self.operating_temperature is not None:
+            if self.temperature is None:
+                raise complain("operating-temperature needs the temperature table that it is read in")
+            if self.operating_temperature[0] >= self.operating_temperature[1]:
+                raise complain("operating-temperature wants the cold value first, then the hot one")
         return self
 
 

@@ -92,13 +92,13 @@ def text_blocks(screening: Screening, parts: Lanes, plan: Plan, pitch_mm: float,
             if bead == GROUND:
                 continue
             far = home in used[k] and away not in used[k]
-            lines = _station_lines(screening, bead, pitch_mm - 2.0, numbers)
+            lines = _station_lines(screening, bead, pitch_mm - 3.0, numbers)
             beside = _heading(placed) if len(used[k]) > 1 else 0
             side = away if far else home
             blocks.append(Block(lines, placed.row, placed.columns[k], side, far, "station", beside))
         for k, link in enumerate(lane.links):
             column = (placed.columns[k] + placed.columns[k + 1]) / 2
-            lines = _link_lines(screening, link, pitch_mm - 2.0, numbers)
+            lines = _link_lines(screening, link, pitch_mm - 3.0, numbers)
             blocks.append(Block(lines, placed.row, column, away, False, "link"))
     return [*blocks, *_cut_blocks(screening, parts, plan, pitch_mm, numbers)]
 
@@ -109,7 +109,7 @@ def _cut_blocks(screening: Screening, parts: Lanes, plan: Plan, pitch_mm: float,
         if joint.cut:
             row, column = plan.spot(joint.ends[0])
             forward = _direction(plan, joint.ends[0])
-            lines = _link_lines(screening, joint.link, pitch_mm - 2.0, numbers)
+            lines = _link_lines(screening, joint.link, pitch_mm - 3.0, numbers)
             home = any("above" in sides for end, sides in joint_sides(plan).items() if end[0] == joint.ends[0][0])
             yield Block(lines, row, column + 0.5 * forward, "above" if home else "below", False, "link")
 
@@ -132,7 +132,7 @@ def _station_lines(screening: Screening, station: int, limit_mm: float, numbers:
     ]
     lines += [(line, False) for line in look.wrap_name(name, limit_mm)]
     if numbers:
-        lines.append((inertia(float(screening.graph.inertia_kgm2[station])), False))
+        lines.append((inertia(float(screening.graph.inertia_kgm2[station]), screening.train.units), False))
     return tuple(lines)
 
 
@@ -141,7 +141,7 @@ def _link_lines(screening: Screening, number: int, limit_mm: float, numbers: boo
     bold = link == softest(screening.graph)
     lines = [(line, bold) for line in look.wrap_name(link.name, limit_mm, bold=bold)]
     if numbers and link.stiffness_nm_rad is not None:
-        text = stiffness(link.stiffness_nm_rad)
+        text = stiffness(link.stiffness_nm_rad, screening.train.units)
         lines += [(line, False) for line in look.wrap(text, limit_mm)]
     return tuple(lines)
 
@@ -181,7 +181,7 @@ def joint_text(screening: Screening, joint: Joint, joints: tuple[Joint, ...]) ->
     if link.kind in ("mesh", "epicyclic") and speeds and speeds[0] > 0:
         words.append(f"ratio {speeds[-1] / speeds[0]:.4g}")
     if link.stiffness_nm_rad is not None:
-        words.append(stiffness(link.stiffness_nm_rad))
+        words.append(stiffness(link.stiffness_nm_rad, screening.train.units))
     return ", ".join(words)
 
 

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from quillshaft.assess.diagram_data import (
@@ -17,119 +16,56 @@ from quillshaft.assess.diagram_data import (
 )
 from quillshaft.assess.results import Screening
 from quillshaft.present.charts import look
+from quillshaft.present.charts.content import (
+    LABEL_MM,
+    LEFT_MM,
+    NUMBERED,
+    PLOT_MM,
+    Content,
+    Exit,
+    exits_of,
+    not_in_frame,
+)
 from quillshaft.present.charts.key import draw_key, key_height, line_note
 from quillshaft.present.charts.operating import draw_operation
-from quillshaft.present.charts.panels import Panel, leaves, panels, shrunk
-from quillshaft.present.charts.phrases import governing_pair, interference_title
+from quillshaft.present.charts.panels import Panel, panels, shrunk
 from quillshaft.present.charts.spread import Box, free_spot, spread
+from quillshaft.present.charts.verdict_titles import interference_title
 from quillshaft.present.words import number
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
     from matplotlib.figure import Figure
 
-LEFT_MM = 13.0
-RIGHT_MM = 36.0
 STRIP_MM = 15.0
-PLOT_MM = look.WIDTH_MM - LEFT_MM - RIGHT_MM
-LABEL_MM = look.SMALL_PT * look.POINT_MM * 1.15
-NUMBERED = 8
 FARTHEST_MM = 14.0
-NEAR_RANGE = 0.4
-"""A line that leaves the frame below this share of the slowest running speed gets no label of its own."""
-
-
-@dataclass(frozen=True)
-class Content:
-    """What the diagram shows, and how far its speed axis runs [rpm]."""
-
-    screening: Screening
-    lines: tuple[SourceLine, ...]
-    bands: tuple[ModeBand, ...]
-    marks: tuple[PairMark, ...]
-    top_rpm: float
-
-    def numbered(self, mark: PairMark) -> int | None:
-        """Number of a mark in the key; None beyond those listed."""
-        place = self.marks.index(mark)
-        return place + 1 if place < NUMBERED else None
 
 
 def interference_diagram(screening: Screening) -> Figure:
     """Sources and natural frequencies over the speed of `speed-at`, with everything that is not clear marked."""
     top = top_speed_rpm(screening)
-    content = Content(screening, source_lines(screening, top), mode_bands(screening), pair_marks(screening), top)
-    plots = panels(content.bands, content.lines)
-    note = line_note(content.lines, _unlabelled(content, plots))
-    foot = key_height(content.marks, NUMBERED) + len(note) * look.line_mm()
-    heads = [_head_mm(content, _exits(content, plots, index, True)) for index in range(len(plots))]
-    plots = shrunk(plots, look.TALLEST_MM - 10.0 - foot - STRIP_MM - sum(heads))
-    exits = [_exits(content, plots, index, True) for index in range(len(plots))]
+    content = Content(screening, source_lines(screening, top), mode_bands(screening, top), pair_marks(screening), top)
+    plots = panels(content.bands, content.lines, content.marks)
+    note = line_note(content.lines, not_in_frame(content, plots))
+    foot = key_height(content.screening, content.marks, NUMBERED) + len(note) * look.line_mm()
+    heads = [_head_mm(content, exits_of(content, plots, index, True)) for index in range(len(plots))]
+    title = interference_title(screening)
+    room = look.TALLEST_MM - look.title_height(title) - foot - STRIP_MM - sum(heads)
+    plots = shrunk(plots, room)
+    exits = [exits_of(content, plots, index, True) for index in range(len(plots))]
     heads = [_head_mm(content, found) for found in exits]
     total = foot + STRIP_MM + sum(panel.height_mm for panel in plots) + sum(heads)
-    made = look.frame(interference_title(screening), total)
-    draw_key(made, foot, content.marks, NUMBERED, note)
+    made = look.frame(title, total)
+    draw_key(made, screening, foot, content.marks, NUMBERED, note)
     draw_operation(made, screening, (LEFT_MM, foot, PLOT_MM, STRIP_MM), top)
     y = foot + STRIP_MM
     for index, (panel, head, found) in enumerate(zip(plots, heads, exits, strict=True)):
         axes = look.plot_axes(made, (LEFT_MM, y, PLOT_MM, panel.height_mm))
         _draw_panel(axes, content, panel)
         _write_top_exits(made, content, found, y + panel.height_mm, head)
-        _write_right_exits(made, panel, _exits(content, plots, index, False), y)
+        _write_right_exits(made, panel, exits_of(content, plots, index, False), y)
         y += panel.height_mm + head
     return made.figure
-
-
-def _shown(content: Content, line: SourceLine) -> bool:
-    """True where a line is labelled: all but minor engine orders, and those of the pairs in the key."""
-    keyed = [mark.pair for mark in content.marks[:NUMBERED]]
-    return not line.minor or any(pair in keyed for pair in line.pairs)
-
-
-def _leading_source(content: Content) -> str:
-    """The source that the title names, "" where it names none."""
-    pair = governing_pair(content.screening)
-    return pair.source if pair is not None else ""
-
-
-def _labelled_in(content: Content, line: SourceLine, plots: tuple[Panel, ...]) -> int | None:
-    """The panel that holds a line's label: the highest that it reaches near running speeds; None for no label."""
-    operation = content.screening.train.operation
-    slow = NEAR_RANGE * min(low for low, _ in operation.ranges_rad_s) * RPM
-    for index in range(len(plots) - 1, -1, -1):
-        at = leaves(line, plots[index])
-        named = _leading_source(content) in line.names
-        if at is not None and (at[0] >= slow or named) and (_shown(content, line) or named):
-            return index
-    return None
-
-
-def _unlabelled(content: Content, plots: tuple[Panel, ...]) -> list[str]:
-    """Names of lines, minor orders apart, that leave the frame too early for a label."""
-    return [line.names[0] for line in content.lines if not line.minor and _labelled_in(content, line, plots) is None]
-
-
-def line_label(line: SourceLine) -> str:
-    """Names of the sources on a line, shortened to what the margin holds."""
-    tail = " (not judged)" if line.starting else ""
-    text = ", ".join(line.names) + tail
-    if look.width_mm(text) > RIGHT_MM - 5.0 and len(line.names) > 1:
-        text = f"{line.names[0]} +{len(line.names) - 1}" + tail
-    return look.shorten_name(text, RIGHT_MM - 5.0)
-
-
-def _exits(content: Content, plots: tuple[Panel, ...], number: int, by_top: bool) -> list[tuple[float, float, str]]:
-    """(rpm, Hz, label) of the lines labelled at a panel's top, or at its right edge."""
-    found: list[tuple[SourceLine, tuple[float, float]]] = []
-    for line in content.lines:
-        at = leaves(line, plots[number])
-        if at is None or _labelled_in(content, line, plots) != number:
-            continue
-        if (at[0] < content.top_rpm * (1.0 - 1e-9)) == by_top:
-            found.append((line, at))
-    room = int((PLOT_MM if by_top else plots[number].height_mm) / LABEL_MM)
-    found.sort(key=lambda item: (not item[0].pairs, _leading_source(content) not in item[0].names))
-    return [(*at, line_label(line)) for line, at in found[:room]]
 
 
 def _x(content: Content, rpm: float) -> float:
@@ -140,7 +76,7 @@ def _y(panel: Panel, frequency_hz: float, foot_mm: float) -> float:
     return foot_mm + panel.height_mm * (frequency_hz - panel.low_hz) / (panel.high_hz - panel.low_hz)
 
 
-def _level_centres(content: Content, found: list[tuple[float, float, str]]) -> list[float] | None:
+def _level_centres(content: Content, found: list[Exit]) -> list[float] | None:
     """Centres [mm] of labels set level over a panel; None where they would move too far from their lines."""
     wanted = [_x(content, rpm) for rpm, *_ in found]
     sizes = [look.width_mm(text) + 3.0 for *_, text in found]
@@ -149,7 +85,7 @@ def _level_centres(content: Content, found: list[tuple[float, float, str]]) -> l
     return centres if far <= FARTHEST_MM and sum(sizes) <= look.WIDTH_MM - LEFT_MM else None
 
 
-def _head_mm(content: Content, found: list[tuple[float, float, str]]) -> float:
+def _head_mm(content: Content, found: list[Exit]) -> float:
     """Height [mm] over a panel for the labels of the lines that leave it by its top."""
     if not found:
         return 3.0
@@ -161,7 +97,7 @@ def _head_mm(content: Content, found: list[tuple[float, float, str]]) -> float:
 def _write_top_exits(
     made: look.Frame,
     content: Content,
-    found: list[tuple[float, float, str]],
+    found: list[Exit],
     foot_mm: float,
     head_mm: float,
 ) -> None:
@@ -176,7 +112,7 @@ def _write_top_exits(
         look.put(axes, centre, 2.4, text, rotation=turn, va="bottom", gid="source")
 
 
-def _write_right_exits(made: look.Frame, panel: Panel, found: list[tuple[float, float, str]], foot_mm: float) -> None:
+def _write_right_exits(made: look.Frame, panel: Panel, found: list[Exit], foot_mm: float) -> None:
     """Labels right of a panel, moved apart, each joined to the end of its line."""
     ends = [_y(panel, frequency, 0.0) for _, frequency, _ in found]
     axes = look.millimetre_axes(made, foot_mm - 3.0, foot_mm + panel.height_mm + 3.0)
@@ -194,7 +130,7 @@ def _draw_panel(axes: Axes, content: Content, panel: Panel) -> None:
     axes.set_ylabel("frequency, Hz", fontsize=look.SMALL_PT, color=look.INK, labelpad=2.0)
     _shade_ranges(axes, content.screening)
     for band in content.bands:
-        _draw_band(axes, content, band)
+        _draw_band(axes, band)
     for line in content.lines:
         _draw_line(axes, line)
     taken = _write_modes(axes, content, panel)
@@ -214,26 +150,21 @@ def _shade_ranges(axes: Axes, screening: Screening) -> None:
             axes.axvline(speed * RPM, lw=look.THIN_PT, color=look.QUIET, ls=(0, (1.0, 1.0)), zorder=0.6)
 
 
-def _draw_band(axes: Axes, content: Content, band: ModeBand) -> None:
+def _draw_band(axes: Axes, band: ModeBand) -> None:
     """A natural frequency: its range over tolerances, its nominal line, and what to keep free in the range."""
-    axes.axhspan(band.low_hz, band.high_hz, facecolor=look.FAINT, edgecolor="none", alpha=0.45, zorder=1)
-    axes.axhline(band.nominal_hz, lw=look.LINE_PT, color=look.INK, ls=look.DASHES["natural"], zorder=3)
+    axes.fill_between(
+        band.rpm, band.low_hz, band.high_hz, facecolor=look.FAINT, edgecolor="none", lw=0.0, alpha=0.45, zorder=1
+    )
+    axes.plot(band.rpm, band.along_hz, lw=look.LINE_PT, color=look.INK, ls=look.DASHES["natural"], zorder=3)
     if band.required <= 0:
         return
-    for low, high in content.screening.train.operation.ranges_rad_s:
-        for edge in (band.free_from_hz, band.free_to_hz):
-            axes.plot(
-                [low * RPM, high * RPM],
-                [edge, edge],
-                lw=look.THIN_PT,
-                color=look.INK,
-                ls=look.DASHES["required"],
-                zorder=2,
-            )
-        for speed in (low, high):
-            axes.plot(
-                [speed * RPM] * 2, [band.free_from_hz, band.free_to_hz], lw=look.HAIR_PT, color=look.INK, zorder=2
-            )
+    dashes = look.DASHES["required"]
+    for rows in band.free:
+        rpm, low, high = zip(*rows, strict=True)
+        for edge in (low, high):
+            axes.plot(rpm, edge, lw=look.THIN_PT, color=look.INK, ls=dashes, zorder=2)
+        for end in (0, -1):
+            axes.plot([rpm[end]] * 2, [low[end], high[end]], lw=look.HAIR_PT, color=look.INK, zorder=2)
 
 
 def _draw_line(axes: Axes, line: SourceLine) -> None:
@@ -254,7 +185,7 @@ def _scales(content: Content, panel: Panel) -> tuple[float, float]:
 def _write_modes(axes: Axes, content: Content, panel: Panel) -> list[Box]:
     """Names of the modes at the left edge, over their lines, moved apart; their boxes [mm] from the corner."""
     per_x, per_y = _scales(content, panel)
-    heights = [(band.nominal_hz - panel.low_hz) / per_y + 0.65 * LABEL_MM for band in panel.bands]
+    heights = [(band.along_hz[0] - panel.low_hz) / per_y + 0.65 * LABEL_MM for band in panel.bands]
     centres = spread(heights, [1.15 * LABEL_MM] * len(heights), 0.3, panel.height_mm - 0.3)
     boxes = []
     for band, at in zip(panel.bands, centres, strict=True):
@@ -287,11 +218,7 @@ def _draw_marks(axes: Axes, content: Content, panel: Panel, taken: list[Box]) ->
         name = content.numbered(mark)
         if name is None:
             continue
-        around = [
-            (x + dx - 1.3, y + dy - 1.5, x + dx + 1.3, y + dy + 1.5)
-            for reach in (3.2, 4.7, 6.2)
-            for dx, dy in ((reach, 0.8), (-reach, 0.8), (0.7, reach), (0.7, -reach), (reach, -reach), (-reach, -reach))
-        ]
+        around = [spot for spot in _around(x, y) if _inside(spot, panel)]
         box = around[free_spot(around, boxes)]
         boxes.append(box)
         look.put(
@@ -304,6 +231,19 @@ def _draw_marks(axes: Axes, content: Content, panel: Panel, taken: list[Box]) ->
             gid="mark",
             bbox={"facecolor": look.PAPER, "edgecolor": "none", "pad": 0.5, "alpha": 0.8},
         )
+
+
+def _inside(spot: Box, panel: Panel) -> bool:
+    return spot[0] >= 0.0 and spot[1] >= 0.0 and spot[2] <= PLOT_MM and spot[3] <= panel.height_mm
+
+
+def _around(x: float, y: float) -> list[Box]:
+    """Places [mm] for the number of a mark, the best first."""
+    return [
+        (x + dx - 1.3, y + dy - 1.5, x + dx + 1.3, y + dy + 1.5)
+        for reach in (3.2, 4.7, 6.2)
+        for dx, dy in ((reach, 0.8), (-reach, 0.8), (0.7, reach), (0.7, -reach), (reach, -reach), (-reach, -reach))
+    ]
 
 
 def draw_mark(axes: Axes, mark: PairMark, x: float, y: float) -> None:

@@ -5,7 +5,8 @@ from __future__ import annotations
 from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
-from quillshaft.assess.diagram_data import PairMark, SourceLine
+from quillshaft.assess.diagram_data import PairMark, SourceLine, meeting_rpm
+from quillshaft.assess.results import Screening
 from quillshaft.present.charts import look
 from quillshaft.present.charts.phrases import capital, listed
 from quillshaft.present.words import percent
@@ -14,60 +15,95 @@ if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
 ROW_MM = 3.6
+TEXT_MM = 7.5
+"""Where the text of an entry begins, after its shape and number."""
+MOST_NAMES = 6
+"""So many lines outside the frame are named."""
 
 
-def entry(mark: PairMark, number: int) -> str:
-    """One line of the key: mode, sources, and where they meet or how far they stand apart."""
+def entry(screening: Screening, mark: PairMark) -> str:
+    """What a mark is: mode, sources, and where they meet or how far they stand apart."""
     pair = mark.pair
-    text = f"{number}  mode {pair.mode}, {pair.source}"
+    text = f"mode {pair.mode}, {pair.source}"
     if mark.others:
         text += f" + {len(mark.others)} more"
-    if pair.critical_speed_rpm is not None and pair.verdict in ("crossing", "barred"):
-        text += f": at {pair.critical_speed_rpm:.0f} rpm"
-    elif pair.verdict == "crossing":
+    rpm = meeting_rpm(screening, pair)
+    if rpm is not None:
+        text += f": at {rpm:.0f} rpm"
+    elif pair.verdict in ("crossing", "barred"):
         text += ": throughout the range"
     else:
-        text += f": {percent(pair.margin, True)}".replace("-", "−")
-    if pair.worst_verdict != pair.verdict:
-        text += ", " + {"crossing": "meets", "barred": "meets, barred,"}.get(
-            pair.worst_verdict, percent(pair.worst_margin, True).replace("-", "−")
+        text += f": {percent(pair.margin, True)}"
+    if pair.worst_verdict != pair.verdict or pair.verdict == "close":
+        worst = {"crossing": "meets", "barred": "meets, barred,"}.get(
+            pair.worst_verdict, percent(pair.worst_margin, True)
         )
-        text += " over tolerances"
+        text += f", {worst} over tolerances"
+    if pair.bar_too_narrow:
+        text += ", barred range too narrow"
     return text + (", dismissed" if pair.dismissed is not None else "")
 
 
-def key_height(marks: Sequence[PairMark], numbered: int) -> float:
+def _entries(screening: Screening, marks: Sequence[PairMark]) -> list[list[list[str]]]:
+    """One column of wrapped entries up to three marks, two beyond."""
+    columns = 1 if len(marks) <= 3 else 2
+    wide = look.WIDTH_MM / columns - TEXT_MM - 4.0
+    wrapped = [look.wrap(entry(screening, mark), wide) for mark in marks]
+    rows = -(-len(marks) // columns)
+    return [wrapped[start : start + rows] for start in range(0, len(wrapped), max(1, rows))]
+
+
+def _entries_height(columns: list[list[list[str]]]) -> float:
+    return max((sum(_entry_height(lines) for lines in column) for column in columns), default=0.0)
+
+
+def _entry_height(lines: list[str]) -> float:
+    return ROW_MM + (len(lines) - 1) * look.line_mm()
+
+
+def key_height(screening: Screening, marks: Sequence[PairMark], numbered: int) -> float:
     """Height [mm] of the key without the lines' note."""
-    lines = _rows(marks[:numbered]) + (1 if marks else 0) + (1 if len(marks) > numbered else 0)
-    return lines * ROW_MM + 3.0
+    lines = (len(_shape_rows(marks)) if marks else 0) + (1 if len(marks) > numbered else 0)
+    return _entries_height(_entries(screening, marks[:numbered])) + lines * ROW_MM + 3.0
 
 
-def _rows(marks: Sequence[PairMark]) -> int:
-    """Lines of the key: one column up to three marks, two beyond."""
-    return len(marks) if len(marks) <= 3 else -(-len(marks) // 2)
-
-
-def draw_key(made: look.Frame, height_mm: float, marks: Sequence[PairMark], numbered: int, note: list[str]) -> None:
+def draw_key(
+    made: look.Frame,
+    screening: Screening,
+    height_mm: float,
+    marks: Sequence[PairMark],
+    numbered: int,
+    note: list[str],
+) -> None:
     """Numbered marks in two columns, the shapes in use, the lines in use."""
     axes = look.millimetre_axes(made, 0.0, height_mm)
-    y = height_mm - 1.5 - ROW_MM / 2
-    keyed = marks[:numbered]
-    rows, half = _rows(keyed), look.WIDTH_MM / 2
-    wide = half if rows < len(keyed) else look.WIDTH_MM
-    for index, mark in enumerate(keyed):
-        x = 0.0 if index < rows else half
-        row_y = y - (index % rows) * ROW_MM
-        _sample(axes, mark_kind(mark), mark.nominal, x + 1.6, row_y)
-        look.put(axes, x + 4.0, row_y, look.shorten(entry(mark, index + 1), wide - 6.0), ha="left", gid="key")
-    y -= rows * ROW_MM
+    y = height_mm - 1.5
+    columns = _entries(screening, marks[:numbered])
+    first = 0
+    for place, column in enumerate(columns):
+        _draw_column(axes, list(enumerate(marks, start=1))[first:], column, place * look.WIDTH_MM / 2.0, y)
+        first += len(column)
+    y -= _entries_height(columns) + ROW_MM / 2.0
     if len(marks) > numbered:
         text = f"Marks without a number: {len(marks) - numbered} more that are not clear; the table lists them."
-        look.put(axes, 0.0, y, text, ha="left", color=look.QUIET)
+        look.put(axes, 0.0, y, text, ha="left", color=look.QUIET, gid="key")
         y -= ROW_MM
-    if marks:
-        _draw_shapes(axes, marks, y)
+    for row in _shape_rows(marks):
+        _draw_shapes(axes, row, y)
         y -= ROW_MM
-    look.notes(axes, y + ROW_MM / 2, note)
+    look.notes(axes, y + ROW_MM / 2.0, note)
+
+
+def _draw_column(
+    axes: Axes, numbered: list[tuple[int, PairMark]], column: list[list[str]], x: float, top: float
+) -> None:
+    for (number, mark), lines in zip(numbered, column, strict=False):
+        y = top - ROW_MM / 2.0
+        _sample(axes, mark_kind(mark), mark.nominal, x + 1.6, y)
+        look.put(axes, x + 5.0, y, str(number), fontweight="bold", gid="key")
+        for row, text in enumerate(lines):
+            look.put(axes, x + TEXT_MM, y - row * look.line_mm(), text, ha="left", gid="key")
+        top -= _entry_height(lines)
 
 
 def mark_kind(mark: PairMark) -> str:
@@ -81,19 +117,35 @@ def _sample(axes: Axes, kind: str, filled: bool, x: float, y: float) -> None:
     axes.plot(x, y, marker=shape, ms=5.0, mfc=face, mec=look.INK, mew=look.LINE_PT, ls="none")
 
 
-def _draw_shapes(axes: Axes, marks: Sequence[PairMark], y: float) -> None:
-    x = 0.0
-    for kind in sorted({mark_kind(mark) for mark in marks}, key=list(look.MARKERS).index):
-        _sample(axes, kind, True, x + 1.6, y)
-        text = look.MARKERS[kind][1]
-        look.put(axes, x + 4.0, y, text, ha="left", color=look.QUIET)
-        x += look.width_mm(text) + 8.0
+def _shape_rows(marks: Sequence[PairMark]) -> list[list[tuple[str, str]]]:
+    """(marker, meaning) of the shapes in use, in rows that fit the width; "" for words without a marker."""
+    kinds = sorted({mark_kind(mark) for mark in marks}, key=list(look.MARKERS).index)
+    items = [(kind, look.MARKERS[kind][1]) for kind in kinds]
     if not all(mark.nominal for mark in marks):
-        look.put(axes, x, y, "open: only over the tolerances", ha="left", color=look.QUIET)
+        items.append(("", "open: only over the tolerances"))
+    rows: list[list[tuple[str, str]]] = []
+    x = look.WIDTH_MM
+    for item in items:
+        wide = look.width_mm(item[1]) + 8.0
+        if x + wide > look.WIDTH_MM:
+            rows.append([])
+            x = 0.0
+        rows[-1].append(item)
+        x += wide
+    return rows
 
 
-def line_note(lines: Sequence[SourceLine], unlabelled: Sequence[str]) -> list[str]:
-    """How to read the lines that are there."""
+def _draw_shapes(axes: Axes, row: list[tuple[str, str]], y: float) -> None:
+    x = 0.0
+    for kind, text in row:
+        if kind:
+            _sample(axes, kind, True, x + 1.6, y)
+        look.put(axes, x + (4.0 if kind else 0.0), y, text, ha="left", color=look.QUIET, gid="key")
+        x += look.width_mm(text) + 8.0
+
+
+def line_note(lines: Sequence[SourceLine], elsewhere: dict[str, list[str]]) -> list[str]:
+    """How to read the lines that are there; `elsewhere`: where -> names of those outside at running speeds."""
     kinds = {line.kind for line in lines if not line.minor}
     parts = []
     if "order" in kinds:
@@ -111,6 +163,7 @@ def line_note(lines: Sequence[SourceLine], unlabelled: Sequence[str]) -> list[st
     if any(line.low_hz != line.high_hz for line in lines):
         parts.append("hairlines beside a source: supply variation")
     text = "; ".join(parts) + "."
-    if unlabelled:
-        text += f" Lines without a name leave the frame far below running speed: {listed(unlabelled, 6)}."
+    places = [f"{place}: {listed(names, MOST_NAMES)}" for place, names in sorted(elsewhere.items(), reverse=True)]
+    if places:
+        text += f" Outside the frame at running speeds, {'; '.join(places)}."
     return look.wrap(capital(text), look.WIDTH_MM - 5.0)

@@ -5,6 +5,7 @@ Nothing is told by colour alone: kinds differ by line pattern, shape or hatching
 
 from __future__ import annotations
 
+import re
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
@@ -80,9 +81,9 @@ def width_mm(text: str, size_pt: float = SMALL_PT, bold: bool = False) -> float:
 
 
 def wrap(text: str, limit_mm: float, size_pt: float = SMALL_PT, bold: bool = False) -> list[str]:
-    """Lines no wider than a limit, broken at spaces; a single word wider than that stands alone."""
+    """Lines no wider than a limit, broken at spaces but not before a unit; a wider single word stands alone."""
     lines: list[str] = []
-    for word in text.split():
+    for word in re.findall(r"\S+(?: (?:%|rpm|Hz)(?!\w)\S*)?", text):
         joined = f"{lines[-1]} {word}" if lines else word
         if lines and width_mm(joined, size_pt, bold) <= limit_mm:
             lines[-1] = joined
@@ -153,13 +154,22 @@ def put(axes: Axes, x: float, y: float, text: str, size_pt: float = SMALL_PT, **
     return axes.text(x, y, text, fontsize=size_pt, parse_math=False, **style)
 
 
+def title_lines(title: str) -> list[str]:
+    """A title in lines that fit the page width."""
+    return wrap(title, WIDTH_MM - 4.0, TITLE_PT, bold=True)
+
+
+def title_height(title: str) -> float:
+    """Height [mm] that a title takes over the body of a figure."""
+    return len(title_lines(title)) * line_mm(TITLE_PT) + 2.5
+
+
 def frame(title: str, body_mm: float) -> Frame:
     """A figure of the page width whose title stands above a body of the given height [mm]."""
     from matplotlib.figure import Figure
 
-    lines = wrap(title, WIDTH_MM - 2.0, TITLE_PT, bold=True)
-    head_mm = len(lines) * line_mm(TITLE_PT) + 2.5
-    height_mm = body_mm + head_mm
+    lines = title_lines(title)
+    height_mm = body_mm + title_height(title)
     figure = Figure(figsize=(WIDTH_MM / MM_PER_INCH, height_mm / MM_PER_INCH), facecolor=PAPER)
     figure.set_label(title)
     made = Frame(figure, WIDTH_MM, height_mm, body_mm)

@@ -85,7 +85,8 @@ def _axis(axes: Axes, speed_at: str, left: float, width: float, top_rpm: float) 
         at = left + width * index * step / top_rpm
         axes.plot([at, at], [y, y - 1.0], lw=look.THIN_PT, color=look.QUIET)
         look.put(axes, at, y - 2.6, f"{index * step:g}")
-    look.put(axes, left + width + 3.2, y - 2.6, f"rpm of {speed_at}", ha="left")
+    name = look.shorten_name(f"rpm of {speed_at}", look.WIDTH_MM - left - width - 4.0)
+    look.put(axes, left + width + 3.2, y - 2.6, name, ha="left")
 
 
 def _round_step(value: float) -> float:

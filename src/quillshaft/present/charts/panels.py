@@ -5,9 +5,11 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
-from quillshaft.assess.diagram_data import ModeBand, SourceLine
+from quillshaft.assess.diagram_data import ModeBand, PairMark, SourceLine
 
 WIDE_SPAN = 8.0
+MARK_ROOM = 0.03
+"""Share of a panel's frequencies kept free beyond the outermost mark."""
 
 
 @dataclass(frozen=True)
@@ -20,22 +22,35 @@ class Panel:
     height_mm: float
 
 
-def panels(bands: Sequence[ModeBand], lines: Sequence[SourceLine]) -> tuple[Panel, ...]:
-    """One panel from zero, or two where judged frequencies span more than 8 to 1; the low one first."""
+def panels(bands: Sequence[ModeBand], lines: Sequence[SourceLine], marks: Sequence[PairMark] = ()) -> tuple[Panel, ...]:
+    """One panel from zero, or two where judged frequencies span more than 8 to 1; the low one first.
+
+    Each holds the bands of its modes and their marks; where the marks ask for it, the two overlap.
+    """
     if not bands:
         highest = max((max(line.nominal_hz) for line in lines), default=1.0)
         return (Panel(0.0, 1.05 * highest or 1.0, (), 80.0),)
     low, high = bands[0].nominal_hz, bands[-1].nominal_hz
     if high <= WIDE_SPAN * low or len(bands) == 1:
-        return (Panel(0.0, _roomy(1.08 * _top(bands), lines), tuple(bands), 98.0),)
+        only = _holding(Panel(0.0, 1.08 * _top(bands), tuple(bands), 98.0), marks)
+        return (replace(only, high_hz=_roomy(only.high_hz, lines)),)
     cut = min(range(1, len(bands)), key=lambda i: (_crowded(bands, i), bands[i - 1].nominal_hz / bands[i].nominal_hz))
     below, above = tuple(bands[:cut]), tuple(bands[cut:])
     share = 30.0 + 55.0 * len(below) / len(bands)
-    foot = 0.97 * min(above[0].low_hz, above[0].free_from_hz)
-    return (
-        Panel(0.0, min(foot, _roomy(1.12 * _top(below), lines)), below, share),
-        Panel(foot, 1.03 * _top(above), above, 115.0 - share),
-    )
+    foot = 0.97 * min(band.lowest_hz for band in above)
+    upper = _holding(Panel(foot, 1.03 * _top(above), above, 115.0 - share), marks)
+    lower = _holding(Panel(0.0, min(foot, 1.12 * _top(below)), below, share), marks)
+    roomy = min(upper.low_hz, _roomy(lower.high_hz, lines))
+    return replace(lower, high_hz=max(lower.high_hz, roomy)), upper
+
+
+def _holding(panel: Panel, marks: Sequence[PairMark]) -> Panel:
+    """The panel, its frequencies extended so that every mark of its modes lies inside with room for its number."""
+    own = {band.mode for band in panel.bands}
+    heights = [mark.frequency_hz for mark in marks if mark.pair.mode in own]
+    room = MARK_ROOM * (panel.high_hz - panel.low_hz)
+    low = min([panel.low_hz, *(height - room for height in heights)])
+    return replace(panel, low_hz=max(0.0, low), high_hz=max([panel.high_hz, *(height + room for height in heights)]))
 
 
 def _crowded(bands: Sequence[ModeBand], cut: int) -> int:
@@ -58,7 +73,7 @@ def _roomy(high_hz: float, lines: Sequence[SourceLine]) -> float:
 
 
 def _top(bands: Sequence[ModeBand]) -> float:
-    return max(max(band.high_hz, band.free_to_hz) for band in bands)
+    return max(band.highest_hz for band in bands)
 
 
 def leaves(line: SourceLine, panel: Panel) -> tuple[float, float] | None:

@@ -3,13 +3,18 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from typing import Literal
 
-from quillshaft.assess.results import Interference, ModeResult, Screening
+from quillshaft.assess.results import ModeResult, Screening
 from quillshaft.graph.torsional import GraphLink, TorsionalGraph
 from quillshaft.present.charts.lanes import pair_neighbours, paths_over
-from quillshaft.present.words import number, percent, plain
+from quillshaft.present.units import SHOWN
+from quillshaft.present.words import number
 
 RPM = 30.0 / 3.141592653589793
+UnitSystem = Literal["SI", "US"]
+_THOUSANDS: dict[UnitSystem, tuple[str, ...]] = {"SI": ("", "k", "M", "G"), "US": ("", "10³ ", "10⁶ ", "10⁹ ")}
+"""What stands before N·m/rad and lbf·in/rad, in steps of a thousand."""
 _COUNTS = ["no", "one", "two", "three", "four", "five", "six", "seven", "eight", "nine", "ten", "eleven", "twelve"]
 
 
@@ -32,17 +37,23 @@ def listed(words: Sequence[str], most: int = 3) -> str:
     return shown[0] if len(shown) == 1 else f"{', '.join(shown[:-1])} and {shown[-1]}"
 
 
-def stiffness(value_nm_rad: float) -> str:
-    """A torsional stiffness [N·m/rad] with three digits and a fitting unit."""
-    for size, unit in ((1e9, "GN·m/rad"), (1e6, "MN·m/rad"), (1e3, "kN·m/rad")):
-        if value_nm_rad >= 0.1 * size:
-            return f"{brief(value_nm_rad / size)} {unit}"
-    return f"{brief(value_nm_rad)} N·m/rad"
+def stiffness(value_nm_rad: float, units: UnitSystem) -> str:
+    """A torsional stiffness [N·m/rad] with three digits in the declared units, other thousands where it is long."""
+    shown, steps = SHOWN[units], _THOUSANDS[units]
+    own = next(at for at in reversed(range(len(steps))) if shown.stiffness.startswith(steps[at]))
+    value, at = value_nm_rad * shown.per_nm_rad, own
+    while value < 0.01 and at > 0:
+        value, at = value * 1e3, at - 1
+    while value >= 1e4 and at < len(steps) - 1:
+        value, at = value * 1e-3, at + 1
+    joint = "×" if steps[at].startswith("10") else " "
+    return f"{brief(value)}{joint}{steps[at]}{shown.stiffness.removeprefix(steps[own])}"
 
 
-def inertia(value_kgm2: float) -> str:
-    """A polar inertia [kg·m²] with three digits."""
-    return f"{brief(value_kgm2)} kg·m²"
+def inertia(value_kgm2: float, units: UnitSystem) -> str:
+    """A polar inertia [kg·m²] with three digits in the declared units."""
+    shown = SHOWN[units]
+    return f"{brief(value_kgm2 * shown.per_kgm2)} {shown.inertia}"
 
 
 def brief(value: float) -> str:
@@ -140,63 +151,6 @@ def swing_words(mode: ModeResult) -> str:
     if against:
         return f"{lead} swings against {max(against, key=lambda name: against[name])}"
     return f"all swing together, {lead} the most"
-
-
-def interference_title(screening: Screening) -> str:
-    """The verdict of the diagram in one sentence."""
-    pairs = [pair for pair in screening.not_clear() if pair.dismissed is None]
-    dismissed = len(screening.not_clear()) - len(pairs)
-    tail = f" ({count(dismissed, 'pair')} dismissed)" if dismissed else ""
-    leading = governing_pair(screening)
-    if leading is None:
-        if screening.interferences:
-            return "Every interference of this train is dismissed"
-        return "Nothing is judged: no continuous source reaches a natural frequency of this train"
-    if not pairs:
-        return _clear_title(screening, leading) + tail
-    rest = len(pairs) - 1
-    be = "is" if rest == 1 else "are"
-    end = f"{count(rest, 'more pair')} of mode and source {be} not clear" if rest else "all else is clear"
-    return f"{pair_words(leading)}; {end}{tail}"
-
-
-def governing_pair(screening: Screening) -> Interference | None:
-    """The pair that the title names: the worst not dismissed, else the nearest; None where nothing is judged."""
-    worst = next((pair for pair in screening.not_clear() if pair.dismissed is None), None)
-    judged = [pair for pair in screening.interferences if pair.dismissed is None]
-    return worst or min(judged, key=lambda pair: abs(pair.worst_margin), default=None)
-
-
-def _clear_title(screening: Screening, near: Interference) -> str:
-    amount = len(screening.judged_modes)
-    modes = "The one judged mode is" if amount == 1 else f"All {count(amount, 'judged mode')} are"
-    side = "below" if near.margin < 0 else "above"
-    return (
-        f"{modes} clear of every source; the nearest, mode {near.mode}, stays "
-        f"{percent(abs(near.worst_margin))} {side} {near.source} over the tolerances "
-        f"({plain(near.worst_required)} required)"
-    )
-
-
-def pair_words(pair: Interference) -> str:
-    """ "Mode 2 is 3.2 % below interharmonic and meets it over the tolerances"."""
-    if pair.verdict == "crossing":
-        where = "" if pair.critical_speed_rpm is None else f" at {pair.critical_speed_rpm:.0f} rpm"
-        return f"Mode {pair.mode} meets {pair.source}{where} in the running range"
-    if pair.verdict == "barred":
-        base = f"Mode {pair.mode} meets {pair.source} at {pair.judged_at_rpm:.0f} rpm, inside a barred range"
-    else:
-        side = "below" if pair.margin < 0 else "above"
-        base = f"Mode {pair.mode} is {percent(abs(pair.margin))} {side} {pair.source}"
-    worst = {
-        "crossing": " and meets it over the tolerances",
-        "barred": " and meets it in a barred range over the tolerances",
-        "close": f", {percent(abs(pair.worst_margin))} over the tolerances: {plain(pair.required)} is required",
-        "clear": f": {plain(pair.required)} is required",
-    }[pair.worst_verdict]
-    if pair.worst_verdict == pair.verdict == "barred":
-        worst = ", over the tolerances as well"
-    return base + worst
 
 
 def train_paths(graph: TorsionalGraph) -> list[list[int]]:

@@ -10,6 +10,8 @@ from dataclasses import dataclass
 
 from quillshaft.present.charts.lanes import Joint, Lanes
 
+WIDE_COLUMNS = 9
+"""Up to so many columns, one of them has room for a speed between two lanes of a row."""
 ROOMY = 7
 """Up to so many columns a lane rather goes on to the right than back under its neighbour."""
 
@@ -39,12 +41,15 @@ class Plan:
         return lane.row, lane.columns[end[1]]
 
 
-def place(parts: Lanes, widest: int) -> Plan:
-    """Rows and columns for all lanes, no wider than `widest` columns where lanes allow it."""
+def place(parts: Lanes, widest: int, packed: bool = False) -> Plan:
+    """Rows and columns for all lanes, no wider than `widest` columns where lanes allow it.
+
+    With `packed`, lanes fill rows in turn and most joints are lettered: for trains of many short shaft lines.
+    """
     placed: dict[int, Placed] = {}
     while len(placed) < len(parts.lanes):
         joint = _next_joint(parts.joints, placed)
-        if joint is None:
+        if joint is None or packed:
             lane = min(set(range(len(parts.lanes))) - set(placed))
             placed[lane] = _anywhere(lane, parts, placed, widest)
             continue
@@ -77,7 +82,7 @@ def _anywhere(lane: int, parts: Lanes, placed: dict[int, Placed], widest: int) -
     for row in rows:
         for start in range(left, left + widest - offsets[-1]):
             columns = tuple(start + offset for offset in offsets)
-            if not _taken(row, columns, placed):
+            if not _taken(row, columns, placed, widest):
                 return Placed(lane, row, columns)
     return _new_row(lane, parts, placed, left)
 
@@ -107,7 +112,7 @@ def _beside(
         for turned in (False, True):
             columns = _aligned(offsets, new[1], home.columns[known[1]], turned)
             low, high = min(left, *columns), max(right, *columns)
-            if high - low + 1 > widest or _taken(row, columns, placed):
+            if high - low + 1 > widest or _taken(row, columns, placed, widest):
                 continue
             growth = 1 if high - low < ROOMY else 3
             cost = growth * (high - low - (right - left)) + 2 * (row < home.row) + 8 * turned
@@ -121,11 +126,12 @@ def _aligned(offsets: list[int], index: int, column: int, turned: bool) -> tuple
     return tuple(column + sign * (offset - offsets[index]) for offset in offsets)
 
 
-def _taken(row: int, columns: tuple[int, ...], placed: dict[int, Placed]) -> bool:
-    """True where another lane of the row is nearer than a free column."""
+def _taken(row: int, columns: tuple[int, ...], placed: dict[int, Placed], widest: int) -> bool:
+    """True where another lane of the row leaves no room for the speed between the two."""
     low, high = min(columns), max(columns)
+    gap = 1 if widest <= WIDE_COLUMNS else 2
     return any(
-        other.row == row and low <= max(other.columns) + 1 and min(other.columns) - 1 <= high
+        other.row == row and low <= max(other.columns) + gap and min(other.columns) - gap <= high
         for other in placed.values()
     )
 

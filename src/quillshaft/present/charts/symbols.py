@@ -82,13 +82,14 @@ def spring(axes: Axes, start: Point, end: Point) -> None:
     line(axes, [*points, end], look.THIN_PT)
 
 
-def ground(axes: Axes, at: Point) -> None:
-    """Ground: an upright bar with short strokes."""
+def ground(axes: Axes, at: Point, level: bool) -> None:
+    """Ground: a bar with short strokes, lying `level` where the tie comes from above or below."""
     x, y = at
-    line(axes, [(x, y - 2.6), (x, y + 2.6)], look.LINE_PT)
-    for step in range(5):
-        low = y - 2.6 + step * 1.2
-        line(axes, [(x, low + 0.4), (x + 1.2, low - 0.5)], look.HAIR_PT)
+    strokes = [((0.0, -2.6), (0.0, 2.6))]
+    strokes += [((0.0, -2.2 + 1.2 * step), (1.2, -3.1 + 1.2 * step)) for step in range(5)]
+    for number, stroke in enumerate(strokes):
+        points = [(x + dy, y - dx) if level else (x + dx, y + dy) for dx, dy in stroke]
+        line(axes, points, look.HAIR_PT if number else look.LINE_PT)
 
 
 def teeth(axes: Axes, start: Point, end: Point) -> None:

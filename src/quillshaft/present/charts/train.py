@@ -18,7 +18,15 @@ if TYPE_CHECKING:
 
 SPEED_MM = 16.0
 WIDEST_PITCH_MM = 26.0
-LETTERS = "ABCDEFGHIJKLMNOPQRSTUVWXYZabcdefghijklmnopqrstuvwxyz"
+LAYOUTS = (
+    (8, True, False),
+    (9, True, False),
+    (11, False, False),
+    (14, False, False),
+    (9, True, True),
+    (12, False, True),
+)
+"""Columns, whether numbers are written, whether lanes are packed close: the first that fits a page is drawn."""
 
 
 @dataclass(frozen=True)
@@ -46,11 +54,16 @@ class Sheet:
 
 def train_diagram(screening: Screening) -> Figure:
     """The train: stations sized by inertia, shafts, couplings, gears and ties, with numbers where they fit."""
-    for widest, numbers in ((8, True), (9, True), (11, False), (14, False)):
-        sheet = _lay_out(screening, widest, numbers)
-        if sheet.height_mm < look.TALLEST_MM - 25.0:
+    tries = []
+    for widest, numbers, packed in LAYOUTS:
+        sheet = _lay_out(screening, widest, numbers, packed)
+        note_lines = _note_lines(screening, sheet)
+        tries.append((sheet.height_mm + len(note_lines) * look.line_mm(), sheet, note_lines))
+        if tries[-1][0] < look.TALLEST_MM - 8.0:
             break
-    note_lines = _note_lines(screening, sheet)
+    else:
+        tries.sort(key=lambda attempt: attempt[0])
+        _, sheet, note_lines = tries[0]
     foot = len(note_lines) * look.line_mm() + 3.0
     made = look.frame(train_title(screening), sheet.height_mm + foot)
     axes = look.millimetre_axes(made, 0.0, made.top_mm)
@@ -61,9 +74,9 @@ def train_diagram(screening: Screening) -> Figure:
     return made.figure
 
 
-def _lay_out(screening: Screening, widest: int, numbers: bool) -> Sheet:
+def _lay_out(screening: Screening, widest: int, numbers: bool, packed: bool) -> Sheet:
     parts = take_apart(screening.graph, widest)
-    plan = place(parts, widest)
+    plan = place(parts, widest, packed)
     cut = any(joint.cut for joint in parts.joints)
     room = look.WIDTH_MM - SPEED_MM
     pitch = min(WIDEST_PITCH_MM, room / (plan.columns + (0.5 if cut else 0.0)))
@@ -108,8 +121,9 @@ def _draw(axes: Axes, screening: Screening, sheet: Sheet) -> None:
         _draw_joint(axes, screening, sheet, joint)
     for joint, lines, offset, align in sheet.joint_labels:
         _write_joint(axes, sheet, joint, lines, offset, align)
-    for joint, name in zip(sheet.plan.lettered, LETTERS * 4, strict=False):
-        _draw_lettered(axes, screening, sheet, joint, name)
+    corners: dict[tuple[int, int], int] = {}
+    for number, joint in enumerate(sheet.plan.lettered):
+        _draw_lettered(axes, screening, sheet, joint, letters(number), corners)
     for block in sheet.blocks:
         _write_block(axes, sheet, block)
 
@@ -125,7 +139,7 @@ def _draw_lane(axes: Axes, screening: Screening, sheet: Sheet, number: int) -> N
     geared = {s for link in graph.links if link.kind in ("mesh", "epicyclic") for s in link.stations}
     for bead, spot in zip(lane.beads, spots, strict=True):
         if bead == GROUND:
-            symbols.ground(axes, spot)
+            symbols.ground(axes, spot, len(lane.beads) == 1)
             continue
         height = symbols.disc_height(float(graph.inertia_kgm2[bead]), largest)
         symbols.disc(axes, spot, height, bead in geared)
@@ -143,7 +157,16 @@ def _write_speed(axes: Axes, screening: Screening, station: int, at: tuple[float
         lines.append("reversed")
     for index, text in enumerate(lines):
         y = at[1] + (len(lines) - 1 - 2 * index) * look.line_mm() / 2
-        look.put(axes, at[0], y, text, ha="right", color=look.ACCENT, fontweight="bold" if not index else "normal")
+        look.put(
+            axes,
+            at[0],
+            y,
+            text,
+            ha="right",
+            color=look.ACCENT,
+            fontweight="bold" if not index else "normal",
+            gid="speed",
+        )
 
 
 def _half_height(screening: Screening, sheet: Sheet, end: tuple[int, int]) -> float:
@@ -178,12 +201,18 @@ def _write_joint(axes: Axes, sheet: Sheet, joint: Joint, lines: list[str], offse
         look.put(axes, sheet.x(column) + offset, y, text, ha=align, color=look.ACCENT, gid="joint")
 
 
-def _draw_lettered(axes: Axes, screening: Screening, sheet: Sheet, joint: Joint, name: str) -> None:
+def _draw_lettered(
+    axes: Axes, screening: Screening, sheet: Sheet, joint: Joint, name: str, corners: dict[tuple[int, int], int]
+) -> None:
+    """A letter at both ends; `corners` counts those already at a place, so that each takes its own corner."""
     for end, outward in zip(joint.ends, (1, -1), strict=True):
         row, column = sheet.plan.spot(end)
         x, y = sheet.x(column), sheet.rows[row].shaft_y
         if not joint.cut:
-            symbols.letter(axes, (x - 2.9, y + 2.6), name)
+            taken = corners.get((row, column), 0)
+            corners[row, column] = taken + 1
+            dx, dy = ((-2.9, 2.6), (2.9, 2.6), (-2.9, -2.6), (2.9, -2.6))[taken % 4]
+            symbols.letter(axes, (x + dx, y + dy), name)
             continue
         columns = sheet.plan.placed[end[0]].columns
         sign = -outward if columns[-1] < columns[0] else outward
@@ -220,21 +249,28 @@ def _note_lines(screening: Screening, sheet: Sheet) -> list[str]:
     graph = screening.graph
     text = (
         "Discs: height as the fourth root of inertia (solid discs of one thickness), dark where they carry teeth. "
-        "Double line: shaft. Crossed box: coupling. Ladder: gear mesh."
+        "Double line: shaft."
     )
-    if any(link.kind == "tie" for link in graph.links):
+    kinds = {link.kind for link in graph.links}
+    if "coupling" in kinds:
+        text += " Crossed box: coupling."
+    if kinds & {"mesh", "epicyclic"}:
+        text += " Ladder: gear mesh" + (", with rings: epicyclic." if "epicyclic" in kinds else ".")
+    if "tie" in kinds:
         text += " Zigzag: tie to ground."
     text += f" Speeds at rated; softest link (bold) as referred to {screening.train.operation.speed_at}."
     text += " Inertia and stiffness are actual." if sheet.numbers else " Values stand in the data tables."
-    lines = look.wrap(text, look.WIDTH_MM - 5.0)
     all_joints = sheet.plan.straight + sheet.plan.lettered
-    for joint, name in zip(sheet.plan.lettered, LETTERS * 4, strict=False):
+    for number, joint in enumerate(sheet.plan.lettered):
         if not joint.cut:
             ends = " and ".join(_bead_name(screening, sheet, end) for end in joint.ends)
-            lines += look.wrap(
-                f"{name}: {joint_text(screening, joint, all_joints)}, joins {ends}.", look.WIDTH_MM - 5.0
-            )
-    return lines
+            text += f" {letters(number)}: {joint_text(screening, joint, all_joints)}, joins {ends}."
+    return look.wrap(text, look.WIDTH_MM - 5.0)
+
+
+def letters(number: int) -> str:
+    """A, B … Z, A2, B2 …: what marks the two ends of a joint that is not drawn as a line."""
+    return chr(ord("A") + number % 26) + ("" if number < 26 else str(number // 26 + 1))
 
 
 def _bead_name(screening: Screening, sheet: Sheet, end: tuple[int, int]) -> str:

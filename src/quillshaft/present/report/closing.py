@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import Any
 
-from quillshaft.assess.results import Screening
+from quillshaft.assess.results import Interference, Screening
 from quillshaft.present.pdf.document import (
     SignatureRow,
     bullets,
@@ -18,7 +18,7 @@ from quillshaft.present.pdf.document import (
 )
 from quillshaft.present.report.findings import margin_matrix
 from quillshaft.present.report.front import proof_sentence
-from quillshaft.present.words import hertz, pair_sentence
+from quillshaft.present.words import attention_sentences, hertz
 
 CAUTIONS = (
     "The results hold for the parts, data and limits listed here and for nothing else. A margin smaller than its "
@@ -65,7 +65,11 @@ def _dismissals(screening: Screening) -> list[Any]:
     dismissed = [pair for pair in screening.interferences if pair.dismissed is not None]
     parts: list[Any] = [heading("Dismissals, exclusions and what voids the result")]
     parts.append(heading("Interferences accepted by name", 2))
-    parts += bullets([pair_sentence(screening, pair) for pair in dismissed]) or [paragraph("None.")]
+    accepted = [sentence for _, sentence in attention_sentences(screening, dismissed=True)]
+    accepted += [
+        f"{pair.source}, mode {pair.mode}: clear, the dismissal is not needed" for pair in dismissed if _is_clear(pair)
+    ]
+    parts += bullets(accepted) or [paragraph("None.")]
     if screening.stale_dismissals:
         parts.append(heading("Dismissals that were not applied", 2))
         parts += bullets(
@@ -85,6 +89,10 @@ def _dismissals(screening: Screening) -> list[Any]:
     parts.append(heading("What voids the result", 2))
     parts += bullets(VOID)
     return parts
+
+
+def _is_clear(pair: Interference) -> bool:
+    return pair.verdict == pair.worst_verdict == "clear"
 
 
 def _assumptions(screening: Screening) -> list[Any]:

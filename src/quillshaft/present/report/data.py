@@ -43,7 +43,6 @@ def data_parts(screening: Any) -> list[Any]:
         data_table(
             link_heads(screening),
             link_rows(screening),
-            column_widths=(66, 47, 66, 55, 48, 51, 44, 43, 39),
             align="lllrrrrrl",
         ),
         note(
@@ -110,18 +109,19 @@ def _shaft(shaft: Shaft, units: Any) -> str:
         return text + (f", referred to {shaft.referred_to}" if shaft.referred_to else "")
     material = shaft.material.name if shaft.material else ""
     if shaft.equivalent is not None:
-        size = f"{shaft.equivalent.length_m * 1e3:.5g} × ⌀{shaft.equivalent.diameter_m * 1e3:.5g} mm"
+        length, diameter = shaft.equivalent.length_m * units.per_m, shaft.equivalent.diameter_m * units.per_m
+        size = f"{length:.5g} × ⌀{diameter:.5g} {units.length}"
         return f"equal to a plain bar {size}, {material}"
     pieces = []
     for piece in shaft.pieces:
-        outer = "/".join(f"{value * 1e3:.4g}" for value in dict.fromkeys(piece.od_m))
-        inner = "/".join(f"{value * 1e3:.4g}" for value in dict.fromkeys(piece.id_m) if value)
-        text = f"⌀{outer}" + (f" bore {inner}" if inner else "") + f" × {piece.length_m * 1e3:.5g}"
+        outer = "/".join(f"{value * units.per_m:.4g}" for value in dict.fromkeys(piece.od_m))
+        inner = "/".join(f"{value * units.per_m:.4g}" for value in dict.fromkeys(piece.id_m) if value)
+        text = f"⌀{outer}" + (f" bore {inner}" if inner else "") + f" × {piece.length_m * units.per_m:.5g}"
         if piece.hub_m:
-            text += f" + {piece.hub_rule:.3g} · {sum(piece.hub_m) * 1e3:.4g} in hub"
+            text += f" + {piece.hub_rule:.3g} · {sum(piece.hub_m) * units.per_m:.4g} in hub"
         pieces.append(text)
     own = "own inertia lumped at both ends" if shaft.own_inertia == "ends" else "own inertia left out"
-    return f"{material}, mm: " + "; ".join(pieces) + f"; {own}"
+    return f"{material}, {units.length}: " + "; ".join(pieces) + f"; {own}"
 
 
 def _gear(gear: GearMesh | Epicyclic, units: Any) -> str:
@@ -135,7 +135,7 @@ def _gear(gear: GearMesh | Epicyclic, units: Any) -> str:
         text += " (internal)" if gear.internal else ""
         stiffness = gear.mesh_nm_rad
         if gear.mesh_n_m is not None:
-            return f"{text}, mesh {number(gear.mesh_n_m)} N/m"
+            return f"{text}, mesh {number(gear.mesh_n_m / 1e6)} N/µm"
     if stiffness is None:
         return f"{text}, rigid"
     return f"{text}, mesh {number(stiffness * units.per_nm_rad)} {units.stiffness}"
@@ -164,11 +164,16 @@ def _machine(machine: Machine) -> tuple[str, ...]:
 
 
 def _materials(train: Train) -> list[Any]:
+    units = SHOWN[train.units]
     used = {shaft.material.name: shaft.material for shaft in train.shafts if shaft.material}
     if not used:
         return []
     rows = [
-        (name, f"{item.shear_modulus_pa / 1e9:.4g} GPa", f"{item.density_kgm3:.5g} kg/m³")
+        (
+            name,
+            f"{item.shear_modulus_pa * units.per_pa:.4g} {units.modulus}",
+            f"{item.density_kgm3 * units.per_kgm3:.5g} {units.density}",
+        )
         for name, item in used.items()
     ]
     return [data_table(("Material", "shear modulus", "density"), rows, align="lrr")]

@@ -15,11 +15,12 @@ from quillshaft.present.pdf.document import (
     paragraph,
 )
 from quillshaft.present.rows import pair_row, source_rows
-from quillshaft.present.words import hertz, mode_words, pair_sentence, plain
+from quillshaft.present.words import attention_sentences, hertz, mode_words, plain
 
 RPM = 30.0 / math.pi
 SHAPES_A_FIGURE = 3
 MOST_SHAPES = 8
+HIGHEST_FIGURE_IN = 225.0 / 25.4
 
 
 def finding_parts(screening: Screening) -> list[Any]:
@@ -54,7 +55,7 @@ def _modes(screening: Screening) -> list[Any]:
     )
     if beyond:
         text += f" The {beyond} highest lie above every source and are listed without being judged."
-    table = data_table(head, rows, column_widths=(15, 16, 21, 30, 19, 60), align="rrrrrl")
+    table = data_table(head, rows, align="rrrrrl")
     return [heading("Natural frequencies and modes"), paragraph(text), table]
 
 
@@ -67,10 +68,15 @@ def _shapes(screening: Screening) -> list[Any]:
 
     shown = screening.judged_modes[:MOST_SHAPES]
     parts: list[Any] = [heading("Mode shapes", 2)] if shown else []
-    for first in range(0, len(shown), SHAPES_A_FIGURE):
-        numbers = shown[first : first + SHAPES_A_FIGURE]
+    left = list(shown)
+    while left:
+        numbers, figure = left[:SHAPES_A_FIGURE], mode_shapes(screening, left[:SHAPES_A_FIGURE])
+        while len(numbers) > 1 and figure.get_figheight() > HIGHEST_FIGURE_IN:
+            numbers = numbers[:-1]
+            figure = mode_shapes(screening, numbers)
         words = ", ".join(f"mode {number}" for number in numbers)
-        parts.append(FigureFlowable(mode_shapes(screening, numbers), bookmark_alt=f"Shape of {words}"))
+        parts.append(FigureFlowable(figure, bookmark_alt=f"Shape of {words}"))
+        left = left[len(numbers) :]
     parts += _shape_tables(screening, shown)
     return parts
 
@@ -96,7 +102,7 @@ def _shape_tables(screening: Screening, shown: tuple[int, ...]) -> list[Any]:
     align = "l" + "r" * len(columns)
     widths = (30, *([18] * len(columns)))
     return [
-        heading("Angles at the stations (actual, largest = 1)", 3),
+        heading("Angles at the stations (actual, largest = 1, positive in each shaft's own direction of rotation)", 3),
         data_table(head, angles, column_widths=widths, align=align),
         heading("Strain energy by link, %", 3),
         data_table(("Link", *head[1:]), shares, column_widths=widths, align=align),
@@ -126,8 +132,8 @@ def _interferences(screening: Screening) -> list[Any]:
         ),
         heading("What is not clear, worst first", 2),
     ]
-    counted = [pair for pair in screening.not_clear() if pair.dismissed is None]
-    parts += bullets([pair_sentence(screening, pair) for pair in counted]) or [paragraph("Nothing.")]
+    unclear = [sentence for _, sentence in attention_sentences(screening, dismissed=False)]
+    parts += bullets(unclear) or [paragraph("Nothing.")]
     parts += [heading("Critical speeds", 2), *_critical(screening)]
     return parts
 
@@ -210,20 +216,22 @@ def _damping(screening: Screening) -> list[Any]:
 
 
 def margin_matrix(screening: Screening) -> list[Any]:
-    """Every judged pair, for the appendix."""
+    """Every judged pair, a table for each mode, for the appendix."""
+    if not screening.interferences:
+        return [paragraph("No mode lies in the reach of any source.")]
     head = (
-        "Mode",
-        "Hz",
         "source",
         "critical speed, rpm",
         "margin, %",
-        "over tolerances, %",
+        "worst margin, %",
         "required, %",
-        "excit- ability",
+        "excitability",
         "nominal",
-        "over tolerances",
+        "worst case",
     )
-    rows = [pair_row(screening, pair) for pair in screening.interferences]
-    if not rows:
-        return [paragraph("No mode lies in the reach of any source.")]
-    return [data_table(head, rows, column_widths=(35, 40, 88, 46, 48, 56, 48, 40, 46, 58), align="rrlrrrrrll")]
+    parts: list[Any] = []
+    for number in screening.judged_modes:
+        rows = [pair_row(screening, pair)[2:] for pair in screening.interferences if pair.mode == number]
+        parts.append(heading(f"Mode {number}, {hertz(screening.mode(number).frequency_hz)} Hz", 3))
+        parts.append(data_table(head, rows, column_widths=(92, 54, 48, 54, 66, 74, 54, 54), align="lrrrrrll"))
+    return parts

@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 from typing import Any
 
-from quillshaft.assess.results import Screening, Verdict
+from quillshaft.assess.results import Screening
 from quillshaft.present.pdf.document import (
     FigureFlowable,
     Tone,
@@ -19,27 +19,26 @@ from quillshaft.present.pdf.document import (
 )
 from quillshaft.present.units import SHOWN
 from quillshaft.present.words import (
-    dismissed_words,
+    apart_words,
+    attention_sentences,
+    bar_words,
+    case_lines,
+    counted,
+    has_tolerances,
     hertz,
     mode_words,
     number,
-    pair_sentence,
     percent,
     plain,
     range_words,
+    unclear_cases,
+    unjudged_lines,
     verdict_sentence,
 )
 from quillshaft.version import __version__
 
 RPM = 30.0 / math.pi
 MOST_ON_PAGE_ONE = 4
-TONES: dict[Verdict, Tone] = {"clear": "pass", "barred": "restriction", "close": "fail", "crossing": "fail"}
-STAMPS: dict[Verdict, str] = {
-    "clear": "PASS: no interference within the required separation",
-    "barred": "PASS WITH RESTRICTION: barred speed ranges must be kept",
-    "close": "NOT CLEAR: forced response or a change of design is needed",
-    "crossing": "NOT CLEAR: forced response or a change of design is needed",
-}
 
 
 def report_title(screening: Screening) -> str:
@@ -72,58 +71,88 @@ def _identification(screening: Screening) -> list[Any]:
     return [heading(report_title(screening)), key_values(pairs)]
 
 
+def headline(screening: Screening) -> tuple[str, Tone]:
+    """The words of the stamp and its tone."""
+    unclear = unclear_cases(screening)
+    of_cases = f"; {unclear} of {counted(len(screening.cases or ()), 'case')} not clear" if unclear else ""
+    if screening.narrow_bars:
+        return f"NOT CLEAR: a barred speed range is too narrow{of_cases}", "fail"
+    if screening.fails:
+        return f"NOT CLEAR: forced response or a change of design is needed{of_cases}", "fail"
+    if not screening.interferences:
+        return f"NOTHING JUDGED: no mode lies in the reach of a source{apart_words(screening)}{of_cases}", "restriction"
+    if screening.gravest_verdict == "barred":
+        return (
+            f"PASS WITH RESTRICTION: barred speed ranges must be kept{apart_words(screening)}{of_cases}",
+            "restriction",
+        )
+    if apart_words(screening) or unclear or unjudged_lines(screening):
+        base = " FOR THE BASE TRAIN" if unclear else ""
+        return f"PASS{base}{apart_words(screening)}{of_cases}", "restriction"
+    return "PASS: no interference within the required separation", "pass"
+
+
 def _verdict(screening: Screening) -> list[Any]:
-    counted = [pair for pair in screening.not_clear() if pair.dismissed is None]
-    dismissed = [pair for pair in screening.interferences if pair.dismissed is not None]
     detail = f"Over the tolerances: {verdict_sentence(screening, worst=True)}"
     detail += f"\nNominal: {verdict_sentence(screening, worst=False)}"
-    text, tone = STAMPS[screening.gravest_verdict], TONES[screening.gravest_verdict]
-    if tone == "pass" and dismissed_words(screening):
-        text, tone = f"PASS{dismissed_words(screening)}: see the reasons below", "restriction"
-    parts: list[Any] = [stamp(text, tone, detail)]
-    pairs = []
+    detail += "".join(f"\n{line}" for line in (*case_lines(screening), *unjudged_lines(screening)))
+    text, tone = headline(screening)
+    parts: list[Any] = [stamp(text, tone, detail), key_values([*_governing(screening), *_basis(screening)])]
+    accepted = [sentence for _, sentence in attention_sentences(screening, dismissed=True)]
+    if accepted:
+        parts.append(heading("Accepted by name", 2))
+        parts += bullets(accepted[:MOST_ON_PAGE_ONE])
+    unclear = [sentence for _, sentence in attention_sentences(screening, dismissed=False)]
+    if unclear:
+        parts.append(heading("What is not clear, worst first", 2))
+        parts += bullets(unclear[:MOST_ON_PAGE_ONE])
+        if len(unclear) > MOST_ON_PAGE_ONE:
+            left = len(unclear) - MOST_ON_PAGE_ONE
+            parts.append(note(f"{left} more follow below the interference diagram."))
+    return parts
+
+
+def _governing(screening: Screening) -> list[tuple[str, str]]:
     governing = screening.governing()
-    if governing is not None:
-        mode = screening.mode(governing.mode)
-        low, high = mode.bounds_hz
-        pairs += [
-            ("Governing item", f"mode {mode.mode} ({mode_words(mode)}) and {governing.source}"),
-            (
-                "Its margin",
-                f"{percent(governing.margin, True)} nominal, {percent(governing.worst_margin, True)} over the "
-                f"tolerances; required {plain(governing.required)} and {plain(governing.worst_required)}",
-            ),
-            (
-                "Its uncertainty",
-                f"natural frequency {hertz(mode.frequency_hz)} Hz, {hertz(low)} to {hertz(high)} Hz over all "
-                "tolerances together",
-            ),
-        ]
-    pairs += [
+    if governing is None:
+        return []
+    mode = screening.mode(governing.mode)
+    low, high = mode.bounds_hz
+    margin = (
+        f"{percent(governing.margin, True)} nominal, {percent(governing.worst_margin, True)} over the tolerances; "
+        f"required {plain(governing.required)} and {plain(governing.worst_required)}"
+    )
+    span = f"{hertz(low)} to {hertz(high)} Hz over all tolerances together"
+    return [
+        ("Governing item", f"mode {mode.mode} ({mode_words(mode)}) and {governing.source}"),
+        ("Its margin", margin + bar_words(governing)),
+        (
+            "Its uncertainty",
+            f"natural frequency {hertz(mode.frequency_hz)} Hz, "
+            + (span if has_tolerances(screening) else "no tolerances considered"),
+        ),
+    ]
+
+
+def _basis(screening: Screening) -> list[tuple[str, str]]:
+    dismissed = sum(pair.dismissed is not None for pair in screening.interferences)
+    off = ", ".join(source.name for source, _ in screening.sources_off)
+    rows = [
         ("Judged range", range_words(screening)),
         (
             "Assumed",
-            f"{len(screening.assumed)} values that the file does not state (listed under Assumptions); "
-            f"{len(screening.flags)} questions about the data",
+            f"{counted(len(screening.assumed), 'value')} that the file does not state (listed under Assumptions); "
+            f"{counted(len(screening.flags), 'question')} about the data",
         ),
         (
             "Dismissed",
-            f"{len(dismissed)} interferences accepted by name; {len(screening.stale_dismissals)} dismissals "
-            "stated but not applied",
+            f"{counted(dismissed, 'interference')} accepted by name; "
+            f"{counted(len(screening.stale_dismissals), 'dismissal')} stated but not applied",
         ),
-        ("Numerical proof", proof_sentence(screening)),
     ]
-    parts.append(key_values(pairs))
-    if dismissed:
-        parts.append(heading("Accepted by name", 2))
-        parts += bullets([pair_sentence(screening, pair) for pair in dismissed[:MOST_ON_PAGE_ONE]])
-    if counted:
-        parts.append(heading("What is not clear, worst first", 2))
-        parts += bullets([pair_sentence(screening, pair) for pair in counted[:MOST_ON_PAGE_ONE]])
-        if len(counted) > MOST_ON_PAGE_ONE:
-            left = len(counted) - MOST_ON_PAGE_ONE
-            parts.append(note(f"{left} more under Interferences."))
-    return parts
+    if off:
+        rows.append(("Switched off", f"{off} (reasons under Dismissals)"))
+    return [*rows, ("Numerical proof", proof_sentence(screening))]
 
 
 def proof_sentence(screening: Screening) -> str:
@@ -168,11 +197,13 @@ def _power(screening: Screening) -> list[Any]:
         return [paragraph("No power is given: mean torques and wind-up are not worked out.")]
     units, graph = SHOWN[screening.train.units], screening.graph
     rows = []
-    for name, watts in power.stations_w.items():
-        ratio = graph.speed_ratio[graph.number(name)]
-        speed = screening.train.operation.rated_rad_s * abs(float(ratio))
-        shown = "balance" if watts is None else f"{number(watts / 1e3 * units.per_kw)} {units.power}"
-        torque = "–" if watts is None else f"{number(watts / speed * units.per_nm)} {units.torque}"
+    for name, watts in screening.station_power_w:
+        ratio = float(graph.speed_ratio[graph.number(name)])
+        speed = screening.train.operation.rated_rad_s * ratio
+        shown = f"{number(watts / 1e3 * units.per_kw)} {units.power}"
+        if power.stations_w[name] is None:
+            shown += " (balance)"
+        torque = f"{number(watts / abs(speed) * units.per_nm)} {units.torque}"
         rows.append((name, shown, f"{speed * RPM:.1f}", torque))
     table = data_table(("Station", "mean power, + drives", "rpm", "mean torque there"), rows, align="lrrr")
     law = power.law

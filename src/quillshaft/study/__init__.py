@@ -1,0 +1,1 @@
+"""Questions over many solves: stiffness windows, comparison of cases, tolerance, drift."""

@@ -1,0 +1,260 @@
+"""Drift: one number of the file taken from one value to another, and where interferences first appear on the way."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable
+from dataclasses import dataclass
+
+import numpy as np
+
+from quillshaft.assess.results import Verdict
+from quillshaft.assess.separation import judged_ranges, required_separation
+from quillshaft.graph.build import build_graph
+from quillshaft.graph.network import Floats, Network
+from quillshaft.graph.torsional import TorsionalGraph
+from quillshaft.solve.modes import natural_frequencies
+from quillshaft.sources.collect import collect_sources
+from quillshaft.study.bands import SourceBand, source_bands
+from quillshaft.study.datum import Datum, DatumError, find_datum, read_values, spelled, train_at
+from quillshaft.train.model import Train
+from quillshaft.train.problems import TrainFileError
+
+TWO_PI = 2.0 * math.pi
+RESOLUTION = 1e-9  # of the span: how closely a first appearance is found
+EDGE = 1e-13  # relative: how sharp the edges of a band are while a first appearance is looked for
+INSIDE = -1  # the slot of a frequency inside a band; others count the bands below it
+MOST_STEPS = 10_001
+
+Progress = Callable[[int, int], None]
+Bands = tuple[tuple[SourceBand, ...], ...]
+
+
+@dataclass(frozen=True)
+class FirstInterference:
+    """A pair that is clear at the start and becomes not clear on the way.
+
+    at_value      where it first is not clear by the nominal requirement
+    frequency_hz  of the mode there
+    required      separation that the criteria ask for at nominal values
+    verdict       close, crossing or barred, just there
+    meets_at      where mode and source first meet; None where they do not within the sweep
+    """
+
+    source: str
+    mode: int
+    at_value: float
+    frequency_hz: float
+    required: float
+    verdict: Verdict
+    meets_at: float | None
+
+
+@dataclass(frozen=True)
+class StartInterference:
+    """A pair that is not clear at the start already, and where it then first meets, if it does."""
+
+    source: str
+    mode: int
+    verdict: Verdict
+    meets_at: float | None
+
+
+@dataclass(frozen=True)
+class Drift:
+    """The whole result of a sweep.
+
+    train           as it stands in the file, cases laid
+    unit            of all values, as it was given; "" where bare numbers were given
+    values          (steps,) from start to end
+    frequency_hz    (steps, modes) rising along each row; inf where a mode is gone (its inertia became zero)
+    sources         names of the continuous sources, and bands[step][source] where each excites
+    first           in the order in which they appear on the way
+    at_start        what is not clear at the start already
+    moves           False where neither a frequency nor a source depends on the datum
+    """
+
+    train: Train
+    datum: str
+    unit: str
+    values: Floats
+    frequency_hz: Floats
+    sources: tuple[str, ...]
+    bands: tuple[Bands, ...]
+    first: tuple[FirstInterference, ...]
+    at_start: tuple[StartInterference, ...]
+    moves: bool
+
+
+@dataclass(frozen=True)
+class _Point:
+    """The train at one value: frequencies [Hz] (modes,), bands of each source, and the slots of both kinds.
+
+    wide, tight     (sources, modes) slot among the bands with separation, and among those of the sources alone
+    """
+
+    frequency: Floats
+    bands: Bands
+    wide: Floats
+    tight: Floats
+
+
+@dataclass
+class _Sweep:
+    """What is known so far along the sweep."""
+
+    datum: Datum
+    unit: str
+    names: tuple[str, ...]
+    points: dict[float, _Point]
+
+    def at(self, value: float) -> _Point:
+        """The train at a value, solved once."""
+        if value not in self.points:
+            self.points[value] = _point(self, value)
+        return self.points[value]
+
+
+def drift_network(graph: TorsionalGraph) -> Network:
+    """The network whose natural frequencies drift."""
+    return graph.network
+
+
+def drift(
+    train: Train,
+    datum: str,
+    values_from: str | float,
+    values_to: str | float,
+    steps: int = 41,
+    progress: Progress | None = None,
+) -> Drift:
+    """Take one datum of the train's file from one value to another, the train's cases laid, all else nominal.
+
+    Values are texts with a unit, or bare numbers, as the file would spell them. Modes are numbered by rising
+    frequency at every value. A first appearance is bracketed by the steps and found by bisection to 1e-9 of
+    the span; an interference that comes and goes by the same side between two steps is not seen.
+
+    Raises DatumError where the datum or a value cannot be used, TrainFileError where the train cannot turn.
+    """
+    if not 2 <= steps <= MOST_STEPS:
+        raise DatumError(f"steps = {steps}: a sweep has 2 to {MOST_STEPS} values")
+    found = find_datum(train, datum)
+    ends = read_values(found, values_from, values_to)
+    values = np.linspace(ends.start, ends.end, steps)
+    first = train_at(found, spelled(ends.start, ends.unit))
+    active = collect_sources(first, build_graph(first)).active
+    names = tuple(source.name for source in active if source.when == "continuous")
+    sweep = _Sweep(found, ends.unit, names, {})
+    points = []
+    for number, value in enumerate(values.tolist(), start=1):
+        points.append(sweep.at(value))
+        if progress is not None:
+            progress(number, steps)
+    appear, there = _appearances(sweep, values.tolist(), first)
+    modes = max(len(point.frequency) for point in points)
+    along = np.full((steps, modes), math.inf)
+    for row, point in zip(along, points, strict=True):
+        row[: len(point.frequency)] = point.frequency
+    return Drift(
+        train=train,
+        datum=datum,
+        unit=ends.unit,
+        values=values,
+        frequency_hz=along,
+        sources=names,
+        bands=tuple(point.bands for point in points),
+        first=appear,
+        at_start=there,
+        moves=bool((along != along[0]).any()) or any(point.bands != points[0].bands for point in points),
+    )
+
+
+def _point(sweep: _Sweep, value: float) -> _Point:
+    try:
+        train = train_at(sweep.datum, spelled(value, sweep.unit))
+        graph = build_graph(train)
+        active = collect_sources(train, graph).active
+    except TrainFileError as error:
+        raise DatumError(f"datum = {sweep.datum.name}: at {spelled(value, sweep.unit)}:\n{error}") from None
+    ranges, criteria = judged_ranges(train.operation), train.criteria
+    by_name = {name: source for source in reversed(active) for name in source.origins}
+    bands = []
+    for name in sweep.names:
+        if name not in by_name:
+            raise DatumError(f"datum = {sweep.datum.name}: at {value:g} there is no source {name} any more")
+        source = by_name[name]
+        required = required_separation(source, criteria.separation)
+        bands.append(source_bands(source, ranges, required, criteria.margin_on, EDGE))
+    frequency = natural_frequencies(drift_network(graph)) / TWO_PI
+    wide = np.array([_slots(frequency, [band.not_clear for band in own]) for own in bands])
+    tight = np.array([_slots(frequency, [band.meets for band in own], closed=True) for own in bands])
+    shape = (len(bands), len(frequency))
+    return _Point(frequency, tuple(bands), wide.reshape(shape), tight.reshape(shape))
+
+
+def _slots(frequency: Floats, bands: list[tuple[float, float]], closed: bool = False) -> Floats:
+    """(modes,) INSIDE, or how many bands lie below each frequency."""
+    low, high = np.array(bands).T[:, :, None]
+    inside = (low <= frequency) & (frequency <= high) if closed else (low < frequency) & (frequency < high)
+    slots: Floats = np.where(inside.any(axis=0), INSIDE, (high <= frequency).sum(axis=0))
+    return slots
+
+
+def _appearances(
+    sweep: _Sweep, values: list[float], first: Train
+) -> tuple[tuple[FirstInterference, ...], tuple[StartInterference, ...]]:
+    start, found, there = sweep.at(values[0]), [], []
+    by_name = {source.name: source for source in collect_sources(first, build_graph(first)).active}
+    for row, name in enumerate(sweep.names):
+        required = required_separation(by_name[name], first.criteria.separation)
+        for mode in range(len(start.frequency)):
+            meets = _first_change(sweep, values, row, mode, "tight")
+            if start.wide[row, mode] == INSIDE:
+                verdict = _verdict(start, row, mode)
+                already = start.tight[row, mode] == INSIDE
+                there.append(StartInterference(name, mode + 1, verdict, values[0] if already else meets))
+                continue
+            at = _first_change(sweep, values, row, mode, "wide")
+            if at is not None:
+                point = sweep.at(at)
+                verdict = _verdict(point, row, mode)
+                hertz = float(point.frequency[mode]) if mode < len(point.frequency) else math.inf
+                found.append(FirstInterference(name, mode + 1, at, hertz, required, verdict, meets))
+    found.sort(key=lambda item: abs(item.at_value - values[0]))
+    return tuple(found), tuple(there)
+
+
+def _first_change(sweep: _Sweep, values: list[float], row: int, mode: int, kind: str) -> float | None:
+    """The first value at which a mode leaves its slot; None where it never does."""
+
+    def slot(value: float) -> int:
+        point = sweep.at(value)
+        slots: Floats = getattr(point, kind)
+        return int(slots[row, mode]) if mode < slots.shape[1] else len(point.bands[row])
+
+    began = slot(values[0])
+    if began == INSIDE:
+        return None
+    place = next((index for index, value in enumerate(values) if slot(value) != began), None)
+    if place is None:
+        return None
+    clear, changed = values[place - 1], values[place]
+    while abs(changed - clear) > RESOLUTION * abs(values[-1] - values[0]):
+        middle = 0.5 * (clear + changed)
+        if middle in (clear, changed):
+            break
+        clear, changed = (clear, middle) if slot(middle) != began else (middle, changed)
+    return changed
+
+
+def _verdict(point: _Point, row: int, mode: int) -> Verdict:
+    """What a pair inside a band is there: meeting in a free stretch, only in a barred one, or too close."""
+    frequency = point.frequency[mode] if mode < len(point.frequency) else math.inf
+    met = [
+        band
+        for band in point.bands[row]
+        if band.meets[0] * (1 - RESOLUTION) <= frequency <= band.meets[1] * (1 + RESOLUTION)
+    ]
+    if not met:
+        return "close"
+    return "barred" if all(band.barred for band in met) else "crossing"
