@@ -18,7 +18,7 @@ STATIONS, SOURCES, RUNS = 30, 40, 60
 
 
 def long_train(stations: int) -> Screening:
-    """A geared train of shafts and couplings with 40 sources judged."""
+    """A geared train of two shaft lines with 40 sources judged: 35 fixed ones, 1x and 2x of both, the mesh."""
     rng = np.random.default_rng(5)
     names = [f"s{i}" for i in range(stations)]
     inertia = dict(zip(names, (10 ** rng.uniform(-1, 1.5, stations)).tolist(), strict=True))
@@ -32,7 +32,7 @@ def long_train(stations: int) -> Screening:
         for i, f in enumerate((10 ** rng.uniform(0.5, 2.5, SOURCES - 5)).tolist())
     }
     return screening_of(
-        train_text(inertia, couplings=links, gears={"g": mesh | geometry}, excitations=pulses,
+        train_text(inertia, shafts=links, gears={"g": mesh | geometry}, excitations=pulses,
                    assumptions={"tolerances": "default"})
     )  # fmt: skip
 
@@ -47,7 +47,7 @@ def seconds(work) -> float:
 @pytest.mark.benchmark
 def test_windows_of_30_stations_and_40_sources_take_under_5_ms():
     screening = long_train(STATIONS)
-    assert sum(source.when == "continuous" for source in screening.sources) >= SOURCES
+    assert sum(source.when == "continuous" for source in screening.sources) == SOURCES
     links = [link.name for link in screening.graph.links]
     for link in links:
         stiffness_windows(screening, link)

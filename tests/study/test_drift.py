@@ -10,7 +10,7 @@ import pytest
 from quillshaft.study.datum import DatumError
 from quillshaft.study.drift import drift
 from train_files import MORE, TEXT, screened
-from trains import train, train_text
+from trains import screening_of, train, train_text
 
 TWO_PI = 2 * math.pi
 
@@ -147,6 +147,29 @@ def test_barred_ranges_are_named_so():
     one = next(item for item in found.first if item.source.endswith("1x"))
     assert one.verdict == "crossing"
     assert one.at_value == pytest.approx((TWO_PI * 10) ** 2 * 120 / 26 / 1e3, abs=1e-6)
+
+
+def softening(stiffness: str) -> str:
+    """A pump whose coupling stiffens with mean torque, over 900 to 1500 rpm with a square load."""
+    points = {"0 kN m": "60 kN m/rad", "3 kN m": stiffness, "8 kN m": "200 kN m/rad"}
+    return train_text(
+        {"motor": 20.0, "pump": 6.0},
+        operation={"rated": "1500 rpm", "range": ["900 rpm", "1500 rpm"]},
+        power={"motor": "900 kW", "pump": "balance", "law": "square"},
+        couplings={"rubber": {"between": ["motor", "pump"], "stiffness": points, "kind": "elastomer"}},
+    )
+
+
+def test_where_frequencies_follow_speed_the_screening_turns_at_the_value_found():
+    datum = 'couplings.rubber.stiffness."3 kN m"'
+    found = drift(train(softening("90 kN m/rad")), datum, "90 kN m/rad", "180 kN m/rad", steps=7)
+    first = next(item for item in found.first if item.source == "motor 2x")
+
+    def verdict(value):
+        screening = screening_of(softening(f"{value!r} kN m/rad"))
+        return next(item.verdict for item in screening.interferences if item.source == "motor 2x" and item.mode == 1)
+
+    assert (verdict(first.at_value * 0.99), verdict(first.at_value * 1.01)) == ("clear", "close")
 
 
 def test_members_of_lists_are_counted_from_one():

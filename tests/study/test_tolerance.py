@@ -292,6 +292,26 @@ def test_a_train_without_elastic_modes_is_a_result():
     assert study.any_not_clear.certain == "never"
 
 
+def test_where_a_mode_follows_speed_it_is_judged_along_the_speed():
+    """J = 20 and 6 kg·m² on a stiffness that rises with torque: clear of 1x by the verdict along the speed."""
+    points = {"0 kN m": "60 kN m/rad", "3 kN m": "90 kN m/rad", "8 kN m": "200 kN m/rad"}
+    text = train_text(
+        {"motor": 20.0, "pump": 6.0},
+        operation={"rated": "1500 rpm", "range": ["900 rpm", "1500 rpm"]},
+        power={"motor": "900 kW", "pump": "balance", "law": "square"},
+        couplings={
+            "rubber": {"between": ["motor", "pump"], "stiffness": points, "kind": "elastomer", "tolerance": "15 %"}
+        },
+    )
+    screening = screening_of(text)
+    study = tolerance_study(screening, 4_000)
+    for item in study.pairs:
+        assert (item.not_clear.certain == "never") == (item.pair.worst_verdict == "clear")
+    risky = next(item for item in study.pairs if item.pair.source == "motor 1x")
+    assert risky.pair.verdict == "clear"
+    assert 0.0 < risky.not_clear.probability < 0.5
+
+
 def test_a_dismissed_pair_is_left_out_of_the_chance_of_any():
     dismissal = {"d": {"source": "hum", "mode": 1, "frequency": "10 Hz", "because": "agreed", "by": "A. N."}}
     study = tolerance_study(two_discs("5 %", frequency=10.0, dismissals=dismissal), 200)

@@ -13,7 +13,7 @@ from quillshaft.assess.results import Screening
 from quillshaft.graph.build import build_graph
 from quillshaft.solve.modes import natural_frequencies
 from random_trains import Draft, free_motions, random_draft
-from trains import screening_of, train
+from trains import screening_of, sources_of, train
 
 
 @dataclass(frozen=True)
@@ -55,8 +55,8 @@ def case_of(seed: int, decades: float = 3.0, **more) -> Case | None:
         for i in range(3)
     }
     tables = {"excitations": pulses, **more}
-    plain = screening_of(draft.text(**tables))
-    off = {s.name: "not asked about" for s in plain.sources if s.name not in pulses}
+    active = sources_of(draft.text(**tables)).active
+    off = {source.name: "not asked about" for source in active if source.name not in pulses}
     tables["excitations_off"] = off
     return Case(draft, tables, rng.choice(names), screening_of(draft.text(**tables)))
 

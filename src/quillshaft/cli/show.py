@@ -6,7 +6,14 @@ from rich.console import Console
 
 from quillshaft.assess.results import Screening
 from quillshaft.present import tables
-from quillshaft.present.words import case_lines, counted, range_words, unjudged_lines, verdict_sentence
+from quillshaft.present.words import (
+    case_lines,
+    counted,
+    range_words,
+    temperature_words,
+    unjudged_lines,
+    verdict_sentence,
+)
 
 MOST_SHOWN = 12
 
@@ -16,7 +23,8 @@ def _head(screening: Screening, out: Console) -> None:
     tag = f" ({train.tag})" if train.tag else ""
     case = f", case {' + '.join(train.cases)}" if train.cases else ""
     out.print(f"{train.title}{tag}{case}", style="bold")
-    out.print(f"Judged range: {range_words(screening)}")
+    state = temperature_words(screening)
+    out.print(f"Judged range: {range_words(screening)}" + (f"; {state}" if state else ""))
 
 
 def show_screening(screening: Screening, out: Console, every: bool) -> None:

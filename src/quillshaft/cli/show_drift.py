@@ -18,4 +18,7 @@ def show_drift(drift: Drift, out: Console) -> None:
     for line in words.drift_sentences(drift):
         out.print(line)
     out.print()
-    out.print(make_table(words.drift_table_title(drift), words.drift_heads(drift), words.drift_rows(drift)))
+    out.print(words.drift_table_title(drift), style="bold")
+    table = make_table("", words.drift_heads(drift), words.drift_rows(drift))
+    table.title = None  # it would be folded to the table's width
+    out.print(table)

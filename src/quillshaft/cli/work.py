@@ -13,20 +13,36 @@ from typing import TYPE_CHECKING
 from quillshaft.assess.results import Screening
 from quillshaft.assess.screening import screen
 from quillshaft.cli.output import make_folder, refuse, write_whole
+from quillshaft.graph.states import Temperature
 from quillshaft.train.document import read_document
 from quillshaft.train.overlay import case_names
 from quillshaft.train.problems import TrainFileError
+from quillshaft.train.quantity import QuantityError, read_quantity
 from quillshaft.train.read import load, train_of
 
 if TYPE_CHECKING:
     from matplotlib.figure import Figure
 
 
-def screened(path: Path, cases: list[str] | None) -> Screening:
+def temperature_of(text: str | None) -> Temperature:
+    """State of the couplings from the command line; leaves with exit code 2 where it is none."""
+    if text is None:
+        return "reference"
+    if text == "cold":
+        return "cold"
+    if text == "hot":
+        return "hot"
+    try:
+        return float(read_quantity(text, "temperature", "SI").value)
+    except QuantityError as error:
+        refuse(f'--at {text}: {error.message}. Allowed: cold | hot | a temperature such as "65 degC"')
+
+
+def screened(path: Path, cases: list[str] | None, temperature: Temperature = "reference") -> Screening:
     """Load and screen; leaves with exit code 2 and every problem on standard error when the file is bad."""
     try:
         train = load(path, tuple(cases or ()))
-        return screen(train)
+        return screen(train, temperature)
     except TrainFileError as error:
         refuse(str(error))
 

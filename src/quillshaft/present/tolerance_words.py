@@ -56,6 +56,11 @@ def study_sentences(study: ToleranceStudy) -> list[str]:
     lines += [
         f"Group {group} is named by one element only: nothing moves together with it." for group in study.lone_groups
     ]
+    if any(mode.frequency_along is not None for mode in study.screening.modes):
+        lines.append(
+            "Frequencies follow speed here: those listed stand at the mean torque of rated speed, and a variant is "
+            "judged with its frequency changing along the speed in the same ratio as the nominal one."
+        )
     if not any(item.varies for item in study.inputs):
         lines.append("No element has a tolerance: every sample is the nominal train.")
     return lines

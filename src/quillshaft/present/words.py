@@ -156,7 +156,8 @@ def same_line(screening: Screening, pairs: Iterable[Interference]) -> list[list[
     for pair in pairs:
         source = screening.source(pair.source)
         line = (round(source.order * source.speed_ratio, 9), source.frequency_hz, source.band)
-        verdicts = (pair.verdict, pair.worst_verdict, pair.required, pair.worst_required)
+        kind = (source.action.kind, source.action.kind == "point" and len(source.action.stations) > 1)
+        verdicts = (kind, pair.verdict, pair.worst_verdict, pair.required, pair.worst_required)
         groups.setdefault((pair.mode, line, verdicts, pair.dismissed), []).append(pair)
     return list(groups.values())
 
@@ -194,10 +195,15 @@ def pair_verdict(pair: Interference) -> str:
 def attention_sentences(screening: Screening, dismissed: bool) -> list[tuple[str, str]]:
     """(verdict in words, sentence) of what is not clear, worst first: the dismissed ones, or all others."""
     pairs = [pair for pair in screening.not_clear() if (pair.dismissed is not None) == dismissed]
-    return [
-        (pair_verdict(group[0]), group_sentence(screening, group))
-        for group in same_line(screening, pairs)
-    ]
+    return [(pair_verdict(group[0]), group_sentence(screening, group)) for group in same_line(screening, pairs)]
+
+
+def temperature_words(screening: Screening) -> str:
+    """The state of the couplings, or nothing where they stand at 30 °C."""
+    state = screening.temperature
+    if isinstance(state, float):
+        return f"couplings at {state - 273.15:.4g} °C"
+    return "" if state == "reference" else f"couplings {state}"
 
 
 def range_words(screening: Screening) -> str:

@@ -7,9 +7,8 @@ import math
 import numpy as np
 
 from quillshaft.assess.results import Interference, Screening
-from quillshaft.assess.separation import judged_ranges
 from quillshaft.graph.network import Bools, Floats
-from quillshaft.study.bands import SourceBand, source_bands
+from quillshaft.study.bands import SourceBand, pair_bands
 from quillshaft.study.tolerance_results import Certain, Chance, PairChance
 
 NORMAL_95 = 1.959963984540054
@@ -29,16 +28,12 @@ def chance(count: int, samples: int, certain: Certain | None = None) -> Chance:
 
 def judged(screening: Screening, frequency: Floats) -> tuple[tuple[PairChance, ...], Chance]:
     """Every judged pair, and whether any not dismissed is not clear."""
-    train = screening.train
-    ranges, samples = judged_ranges(train.operation), len(frequency)
-    none = np.zeros(samples, dtype=bool)
-    any_bad, pairs = none.copy(), []
-    sure = False
+    samples = len(frequency)
+    any_bad, pairs, sure = np.zeros(samples, dtype=bool), [], False
     for pair in screening.interferences:
-        bands = source_bands(screening.source(pair.source), ranges, pair.worst_required, train.criteria.margin_on)
-        own = frequency[:, pair.mode - 1]
-        bounds = screening.mode(pair.mode).bounds_hz
-        item, bad = _pair_chance(pair, bands, own, bounds)
+        mode, own = screening.mode(pair.mode), frequency[:, pair.mode - 1]
+        bounds = mode.bounds_hz if mode.frequency_along is None else None
+        item, bad = _pair_chance(pair, pair_bands(screening, pair), own, bounds)
         pairs.append(item)
         if pair.dismissed is None and bad is not None:
             any_bad |= bad
@@ -49,14 +44,19 @@ def judged(screening: Screening, frequency: Floats) -> tuple[tuple[PairChance, .
 
 
 def _pair_chance(
-    pair: Interference, bands: tuple[SourceBand, ...], own: Floats, bounds: tuple[float, float]
+    pair: Interference, bands: tuple[SourceBand, ...], own: Floats, bounds: tuple[float, float] | None
 ) -> tuple[PairChance, Bools | None]:
-    """The chances of one pair, and in which samples it is not clear; None where the bounds rule it out."""
+    """The chances of one pair, and in which samples it is not clear; None where that is ruled out.
+
+    `bounds` of the frequency decide it alone where they can; without them (a mode that follows speed) only the
+    verdict over the tolerances does.
+    """
     wide = [band.not_clear for band in bands]
     meet = [band.meets for band in bands]
-    if not any(low < bounds[1] and bounds[0] < high for low, high in wide):
-        never = chance(0, len(own), "never")
-        return PairChance(pair, never, never), None
+    never = pair.worst_verdict == "clear" if bounds is None else _certain(bounds, wide) == "never"
+    if never:
+        ruled_out = chance(0, len(own), "never")
+        return PairChance(pair, ruled_out, ruled_out), None
     bad, met = _inside(own, wide), _inside(own, meet)
     return (
         PairChance(
@@ -75,7 +75,10 @@ def _inside(own: Floats, bands: list[tuple[float, float]]) -> Bools:
     return inside
 
 
-def _certain(bounds: tuple[float, float], bands: list[tuple[float, float]]) -> Certain | None:
+def _certain(bounds: tuple[float, float] | None, bands: list[tuple[float, float]]) -> Certain | None:
+    """What bounds alone say of bands; None where they leave it open, or where there are none."""
+    if bounds is None:
+        return None
     if any(low < bounds[0] and bounds[1] < high for low, high in bands):
         return "always"
     return None if any(low < bounds[1] and bounds[0] < high for low, high in bands) else "never"

@@ -9,25 +9,18 @@ from dataclasses import dataclass
 import numpy as np
 
 from quillshaft.assess.results import Verdict
-from quillshaft.assess.separation import judged_ranges, required_separation
+from quillshaft.assess.separation import required_separation
 from quillshaft.graph.build import build_graph
-from quillshaft.graph.network import Floats, Network
-from quillshaft.graph.torsional import TorsionalGraph
-from quillshaft.solve.modes import natural_frequencies
+from quillshaft.graph.network import Floats
 from quillshaft.sources.collect import collect_sources
-from quillshaft.study.bands import SourceBand, source_bands
-from quillshaft.study.datum import Datum, DatumError, find_datum, read_values, spelled, train_at
+from quillshaft.study.datum import DatumError, find_datum, read_values, spelled, train_at
+from quillshaft.study.drift_points import INSIDE, Bands, Point, Sweep
 from quillshaft.train.model import Train
-from quillshaft.train.problems import TrainFileError
 
-TWO_PI = 2.0 * math.pi
 RESOLUTION = 1e-9  # of the span: how closely a first appearance is found
-EDGE = 1e-13  # relative: how sharp the edges of a band are while a first appearance is looked for
-INSIDE = -1  # the slot of a frequency inside a band; others count the bands below it
 MOST_STEPS = 10_001
 
 Progress = Callable[[int, int], None]
-Bands = tuple[tuple[SourceBand, ...], ...]
 
 
 @dataclass(frozen=True)
@@ -86,40 +79,6 @@ class Drift:
     moves: bool
 
 
-@dataclass(frozen=True)
-class _Point:
-    """The train at one value: frequencies [Hz] (modes,), bands of each source, and the slots of both kinds.
-
-    wide, tight     (sources, modes) slot among the bands with separation, and among those of the sources alone
-    """
-
-    frequency: Floats
-    bands: Bands
-    wide: Floats
-    tight: Floats
-
-
-@dataclass
-class _Sweep:
-    """What is known so far along the sweep."""
-
-    datum: Datum
-    unit: str
-    names: tuple[str, ...]
-    points: dict[float, _Point]
-
-    def at(self, value: float) -> _Point:
-        """The train at a value, solved once."""
-        if value not in self.points:
-            self.points[value] = _point(self, value)
-        return self.points[value]
-
-
-def drift_network(graph: TorsionalGraph) -> Network:
-    """The network whose natural frequencies drift."""
-    return graph.network
-
-
 def drift(
     train: Train,
     datum: str,
@@ -144,7 +103,7 @@ def drift(
     first = train_at(found, spelled(ends.start, ends.unit))
     active = collect_sources(first, build_graph(first)).active
     names = tuple(source.name for source in active if source.when == "continuous")
-    sweep = _Sweep(found, ends.unit, names, {})
+    sweep = Sweep(found, ends.unit, names)
     points = []
     for number, value in enumerate(values.tolist(), start=1):
         points.append(sweep.at(value))
@@ -169,39 +128,8 @@ def drift(
     )
 
 
-def _point(sweep: _Sweep, value: float) -> _Point:
-    try:
-        train = train_at(sweep.datum, spelled(value, sweep.unit))
-        graph = build_graph(train)
-        active = collect_sources(train, graph).active
-    except TrainFileError as error:
-        raise DatumError(f"datum = {sweep.datum.name}: at {spelled(value, sweep.unit)}:\n{error}") from None
-    ranges, criteria = judged_ranges(train.operation), train.criteria
-    by_name = {name: source for source in reversed(active) for name in source.origins}
-    bands = []
-    for name in sweep.names:
-        if name not in by_name:
-            raise DatumError(f"datum = {sweep.datum.name}: at {value:g} there is no source {name} any more")
-        source = by_name[name]
-        required = required_separation(source, criteria.separation)
-        bands.append(source_bands(source, ranges, required, criteria.margin_on, EDGE))
-    frequency = natural_frequencies(drift_network(graph)) / TWO_PI
-    wide = np.array([_slots(frequency, [band.not_clear for band in own]) for own in bands])
-    tight = np.array([_slots(frequency, [band.meets for band in own], closed=True) for own in bands])
-    shape = (len(bands), len(frequency))
-    return _Point(frequency, tuple(bands), wide.reshape(shape), tight.reshape(shape))
-
-
-def _slots(frequency: Floats, bands: list[tuple[float, float]], closed: bool = False) -> Floats:
-    """(modes,) INSIDE, or how many bands lie below each frequency."""
-    low, high = np.array(bands).T[:, :, None]
-    inside = (low <= frequency) & (frequency <= high) if closed else (low < frequency) & (frequency < high)
-    slots: Floats = np.where(inside.any(axis=0), INSIDE, (high <= frequency).sum(axis=0))
-    return slots
-
-
 def _appearances(
-    sweep: _Sweep, values: list[float], first: Train
+    sweep: Sweep, values: list[float], first: Train
 ) -> tuple[tuple[FirstInterference, ...], tuple[StartInterference, ...]]:
     start, found, there = sweep.at(values[0]), [], []
     by_name = {source.name: source for source in collect_sources(first, build_graph(first)).active}
@@ -224,7 +152,7 @@ def _appearances(
     return tuple(found), tuple(there)
 
 
-def _first_change(sweep: _Sweep, values: list[float], row: int, mode: int, kind: str) -> float | None:
+def _first_change(sweep: Sweep, values: list[float], row: int, mode: int, kind: str) -> float | None:
     """The first value at which a mode leaves its slot; None where it never does."""
 
     def slot(value: float) -> int:
@@ -247,12 +175,14 @@ def _first_change(sweep: _Sweep, values: list[float], row: int, mode: int, kind:
     return changed
 
 
-def _verdict(point: _Point, row: int, mode: int) -> Verdict:
+def _verdict(point: Point, row: int, mode: int) -> Verdict:
     """What a pair inside a band is there: meeting in a free stretch, only in a barred one, or too close."""
-    frequency = point.frequency[mode] if mode < len(point.frequency) else math.inf
+    if mode >= len(point.frequency):
+        return "close"
+    frequency = point.frequency[mode]
     met = [
         band
-        for band in point.bands[row]
+        for band in point.by_mode[mode][row]
         if band.meets[0] * (1 - RESOLUTION) <= frequency <= band.meets[1] * (1 + RESOLUTION)
     ]
     if not met:

@@ -109,6 +109,8 @@ def stiffness_windows(
     fitted, worst, excused, cases = _gather(screening, found, asked, wanted, factors)
     fitted, both, excused = (_inside(causes, search) for causes in (fitted, [*fitted, *worst], excused))
     verdicts = _verdicts(screening, asked, wanted)
+    never = _never_clear(both, search)
+    stuck = {pair.source for pair in never}
     return Windows(
         link=link,
         nominal_nm_rad=found.stiffness_nm_rad or 0.0,
@@ -126,8 +128,8 @@ def stiffness_windows(
         dismissed=tuple(excused),
         nominal_verdict=verdicts[0],
         worst_verdict=verdicts[1],
-        cannot_clear=_never_clear(fitted, search),
-        cannot_clear_worst=_never_clear(both, search),
+        cannot_clear=_never_clear([cause for cause in fitted if cause.source in stuck], search),
+        cannot_clear_worst=never,
         over_speeds=cases > 1,
     )
 

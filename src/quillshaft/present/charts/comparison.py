@@ -25,7 +25,7 @@ NAMES_MM = 31.0
 """Where the names of the sources begin, right of the plot."""
 PLOT_MM = look.WIDTH_MM - LEFT_MM - RIGHT_MM
 BODY_MM = 104.0
-FOOT_MM = 14.5
+FOOT_MM = 17.5
 HEAD_MM = 6.0
 LABEL_MM = look.SMALL_PT * look.POINT_MM * 1.25
 BEFORE, AFTER = 0.22, 0.78
@@ -215,6 +215,7 @@ def _write_key(made: look.Frame, view: _View) -> None:
         "Grey: a source over the judged range, named at the right; between dashes no mode may stand. Uprights: the",
         "mode over all tolerances. Mark: gravest verdict over the tolerances (circle: meets, triangle: too close,",
         "square: meets in a barred range, dot: clear), filled where it is as grave nominally. Logarithmic scale.",
+        "Dismissed pairs leave no mark.",
     ]
     if any(item.renumbered for item in view.modes):
         lines[-1] += " Heavy: renumbered."

@@ -45,12 +45,15 @@ def entry(screening: Screening, mark: PairMark) -> str:
 
 
 def _entries(screening: Screening, marks: Sequence[PairMark]) -> list[list[list[str]]]:
-    """One column of wrapped entries up to three marks, two beyond."""
-    columns = 1 if len(marks) <= 3 else 2
-    wide = look.WIDTH_MM / columns - TEXT_MM - 4.0
-    wrapped = [look.wrap(entry(screening, mark), wide) for mark in marks]
-    rows = -(-len(marks) // columns)
-    return [wrapped[start : start + rows] for start in range(0, len(wrapped), max(1, rows))]
+    """One column of wrapped entries up to three marks or where names are long, else two."""
+    texts = [entry(screening, mark) for mark in marks]
+    half = look.WIDTH_MM / 2.0 - TEXT_MM - 4.0
+    long = any(look.width_mm(word) > half for text in texts for word in text.split())
+    columns = 1 if long or len(marks) <= 3 else 2
+    wide = half if columns == 2 else look.WIDTH_MM - TEXT_MM - 4.0
+    wrapped = [look.wrap(text, wide) for text in texts]
+    rows = max(1, -(-len(marks) // columns))
+    return [wrapped[start : start + rows] for start in range(0, len(wrapped), rows)]
 
 
 def _entries_height(columns: list[list[list[str]]]) -> float:

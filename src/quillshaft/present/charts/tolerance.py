@@ -6,12 +6,11 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from quillshaft.assess.separation import judged_ranges
 from quillshaft.present.charts import look
 from quillshaft.present.charts.spread import spread
 from quillshaft.present.tolerance_words import DISTRIBUTION_WORDS, chance_text, risk_title
 from quillshaft.present.words import hertz
-from quillshaft.study.bands import source_bands
+from quillshaft.study.bands import pair_bands
 from quillshaft.study.tolerance_results import ModeSpread, ToleranceStudy
 
 if TYPE_CHECKING:
@@ -77,16 +76,14 @@ def _span(study: ToleranceStudy, rows: list[ModeSpread]) -> tuple[float, float]:
 
 
 def _near(study: ToleranceStudy, mode: ModeSpread, span: tuple[float, float]) -> list[_Near]:
-    train, found = study.screening.train, []
-    ranges = judged_ranges(train.operation)
+    found = []
     for item in study.pairs:
         if item.pair.mode != mode.mode:
             continue
-        source = study.screening.source(item.pair.source)
-        for band in source_bands(source, ranges, item.pair.worst_required, train.criteria.margin_on):
+        for band in pair_bands(study.screening, item.pair):
             meets, around = _deviations(mode, band.meets), _deviations(mode, band.not_clear)
             if around[0] < span[1] and span[0] < around[1]:
-                found.append(_Near(source.name, meets, around))
+                found.append(_Near(item.pair.source, meets, around))
     return found
 
 

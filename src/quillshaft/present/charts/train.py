@@ -211,8 +211,8 @@ def _draw_lettered(
         if not joint.cut:
             taken = corners.get((row, column), 0)
             corners[row, column] = taken + 1
-            dx, dy = ((-2.9, 2.6), (2.9, 2.6), (-2.9, -2.6), (2.9, -2.6))[taken % 4]
-            symbols.letter(axes, (x + dx, y + dy), name)
+            side, up = ((-1, 1), (1, 1), (-1, -1), (1, -1))[taken % 4]
+            symbols.letter(axes, (x + side * (2.9 + 3.3 * (taken // 4)), y + 2.6 * up), name)
             continue
         columns = sheet.plan.placed[end[0]].columns
         sign = -outward if columns[-1] < columns[0] else outward

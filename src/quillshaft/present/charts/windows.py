@@ -14,7 +14,7 @@ from quillshaft.present.charts.phrases import listed
 from quillshaft.present.charts.spread import spread
 from quillshaft.present.charts.window_axes import LogScale, box, draw_frame, draw_x_axis, draw_y_axis
 from quillshaft.present.units import SHOWN
-from quillshaft.present.window_words import narrowed_text, pairs_text, range_text, shown_stiffness
+from quillshaft.present.window_words import dismissed_sentence, narrowed_text, pairs_text, range_text, shown_stiffness
 from quillshaft.study.window_bands import Band
 from quillshaft.study.window_curves import WindowCurves, window_curves
 from quillshaft.study.window_tally import Blocked
@@ -57,7 +57,9 @@ class Drawing:
 def windows_chart(screening: Screening, windows: Windows) -> Figure:
     """Natural frequencies against the stiffness of one link, source bands, forbidden and recommended ranges."""
     curves = window_curves(screening, windows)
-    notes = look.wrap(READING, look.WIDTH_MM - 2.0)
+    dismissed = dismissed_sentence(windows)
+    reading = READING if dismissed is None else f"{READING} {dismissed}"
+    notes = look.wrap(reading, look.WIDTH_MM - 2.0)
     foot = len(notes) * look.line_mm() + 2.0
     bars = foot + AXIS_MM
     plot = bars + 2 * BAR_MM + LABEL_MM + 4.5

@@ -7,9 +7,9 @@ from typing import Any
 
 from quillshaft.present.pdf.document import data_table, heading, note, paragraph
 from quillshaft.present.rows import link_heads, link_rows, station_heads, station_rows, tolerance_words
-from quillshaft.present.units import SHOWN
+from quillshaft.present.units import SHOWN, ShownUnits
 from quillshaft.present.words import number, plain
-from quillshaft.train.model import Epicyclic, GearMesh, Machine, Provenance, Shaft, Tolerance, Train
+from quillshaft.train.model import Coupling, Epicyclic, GearMesh, Machine, Provenance, Shaft, Tolerance, Train
 
 Row = tuple[str, str, str, str, str]
 
@@ -89,8 +89,7 @@ def _elements(train: Train, units: Any) -> Iterator[Row]:
         text = _shaft(shaft, units)
         yield _row(train, f"shafts.{shaft.name}", text, shaft.tolerance, shaft.provenance)
     for coupling in train.couplings:
-        text = f"{coupling.kind or 'coupling'}, {number(coupling.stiffness_nm_rad * units.per_nm_rad, 5)} "
-        text += units.stiffness
+        text = f"{coupling.kind or 'coupling'}, {_coupling_stiffness(coupling, units)}"
         if coupling.rated_torque_nm is not None:
             text += f", rated {number(coupling.rated_torque_nm * units.per_nm)} {units.torque}"
         if coupling.shaft_in_hub is not None:
@@ -122,6 +121,22 @@ def _shaft(shaft: Shaft, units: Any) -> str:
         pieces.append(text)
     own = "own inertia lumped at both ends" if shaft.own_inertia == "ends" else "own inertia left out"
     return f"{material}, {units.length}: " + "; ".join(pieces) + f"; {own}"
+
+
+def _coupling_stiffness(coupling: Coupling, units: ShownUnits) -> str:
+    """Stiffness as stated: one number, or against mean torque, with its factors against temperature."""
+    text = f"{number(coupling.stiffness_nm_rad * units.per_nm_rad, 5)} {units.stiffness}"
+    if coupling.stiffness_points:
+        points = [
+            f"{number(stiffness * units.per_nm_rad)} at {number(torque * units.per_nm)} {units.torque}"
+            for torque, stiffness in coupling.stiffness_points
+        ]
+        text = f"{units.stiffness}: {', '.join(points)} mean torque"
+    for word, table in (("stiffness", coupling.temperature_points), ("damping", coupling.damping_points)):
+        if table:
+            factors = ", ".join(f"{number(factor)} at {kelvin - 273.15:.4g} °C" for kelvin, factor in table)
+            text += f"; {word} times {factors}"
+    return text
 
 
 def _gear(gear: GearMesh | Epicyclic, units: Any) -> str:

@@ -31,6 +31,7 @@ from quillshaft.present.words import (
     percent,
     plain,
     range_words,
+    temperature_words,
     unclear_cases,
     unjudged_lines,
     verdict_sentence,
@@ -137,8 +138,9 @@ def _governing(screening: Screening) -> list[tuple[str, str]]:
 def _basis(screening: Screening) -> list[tuple[str, str]]:
     dismissed = sum(pair.dismissed is not None for pair in screening.interferences)
     off = ", ".join(source.name for source, _ in screening.sources_off)
+    state = temperature_words(screening)
     rows = [
-        ("Judged range", range_words(screening)),
+        ("Judged range", range_words(screening) + (f"; {state}" if state else "")),
         (
             "Assumed",
             f"{counted(len(screening.assumed), 'value')} that the file does not state (listed under Assumptions); "
