@@ -5,9 +5,9 @@ from __future__ import annotations
 import math
 
 import pytest
-from trains import refusal, screening_of, train_text
 
 from quillshaft.present.words import bar_words, verdict_sentence
+from trains import refusal, screening_of, train_text
 
 FREQUENCY = math.sqrt(1e5 * (1 / 2.0 + 1 / 3.0)) / (2 * math.pi)  # two discs (Den Hartog): 45.944 Hz
 CRITICAL = 60 * FREQUENCY / 2  # 2x of the shaft meets it at 1378.3 rpm

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import pytest
-from trains import screening_of, train_text
 
 from quillshaft.present.report.front import headline
 from quillshaft.present.words import (
@@ -15,6 +14,7 @@ from quillshaft.present.words import (
     unjudged_lines,
     verdict_sentence,
 )
+from trains import screening_of, train_text
 
 STATIONS = {"a": 2.0, "b": 3.0}
 SHAFT = {"s": ("a", "b", "0.1 MN m/rad")}  # 45.944 Hz

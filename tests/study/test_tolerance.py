@@ -11,7 +11,7 @@ import pytest
 
 from quillshaft.solve.modes import natural_frequencies, natural_modes
 from quillshaft.study.inputs import inputs_of, sensitivities, vary
-from quillshaft.study.spread import DISTRIBUTIONS, deviations, standard_deviations
+from quillshaft.study.spread import DISTRIBUTIONS
 from quillshaft.study.tolerance import tolerance_study
 from quillshaft.study.variants import variant_frequencies
 from random_trains import random_draft
@@ -242,26 +242,6 @@ def test_drivers_are_ranked_by_their_share_of_the_sampled_variance():
             if (item.element, item.quantity, item.station) == (driver.element, driver.quantity, driver.station)
         )
         assert driver.share == pytest.approx(shares[number], abs=0.02)
-
-
-@pytest.mark.parametrize("kind", DISTRIBUTIONS)
-@pytest.mark.parametrize(("low", "high"), [(-0.1, 0.1), (-0.05, 0.2), (0.0, 0.1), (-0.1, 0.0)])
-def test_deviations_stay_inside_and_have_the_stated_spread(kind, low, high):
-    ends = np.array([low]), np.array([high])
-    share = (np.arange(100_000) + 0.5) / 100_000
-    drawn = deviations(kind, share[:, None], *ends)[:, 0]
-    assert (drawn >= low).all()
-    assert (drawn <= high).all()
-    assert (np.diff(drawn) >= 0).all()
-    assert drawn.std() == pytest.approx(standard_deviations(kind, *ends)[0], rel=1e-4)
-    if kind != "uniform":
-        assert (drawn < 0).mean() == pytest.approx(-low / (high - low), abs=1e-4)
-
-
-def test_normal_takes_the_tolerance_as_two_standard_deviations_cut_off():
-    """Standard normal between ±2: variance 1 − 2·2 φ(2)/(2 Φ(2) − 1) = 0.7737 (Johnson and Kotz, from memory)."""
-    deviation = standard_deviations("normal", np.array([-0.1]), np.array([0.1]))[0]
-    assert deviation == pytest.approx(0.05 * math.sqrt(0.77374), rel=1e-4)
 
 
 def test_the_same_seed_gives_the_same_result_whoever_solves_it():

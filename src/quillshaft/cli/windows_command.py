@@ -49,9 +49,9 @@ def windows(
     ] = None,
     orders: Annotated[str, typer.Option(metavar="major|all", help="Engine orders to count.")] = "all",
     factors: Annotated[
-        tuple[float, float],
-        typer.Option(metavar="LOW HIGH", help="Lowest and highest stiffness factor over temperature."),
-    ] = (1.0, 1.0),
+        tuple[float, float] | None,
+        typer.Option(metavar="LOW HIGH", help="Stiffness factors over temperature (default: the coupling's table)."),
+    ] = None,
     points: Annotated[int, typer.Option(metavar="N", help="Lines of the map of two links.")] = 97,
     json: Annotated[
         str | None, typer.Option("--json", metavar="PATH", help="Write the numbers as JSON; - is standard output.")
@@ -130,7 +130,7 @@ def _one_link(
     link: str,
     search: Range | None,
     asked: Asked,
-    factors: Range,
+    factors: Range | None,
     json: str | None,
     charts: Path | None,
 ) -> None:
@@ -158,7 +158,7 @@ def _two_links(
     links: tuple[str, str],
     searches: list[Range | None],
     asked: Asked,
-    factors: Range,
+    factors: Range | None,
     points: int,
     json: str | None,
     charts: Path | None,

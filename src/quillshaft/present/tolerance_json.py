@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import Any
 
 from quillshaft.present.results_json import to_json
-from quillshaft.study.tolerance_results import Chance, PairChance, ToleranceStudy
+from quillshaft.study.tolerance_results import Chance, ModeSpread, PairChance, ToleranceStudy
 from quillshaft.version import __version__
 
 
@@ -32,6 +32,17 @@ def _pair(item: PairChance) -> dict[str, Any]:
     }
 
 
+def _mode(mode: ModeSpread) -> dict[str, Any]:
+    return {
+        "mode": mode.mode,
+        "nominal_hz": mode.nominal_hz,
+        "low_hz": mode.low_hz,
+        "high_hz": mode.high_hz,
+        "p05_hz": mode.p05_hz,
+        "p95_hz": mode.p95_hz,
+    }
+
+
 def tolerance_data(study: ToleranceStudy) -> dict[str, Any]:
     """A tolerance study as plain data; `low_hz` and `high_hz` are the bounds, the probability is of "not clear"."""
     train = study.screening.train
@@ -46,17 +57,7 @@ def tolerance_data(study: ToleranceStudy) -> dict[str, Any]:
         "bounds": study.bounds,
         "bounds_because": study.bounds_because,
         "any_not_clear": _chance(study.any_not_clear),
-        "modes": [
-            {
-                "mode": mode.mode,
-                "nominal_hz": mode.nominal_hz,
-                "low_hz": mode.low_hz,
-                "high_hz": mode.high_hz,
-                "p05_hz": mode.p05_hz,
-                "p95_hz": mode.p95_hz,
-            }
-            for mode in study.modes
-        ],
+        "modes": [_mode(mode) for mode in study.modes],
         "interferences": [_pair(item) for item in study.pairs],
         "drivers": [
             {

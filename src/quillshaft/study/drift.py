@@ -110,10 +110,7 @@ def drift(
         if progress is not None:
             progress(number, steps)
     appear, there = _appearances(sweep, values.tolist(), first)
-    modes = max(len(point.frequency) for point in points)
-    along = np.full((steps, modes), math.inf)
-    for row, point in zip(along, points, strict=True):
-        row[: len(point.frequency)] = point.frequency
+    along = _stacked([point.frequency for point in points])
     return Drift(
         train=train,
         datum=datum,
@@ -126,6 +123,14 @@ def drift(
         at_start=there,
         moves=bool((along != along[0]).any()) or any(point.bands != points[0].bands for point in points),
     )
+
+
+def _stacked(rows: list[Floats]) -> Floats:
+    """(steps, modes) frequencies, inf where a mode is gone."""
+    along = np.full((len(rows), max(map(len, rows))), math.inf)
+    for place, row in zip(along, rows, strict=True):
+        place[: len(row)] = row
+    return along
 
 
 def _appearances(

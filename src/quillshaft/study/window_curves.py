@@ -12,8 +12,9 @@ from quillshaft.graph.network import Floats, Network
 from quillshaft.graph.torsional import GraphLink
 from quillshaft.solve.modes import natural_frequencies
 from quillshaft.solve.plan import plan_elimination
+from quillshaft.study.speed_cases import speed_cases
 from quillshaft.study.window_bands import Band, source_bands, sources_asked
-from quillshaft.study.window_tally import find_spring, speed_cases
+from quillshaft.study.window_tally import find_spring
 from quillshaft.study.windows import Windows
 
 CURVE_POINTS = 121

@@ -15,20 +15,19 @@ import numpy as np
 
 from quillshaft.assess.results import Screening
 from quillshaft.graph.torsional import GraphLink
+from quillshaft.study.speed_cases import Networks, SpeedCase, speed_cases, temperature_factors
 from quillshaft.study.window_bands import AskError, Orders, source_bands, sources_asked
 from quillshaft.study.window_curves import with_stiffness
 from quillshaft.study.window_ranges import Range, common, left_over
 from quillshaft.study.window_tally import (
-    Networks,
-    SpeedCase,
     Tally,
+    at_speeds,
     blocked,
     find_spring,
     opened_at,
-    speed_cases,
     tally,
 )
-from quillshaft.study.windows import NO_CHANGE, check_factors, check_modes, search_range, spans, stiffness_windows
+from quillshaft.study.windows import check_factors, check_modes, search_range, spans, stiffness_windows
 
 POINTS = 97
 MOST_BOXES = 4
@@ -102,7 +101,7 @@ def window_map(
     orders: Orders = "all",
     sources: Sequence[str] | None = None,
     modes: Sequence[int] | None = None,
-    factors: tuple[Range, Range] = (NO_CHANGE, NO_CHANGE),
+    factors: tuple[Range | None, Range | None] = (None, None),
     progress: Callable[[int, int], None] | None = None,
 ) -> WindowMap:
     """Exact windows of link A at `points` stiffnesses of link B and more, and the boxes of both that are clear.
@@ -116,16 +115,24 @@ def window_map(
         raise AskError(f"{points} points: a map needs two at least")
     first, second = find_spring(screening, link_a), find_spring(screening, link_b)
     asked, wanted = sources_asked(screening, sources, orders), check_modes(screening, modes)
-    for pair in factors:
+    widened = [
+        temperature_factors(screening, link.name) if given is None else given
+        for link, given in zip((first, second), factors, strict=True)
+    ]
+    for pair in widened:
         check_factors(pair)
     searches = search_range(first, searches_nm_rad[0]), search_range(second, searches_nm_rad[1])
-    grid = _grid(screening, second, searches[1], points, (orders, sources, modes, factors[1]))
+    grid = _grid(screening, second, searches[1], points, (orders, sources, modes, widened[1]))
     lines = []
     cases = [(case, source_bands(screening, asked, case.ranges_rad_s)) for case in speed_cases(screening)]
     plans = [opened_at(case.networks.nominal, first).plan for case, _ in cases]
     for done, stiffness in enumerate(grid, start=1):
         tallies = tuple(
-            tally(screening, _refitted(case, second, stiffness, factors[1]), first, bands, factors[0], plan)
+            at_speeds(
+                tally(screening, _refitted(case, second, stiffness, widened[1]), first, bands, widened[0], plan),
+                case,
+                first,
+            )
             for (case, bands), plan in zip(cases, plans, strict=True)
         )
         lines.append(_Line(_map_line(stiffness, tallies, searches[0], wanted), tallies))

@@ -15,29 +15,13 @@ from quillshaft.graph.network import Floats, Network
 from quillshaft.graph.torsional import GraphLink
 from quillshaft.solve.link_counts import LinkCounts, OpenLink, link_counts, open_link
 from quillshaft.solve.plan import Plan
+from quillshaft.study.speed_cases import Networks, SpeedCase
 from quillshaft.study.window_bands import AskError, Band
 from quillshaft.study.window_ranges import Range, common, left_over
 from quillshaft.train.model import Dismissal
 from quillshaft.train.problems import did_you_mean
 
 TWO_PI = 2.0 * math.pi
-
-
-@dataclass(frozen=True)
-class Networks:
-    """A train in numbers: nominal, and at the corners of all tolerances."""
-
-    nominal: Network
-    soft_heavy: Network
-    stiff_light: Network
-
-
-@dataclass(frozen=True)
-class SpeedCase:
-    """Networks and the ranges of speed [rad/s] in which they hold."""
-
-    networks: Networks
-    ranges_rad_s: tuple[Range, ...]
 
 
 class Blocked(NamedTuple):
@@ -82,13 +66,6 @@ class _Known:
 
     frequency_hz: Floats
     stiffness_nm_rad: float
-
-
-def speed_cases(screening: Screening) -> tuple[SpeedCase, ...]:
-    """The networks to use and the speeds they hold for; one set for the whole range where none depends on speed."""
-    graph = screening.graph
-    networks = Networks(graph.network, graph.soft_heavy, graph.stiff_light)
-    return (SpeedCase(networks, screening.train.operation.ranges_rad_s),)
 
 
 def find_spring(screening: Screening, name: str) -> GraphLink:
@@ -153,6 +130,15 @@ def tally(
     }
     shares = ((1.0 + link.tolerance[0]) * factors[0], (1.0 + link.tolerance[1]) * factors[1])
     return Tally(bands, low, high, soft_high, stiff_low, dismissed, scale, shares)
+
+
+def at_speeds(counted: Tally, case: SpeedCase, link: GraphLink) -> Tally:
+    """The counts for a link that itself follows torque: its stiffness at rated torque stands for the curve."""
+    if link.name not in case.link_share:
+        return counted
+    here, low, high = case.link_share[link.name]
+    shares = (counted.shares[0] * low / here, counted.shares[1] * high / here)
+    return replace(counted, referred_per_actual=counted.referred_per_actual * here, shares=shares)
 
 
 def _dismissals(screening: Screening, bands: Sequence[Band]) -> list[Dismissal]:

@@ -17,9 +17,10 @@ from dataclasses import dataclass
 from quillshaft.assess.results import SEVERITY, Screening, Verdict
 from quillshaft.graph.torsional import GraphLink
 from quillshaft.sources.line import Source
+from quillshaft.study.speed_cases import speed_cases, temperature_factors
 from quillshaft.study.window_bands import AskError, Orders, source_bands, sources_asked
 from quillshaft.study.window_ranges import Range, covered, left_over, union
-from quillshaft.study.window_tally import Blocked, blocked, find_spring, speed_cases, tally
+from quillshaft.study.window_tally import Blocked, at_speeds, blocked, find_spring, tally
 
 REACH = 20.0
 """The search runs from nominal over this to nominal times this, unless told."""
@@ -93,17 +94,19 @@ def stiffness_windows(
     orders: Orders = "all",
     sources: Sequence[str] | None = None,
     modes: Sequence[int] | None = None,
-    factors: Range = NO_CHANGE,
+    factors: Range | None = None,
 ) -> Windows:
     """The forbidden, allowed and recommended stiffnesses [N·m/rad] of one link, for every source and mode.
 
     `sources` and `modes` narrow the question; `orders` = "major" leaves minor engine orders out. `factors`
-    are the lowest and highest stiffness factors of the link over temperature; they act on `recommended`.
+    are the lowest and highest stiffness factors of the link over temperature, by default those of its own
+    table; they act on `recommended`.
     Raises AskError when the link is unknown or no spring, a source or mode is unknown, or a range is reversed.
     """
     found = find_spring(screening, link)
     asked = sources_asked(screening, sources, orders)
     wanted = check_modes(screening, modes)
+    factors = temperature_factors(screening, found.name) if factors is None else factors
     check_factors(factors)
     search = search_range(found, search_nm_rad)
     fitted, worst, excused, cases = _gather(screening, found, asked, wanted, factors)
@@ -148,12 +151,26 @@ def _gather(
     cases = speed_cases(screening)
     for case in cases:
         bands = source_bands(screening, asked, case.ranges_rad_s)
-        counted = tally(screening, case.networks, link, bands, factors)
+        counted = at_speeds(tally(screening, case.networks, link, bands, factors), case, link)
         for at_worst in (False, True):
             found, forgiven = blocked(counted, at_worst, modes)
             (worst if at_worst else fitted).extend(found)
             excused += forgiven
+    if len(cases) > 1:
+        fitted, worst, excused = (_joined(causes) for causes in (fitted, worst, excused))
     return fitted, worst, excused, len(cases)
+
+
+def _joined(causes: Sequence[Blocked]) -> list[Blocked]:
+    """Causes of one source and mode joined where the speeds they come from overlap in stiffness."""
+    groups: dict[tuple[str, int], list[Blocked]] = {}
+    for cause in causes:
+        groups.setdefault((cause.source, cause.mode), []).append(cause)
+    return [
+        Blocked(low, high, source, mode)
+        for (source, mode), group in groups.items()
+        for low, high in union(sorted(spans(group)))
+    ]
 
 
 def check_modes(screening: Screening, modes: Sequence[int] | None) -> tuple[int, ...] | None:

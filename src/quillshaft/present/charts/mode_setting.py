@@ -16,6 +16,8 @@ END_MM = 5.0
 NARROWEST_MM = 12.5
 LABEL_MM = look.line_mm() + 1.5
 CAPTION_MM = 64.0
+HEAD_MM = look.line_mm() + 1.2
+"""Height over the strips of a row that holds their captions."""
 SMALLEST = 0.0005
 """Shares below this are not mentioned."""
 
@@ -131,7 +133,7 @@ def names_height(setting: Setting, run: Strip) -> float:
 
 def row_height(setting: Setting, row: tuple[Strip, ...]) -> float:
     """Height [mm] of a row of strips with their captions and names."""
-    caption = look.line_mm() + 0.5 if any(run.caption for run in row) else 0.0
+    caption = HEAD_MM if any(run.caption for run in row) else 0.0
     actual = look.line_mm() if setting.actual else 0.0
     names = max(names_height(setting, run) for run in row)
     return caption + setting.curve_mm + names + actual + 1.5

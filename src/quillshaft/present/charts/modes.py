@@ -9,6 +9,7 @@ from quillshaft.assess.results import ModeResult, Screening
 from quillshaft.present.charts import look
 from quillshaft.present.charts.mode_setting import (
     BAR_MM,
+    HEAD_MM,
     SMALLEST,
     Setting,
     Shares,
@@ -57,7 +58,7 @@ def _draw_mode(made: look.Frame, setting: Setting, mode: ModeResult, top_mm: flo
     for row in setting.rows:
         left = 0.0
         for run in row:
-            head = look.line_mm() + 0.5 if any(other.caption for other in row) else 0.0
+            head = HEAD_MM if any(other.caption for other in row) else 0.0
             draw_strip(made, setting, run, mode, (left, y), head)
             left += strip_width(run, setting.pitch_mm)
         y -= row_height(setting, row)

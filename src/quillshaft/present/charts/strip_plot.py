@@ -28,7 +28,7 @@ def draw_strip(
     if run.caption:
         head = look.millimetre_axes(made, top, corner_mm[1])
         text = look.shorten(capital(run.caption), strip_width(run, setting.pitch_mm) - LEFT_MM - 1.5)
-        look.put(head, left, head_mm / 2, text, ha="left", color=look.QUIET, gid="caption")
+        look.put(head, left, head_mm - look.line_mm() / 2, text, ha="left", color=look.QUIET, gid="caption")
     pitch = setting.pitch_mm
     width = START_MM + pitch * max(0.6, len(run.stations) - 1) + 1.0
     axes = look.plot_axes(made, (left, top - setting.curve_mm, width, setting.curve_mm))

@@ -211,8 +211,7 @@ def _draw_lettered(
         if not joint.cut:
             taken = corners.get((row, column), 0)
             corners[row, column] = taken + 1
-            side, up = ((-1, 1), (1, 1), (-1, -1), (1, -1))[taken % 4]
-            symbols.letter(axes, (x + side * (2.9 + 3.3 * (taken // 4)), y + 2.6 * up), name)
+            symbols.letter(axes, _corner(x, y, taken), name)
             continue
         columns = sheet.plan.placed[end[0]].columns
         sign = -outward if columns[-1] < columns[0] else outward
@@ -220,6 +219,14 @@ def _draw_lettered(
         draw = symbols.coupling if _is_coupling(screening, joint) and outward > 0 else symbols.shaft
         draw(axes, (x, y), (far, y))
         symbols.letter(axes, (far, y), name)
+
+
+def _corner(x: float, y: float, taken: int) -> tuple[float, float]:
+    """Where the next letter stands at a place: its four corners, then on to the right."""
+    if taken < 4:
+        side, up = ((-1, 1), (1, 1), (-1, -1), (1, -1))[taken]
+        return x + 2.9 * side, y + 2.6 * up
+    return x + 2.9 + 3.3 * ((taken - 2) // 2), y + (2.6 if taken % 2 == 0 else -2.6)
 
 
 def _is_coupling(screening: Screening, joint: Joint) -> bool:
