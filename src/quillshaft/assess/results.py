@@ -121,7 +121,7 @@ class Interference:
         return short or abs(self.free_worst_margin) < self.worst_required - EQUAL
 
 
-def _badness(pair: Interference) -> tuple[bool, int, int, bool, float]:
+def _badness(pair: Interference) -> tuple[bool, int, int, bool, float, float]:
     """Sorting key, the worst first: counted, gravest verdict, nominal verdict, excited, least margin to spare."""
     excited = pair.worst_excitability is None or pair.worst_excitability >= NEAR_NODE
     return (
@@ -130,6 +130,7 @@ def _badness(pair: Interference) -> tuple[bool, int, int, bool, float]:
         -SEVERITY[pair.verdict],
         not excited,
         min(abs(pair.margin) - pair.required, abs(pair.worst_margin) - pair.worst_required),
+        abs(pair.margin),
     )
 
 

@@ -87,10 +87,11 @@ def separate(
     for stretch in ranges:
         band = frequencies_over(source, stretch.low_rad_s, stretch.high_rad_s)
         margin = _margin(natural_hz, band, margin_on)
+        first_free = margin == 0.0 and not stretch.barred and not meets_free
+        if first_free or abs(margin) < abs(best.margin):
+            best = Separation(margin, _nearest_speed(source, stretch, middle), "clear")
         meets_free |= margin == 0.0 and not stretch.barred
         meets_barred |= margin == 0.0 and stretch.barred
-        if abs(margin) < abs(best.margin):
-            best = Separation(margin, _nearest_speed(source, stretch, middle), "clear")
     return judged(best, meets_free, meets_barred, required)
 
 

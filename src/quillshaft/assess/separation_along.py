@@ -71,9 +71,10 @@ def separate_along(
     meets: set[bool] = set()
     for stretch in ranges:
         margin, speed = _stretch_margin(source, track, band, stretch, margin_on)
+        first_free = margin == 0.0 and not stretch.barred and False not in meets
         if margin == 0.0:
             meets.add(stretch.barred)
-        if abs(margin) < abs(best.margin):
+        if first_free or abs(margin) < abs(best.margin):
             best = Separation(margin, speed, "clear")
     return judged(best, False in meets, True in meets, required)
 

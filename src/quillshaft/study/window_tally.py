@@ -93,7 +93,7 @@ def spring_links(screening: Screening) -> tuple[GraphLink, ...]:
 
 
 def opened_at(network: Network, link: GraphLink, plan: Plan | None = None) -> OpenLink:
-    """The network with the stiffness of one spring link open."""
+    """The network with the stiffness of one spring link open. Raises AskError for a link that is no spring."""
     if link.slot not in ("spring", "tie", "torque"):
         raise AskError(f"link {link.name}: it is not a spring")
     return open_link(network, link.slot, link.index, plan)

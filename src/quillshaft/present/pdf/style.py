@@ -23,7 +23,7 @@ TEXT_WIDTH_PT = 459.0
 """Width of the text on both page sizes; a figure made this wide keeps its type size."""
 TOP_MARGIN_PT = 82.0
 BOTTOM_MARGIN_PT = 70.0
-FIGURE_HEIGHT_LIMIT_PT = 510.0
+FIGURE_HEIGHT_LIMIT_PT = 600.0
 
 ACCENT: Color = HexColor(0x2B3A4A)
 TEXT: Color = HexColor(0x16191C)

@@ -14,13 +14,14 @@ from quillshaft.present.pdf.document import (
     note,
     paragraph,
 )
+from quillshaft.present.pdf.style import FIGURE_HEIGHT_LIMIT_PT
 from quillshaft.present.rows import pair_row, source_rows
 from quillshaft.present.words import attention_sentences, hertz, mode_words, plain
 
 RPM = 30.0 / math.pi
 SHAPES_A_FIGURE = 3
 MOST_SHAPES = 8
-HIGHEST_FIGURE_IN = 225.0 / 25.4
+HIGHEST_FIGURE_IN = FIGURE_HEIGHT_LIMIT_PT / 72.0
 
 
 def finding_parts(screening: Screening) -> list[Any]:
@@ -53,7 +54,9 @@ def _modes(screening: Screening) -> list[Any]:
         "inertia tolerances together: frequencies rise with every stiffness and fall with every inertia. Where "
         "ranges of neighbouring modes overlap, the shape may change inside them."
     )
-    if beyond:
+    if beyond == 1:
+        text += " The highest lies above every source and is listed without being judged."
+    elif beyond:
         text += f" The {beyond} highest lie above every source and are listed without being judged."
     table = data_table(head, rows, align="rrrrrl")
     return [heading("Natural frequencies and modes"), paragraph(text), table]
@@ -233,5 +236,5 @@ def margin_matrix(screening: Screening) -> list[Any]:
     for number in screening.judged_modes:
         rows = [pair_row(screening, pair)[2:] for pair in screening.interferences if pair.mode == number]
         parts.append(heading(f"Mode {number}, {hertz(screening.mode(number).frequency_hz)} Hz", 3))
-        parts.append(data_table(head, rows, column_widths=(92, 54, 48, 54, 66, 74, 54, 54), align="lrrrrrll"))
+        parts.append(data_table(head, rows, column_widths=(100, 50, 52, 54, 60, 70, 52, 52), align="lrrrrrll"))
     return parts
