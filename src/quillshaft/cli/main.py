@@ -20,7 +20,7 @@ from quillshaft.cli.windows_command import windows
 if TYPE_CHECKING:
     from quillshaft.study.levers import WaysOut
 
-gc.set_threshold(100_000, 50, 50)  # start-up makes many objects that live to the end
+gc.set_threshold(500_000, 50, 50)  # start-up makes many objects that live to the end: look for garbage rarely
 
 app = typer.Typer(
     help="Torsional analysis of drivetrains, from the train file to a report ready for sign-off.",
@@ -212,6 +212,8 @@ def run() -> None:
     except OSError as error:
         sys.stderr.write(f"The output cannot be written: {error.strerror or error}\n")
         raise SystemExit(2) from None
+    finally:
+        gc.freeze()  # and do not look through all of them once more on the way out
 
 
 if __name__ == "__main__":
