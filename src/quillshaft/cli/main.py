@@ -165,9 +165,24 @@ def report(
         typer.Option(metavar="FILE.pdf", help="Default: reports/, named after document and revision."),
     ] = None,
     json: JsonPath = None,
+    windows: Annotated[
+        list[str] | None, typer.Option("--windows", metavar="LINK", help="Add the stiffness windows of this link.")
+    ] = None,
+    compare: Annotated[
+        list[str] | None, typer.Option("--compare", metavar="CASE", help="Add this case before and after.")
+    ] = None,
+    tolerance: Annotated[int | None, typer.Option(metavar="N", help="Add a tolerance study of N samples.")] = None,
+    seed: Annotated[int, typer.Option(help="Seed of the tolerance study.")] = 1,
+    drift: Annotated[
+        tuple[str, str, str] | None, typer.Option(metavar="DATUM FROM TO", help="Add the drift of one number.")
+    ] = None,
+    temperatures: Annotated[bool, typer.Option(help="Add the couplings cold, at 30 degC and hot.")] = False,
+    levers: Annotated[bool, typer.Option(help="Add the cheapest ways out of each interference.")] = False,
+    questions: Annotated[bool, typer.Option(help="Add the questions to each supplier.")] = False,
     strict: Annotated[bool, typer.Option(help="Exit with 3 when the worst case is not clear.")] = False,
 ) -> None:
-    """Write the report as PDF."""
+    """Write the report as PDF, with the studies asked for."""
+    from quillshaft.cli.report_studies import Asked, work_out
     from quillshaft.cli.work import check_pdf, put_json, report_bytes, report_path, screened
 
     if json not in (None, "-"):
@@ -178,7 +193,8 @@ def report(
     screening = screened(train, case)
     target = out or report_path(screening)
     check_target(target, train)
-    write_whole(target, report_bytes(screening))
+    asked = Asked(tuple(windows or ()), tuple(compare or ()), tolerance, seed, drift, temperatures, levers, questions)
+    write_whole(target, report_bytes(screening, work_out(screening, asked)))
     if json is not None:
         put_json(screening, json)
     from quillshaft.present.words import case_lines, verdict_sentence

@@ -23,6 +23,8 @@ from quillshaft.train.read import load, train_of
 if TYPE_CHECKING:
     from matplotlib.figure import Figure
 
+    from quillshaft.present.report.studies import Studies
+
 
 def temperature_of(text: str | None) -> Temperature:
     """State of the couplings from the command line; leaves with exit code 2 where it is none."""
@@ -81,11 +83,11 @@ def _encodable(text: str) -> str:
     return text
 
 
-def report_bytes(screening: Screening) -> bytes:
-    """The report as PDF."""
+def report_bytes(screening: Screening, studies: Studies | None = None) -> bytes:
+    """The report as PDF, with the studies asked for."""
     from quillshaft.present.report import report_pdf
 
-    return report_pdf(screening)
+    return report_pdf(screening, studies)
 
 
 def chart_makers(screening: Screening) -> dict[str, Callable[[], bytes]]:

@@ -2,11 +2,16 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 from quillshaft.assess.results import Screening
 
+if TYPE_CHECKING:
+    from quillshaft.present.report.studies import Studies
 
-def report_pdf(screening: Screening) -> bytes:
-    """The report of a screening as PDF bytes; the same input gives the same bytes.
+
+def report_pdf(screening: Screening, studies: Studies | None = None) -> bytes:
+    """The report of a screening, and of the studies asked for, as PDF bytes; the same input gives the same bytes.
 
     Dates come from the train file, never from the clock.
     """
@@ -15,6 +20,7 @@ def report_pdf(screening: Screening) -> bytes:
     from quillshaft.present.report.data import data_parts
     from quillshaft.present.report.findings import finding_parts
     from quillshaft.present.report.front import front_parts, report_title
+    from quillshaft.present.report.studies import study_parts
 
     sign = screening.train.sign_off
     frame = PageFrame(
@@ -33,6 +39,7 @@ def report_pdf(screening: Screening) -> bytes:
         *front_parts(screening),
         *data_parts(screening),
         *finding_parts(screening),
+        *(study_parts(screening, studies) if studies is not None else ()),
         *closing_parts(screening),
     ]
     return build_pdf(story, frame)
