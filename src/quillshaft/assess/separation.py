@@ -112,6 +112,18 @@ def required_separation(source: Source, table: dict[str, float]) -> float:
     return max(next(table[label] for label in (*chain, "default") if label in table) for chain in source.labels)
 
 
+def kept_free(band_hz: Range, required: float, margin_on: str) -> Range:
+    """The band [Hz] that natural frequencies must stay out of: a source's own, with the required share beside it.
+
+    f (1 − m) to f (1 + m) where the margin is on the source, f / (1 + m) to f / (1 − m) where it is on the
+    natural frequency.
+    """
+    low, high = band_hz
+    if margin_on == "excitation":
+        return low * (1.0 - required), high * (1.0 + required)
+    return low / (1.0 + required), high / (1.0 - required)
+
+
 def highest_frequency(sources: tuple[Source, ...], operation: Operation, criteria: Criteria) -> float:
     """Frequency [Hz] up to which modes are judged: the highest continuous source, its margin included."""
     tops = [0.0]
@@ -122,7 +134,7 @@ def highest_frequency(sources: tuple[Source, ...], operation: Operation, criteri
             required_separation(source, criteria.separation), required_separation(source, criteria.worst_case)
         )
         highest = max(frequencies_over(source, low, high)[1] for low, high in operation.ranges_rad_s)
-        tops.append(highest * (1 + required) if criteria.margin_on == "excitation" else highest / (1 - required))
+        tops.append(kept_free((highest, highest), required, criteria.margin_on)[1])
     return max(tops)
 
 

@@ -68,7 +68,7 @@ def show_screening(screening: Screening, out: Console, every: bool) -> None:
         f"{counted(len(screening.flags), 'question')} about the data (see `quillshaft check`)."
     )
     if not every:
-        out.print("The full matrix of pairs: --all.")
+        out.print("The full matrix of pairs: --all." + (" The cheapest ways out: --levers." if attention else ""))
 
 
 def show_check(screening: Screening, out: Console) -> None:

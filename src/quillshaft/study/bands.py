@@ -7,7 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from quillshaft.assess.results import EQUAL, Interference, Screening
-from quillshaft.assess.separation import RPM, JudgedRange, judged_ranges
+from quillshaft.assess.separation import RPM, JudgedRange, judged_ranges, kept_free
 from quillshaft.sources.line import Source, frequencies_over
 from quillshaft.train.model import Range
 
@@ -54,10 +54,7 @@ def source_bands(
             low, high = frequencies_over(source, stretch.low_rad_s, stretch.high_rad_s)
         else:
             low, high = _over_speeds(source, stretch, along)
-        around = (low * (1.0 - share), high * (1.0 + share))
-        if margin_on == "natural":
-            around = (low / (1.0 + share), high / (1.0 - share))
-        bands.append(SourceBand((low, high), around, stretch.barred))
+        bands.append(SourceBand((low, high), kept_free((low, high), share, margin_on), stretch.barred))
     return tuple(bands)
 
 

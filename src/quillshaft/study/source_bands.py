@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from quillshaft.assess.results import Screening
-from quillshaft.assess.separation import judged_ranges, required_separation
+from quillshaft.assess.separation import judged_ranges, kept_free, required_separation
 from quillshaft.sources.line import Source, frequencies_over
 from quillshaft.train.model import Range
 
@@ -20,10 +20,7 @@ def forbidden_bands(screening: Screening, source: Source, required: float) -> li
     touch = TOUCHING if required == 0.0 else 0.0
     bands = [frequencies_over(source, s.low_rad_s, s.high_rad_s) for s in judged_ranges(train.operation)]
     for band in sorted(bands):
-        if train.criteria.margin_on == "excitation":
-            low, high = band[0] * (1.0 - required), band[1] * (1.0 + required)
-        else:
-            low, high = band[0] / (1.0 + required), band[1] / (1.0 - required)
+        low, high = kept_free(band, required, train.criteria.margin_on)
         low, high = low * (1.0 - touch), high * (1.0 + touch)
         if joined and low <= joined[-1][1]:
             low, high = joined[-1][0], max(joined.pop()[1], high)

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from typing import Literal
 
 from quillshaft.assess.results import Screening
-from quillshaft.assess.separation import required_separation
+from quillshaft.assess.separation import kept_free, required_separation
 from quillshaft.sources.line import Source, frequencies_over
 from quillshaft.train.model import Range
 from quillshaft.train.problems import did_you_mean
@@ -75,13 +75,6 @@ def source_bands(screening: Screening, sources: Sequence[Source], ranges_rad_s: 
         shares = (share, share if one else required_separation(source, criteria.worst_case))
         for low, high in ranges_rad_s:
             reach = frequencies_over(source, low, high)
-            nominal, worst = (_widened(reach, share, criteria.margin_on) for share in shares)
+            nominal, worst = (kept_free(reach, share, criteria.margin_on) for share in shares)
             bands.append(Band(source.name, nominal, worst))
     return tuple(dict.fromkeys(bands))
-
-
-def _widened(reach_hz: Range, share: float, margin_on: str) -> Range:
-    low, high = reach_hz
-    if margin_on == "excitation":
-        return low * (1.0 - share), high * (1.0 + share)
-    return low / (1.0 + share), high / (1.0 - share)
