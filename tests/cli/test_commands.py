@@ -142,7 +142,7 @@ def test_a_place_that_cannot_be_written_is_refused_and_nothing_is_written(
     (tmp_path / "folder").mkdir()
     (tmp_path / "link.toml").symlink_to(train)
     if words[0] == "report":
-        monkeypatch.setattr("quillshaft.cli.work.report_bytes", lambda _: b"%PDF")
+        monkeypatch.setattr("quillshaft.cli.work.report_bytes", lambda *_: b"%PDF")
     before = sorted(path.name for path in tmp_path.rglob("*"))
     ended = command(words[0], train, words[1], target)
     assert ended.code == 2
@@ -239,7 +239,7 @@ def test_charts_and_report_are_written_as_pdf(clear, tmp_path):
 
 def test_a_report_without_a_name_is_named_after_document_revision_and_cases(train, tmp_path, monkeypatch):
     monkeypatch.chdir(tmp_path)
-    monkeypatch.setattr("quillshaft.cli.work.report_bytes", lambda _: b"%PDF")
+    monkeypatch.setattr("quillshaft.cli.work.report_bytes", lambda *_: b"%PDF")
     assert command("report", train, "--case", "new-coupling").code == 0
     assert (tmp_path / "reports" / "TA-0417-rev-0-new-coupling.pdf").read_bytes() == b"%PDF"
 
