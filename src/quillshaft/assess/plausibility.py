@@ -5,13 +5,20 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator
 
-from quillshaft.assess.coupling_flags import damper_flags, fluid_flags, rating_flags, twist_flags
 from quillshaft.assess.results import Flag, LinkDuty
-from quillshaft.elements.coupling import is_rubber
 from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.train.model import Coupling, Epicyclic, GearMesh, Station, Train
 
 RPM = 30.0 / math.pi
+STIFFNESS_OVER_TORQUE = {
+    "elastomer": (4.0, 150.0),
+    "steel-spring": (10.0, 60.0),
+    "grid": (10.0, 200.0),
+    "disc": (100.0, 3000.0),
+    "diaphragm": (100.0, 3000.0),
+    "gear": (300.0, 6000.0),
+}
+"""Ordinary coupling stiffness over rated torque [1/rad] by kind."""
 
 
 def plausibility_flags(train: Train, graph: TorsionalGraph, duties: tuple[LinkDuty, ...]) -> tuple[Flag, ...]:
@@ -22,9 +29,6 @@ def plausibility_flags(train: Train, graph: TorsionalGraph, duties: tuple[LinkDu
         *_referral_flags(train),
         *_shaft_flags(train),
         *_coupling_flags(train),
-        *rating_flags(train, graph),
-        *fluid_flags(train),
-        *damper_flags(train, graph),
         *_gear_flags(train),
         *_duty_flags(train, graph, duties),
         *_power_flags(train),
@@ -108,13 +112,20 @@ def _shaft_flags(train: Train) -> Iterator[Flag]:
 def _coupling_flags(train: Train) -> Iterator[Flag]:
     for coupling in train.couplings:
         where = f"couplings.{coupling.name}"
-        yield from twist_flags(coupling)
+        rated = coupling.rated_torque_nm
+        if rated is not None and coupling.kind is not None:
+            low, high = STIFFNESS_OVER_TORQUE[coupling.kind]
+            ratio = coupling.stiffness_nm_rad / rated
+            if not low <= ratio <= high:
+                ordinary = f"ordinary for this kind is {low:g} to {high:g}"
+                text = f"stiffness over rated torque is {ratio:.3g} per rad; {ordinary}"
+                yield Flag(where, text)
         psi = (coupling.loss_factor or 0.0) * 2.0 * math.pi
         if psi > 2.5:
             asked = "is it a magnifier, or a loss factor in per cent?"
             text = f"ψ = {psi:.3g} is more than rubber gives (0.4 to 1.6): {asked}"
             yield Flag(where, text)
-        if is_rubber(coupling.kind) or (coupling.kind is None and coupling.loss_factor is not None):
+        if coupling.kind == "elastomer" or (coupling.kind is None and coupling.loss_factor is not None):
             yield Flag(where, "rubber: is this the dynamic stiffness, at what temperature and at what mean torque?")
 
 

@@ -7,20 +7,12 @@ from dataclasses import dataclass
 from typing import Literal
 
 from quillshaft.assess.results import Interference, ModeResult, Screening
-from quillshaft.elements.coupling import is_rubber
 from quillshaft.train.model import Assumed, Provenance, Tolerance, Train
 
 DECISIVE = 0.25
 """Share of a critical mode's uncertainty from which one value decides."""
 OPERATOR = "operator of the train"
-TABLE = {
-    "shaft": "shafts",
-    "coupling": "couplings",
-    "mesh": "gears",
-    "epicyclic": "gears",
-    "tie": "ties",
-    "damper": "dampers",
-}
+TABLE = {"shaft": "shafts", "coupling": "couplings", "mesh": "gears", "epicyclic": "gears", "tie": "ties"}
 OWN_CHOICE = ("operation", "criteria", "assumptions")
 Kind = Literal["decisive", "odd", "missing", "assumed"]
 
@@ -100,8 +92,6 @@ def _provenance(train: Train) -> dict[str, Provenance]:
     out |= {f"couplings.{item.name}": item.provenance for item in train.couplings}
     out |= {f"gears.{item.name}": item.provenance for item in train.gears}
     out |= {f"ties.{item.name}": item.provenance for item in train.ties}
-    out |= {f"dampers.{item.name}": item.provenance for item in train.dampers}
-    out |= {f"couplings.{item.name}": item.provenance for item in train.fluid_couplings}
     out |= {f"machines.{item.name}": item.provenance for item in train.machines}
     return out | {f"excitations.{item.name}": item.provenance for item in train.excitations}
 
@@ -174,7 +164,7 @@ def _missing(train: Train) -> Iterator[tuple[str, str]]:
             yield element, f"What is the rated torque of {element}? Its mean torque could not be judged without it."
         if coupling.kind is None:
             yield element, f"Of what kind is {element}? Where nothing else is stated it was taken as rubber."
-        if is_rubber(coupling.kind) and coupling.loss_factor is None:
+        if coupling.kind == "elastomer" and coupling.loss_factor is None:
             low = f"ζ = {train.zeta[0] * 100:.3g} %"
             yield element, f"What is the relative damping ψ of {element}, and at what temperature? {low} was used."
 

@@ -9,8 +9,8 @@ from typing import NamedTuple
 
 import numpy as np
 
-from quillshaft.assess.dismissals import MATCH
 from quillshaft.assess.results import EQUAL, Screening
+from quillshaft.assess.screening import MATCH
 from quillshaft.graph.network import Floats, Network
 from quillshaft.graph.torsional import GraphLink
 from quillshaft.solve.link_counts import LinkCounts, OpenLink, link_counts, open_link
