@@ -68,8 +68,18 @@ def test_frequencies_of_shaft_and_mesh_at_1500_rpm():
             {"line-1x": (0, 50.0, 1.0), "line-2x": (0, 100.0, 1.0)},
         ),
         (
-            {"kind": "synchronous-motor", "at": "motor-core", "poles": 4, "supply": "50 Hz"},
+            {"kind": "synchronous-motor", "at": "motor-core", "poles": 4, "supply": "50 Hz", "start": "converter"},
             {"line-1x": (0, 50.0, 1.0), "line-2x": (0, 100.0, 1.0)},
+        ),
+        # Running up on its damper winding: s f = f - p N, and twice that.
+        (
+            {"kind": "synchronous-motor", "at": "motor-core", "poles": 4, "supply": "50 Hz"},
+            {
+                "line-1x": (0, 50.0, 1.0),
+                "line-2x": (0, 100.0, 1.0),
+                "slip-1x": (-2, 50.0, 1.0),
+                "slip-2x": (-4, 100.0, 1.0),
+            },
         ),
         # f_out = pole pairs · N + slip, and its multiples.
         (

@@ -4,11 +4,11 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
-from trains import train
 
 from quillshaft.assess.screening import screen_alone
 from quillshaft.study.speed_cases import speed_cases, temperature_factors
 from quillshaft.study.windows import stiffness_windows
+from trains import train
 
 TORQUES = (0.0, 1000.0, 2000.0)
 STIFFNESSES = (30e3, 50e3, 90e3)

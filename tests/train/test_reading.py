@@ -13,7 +13,8 @@ from quillshaft.train.machine_rows import MACHINE_ROWS
 from quillshaft.train.messages import keys_of
 from quillshaft.train.problems import TrainFileError
 from quillshaft.train.read import load, train_of
-from quillshaft.train.rows import CouplingRow, PieceRow
+from quillshaft.train.rows import CouplingRow
+from quillshaft.train.shaft_rows import PieceRow
 from quillshaft.train.validate import MOST_PROBLEMS, TOP_LEVEL
 from train_files import MORE, NAME, TEXT, complaint, edited, screened
 

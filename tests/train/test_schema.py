@@ -10,11 +10,19 @@ from typing import Any
 import pytest
 from jsonschema import Draft202012Validator
 
-from quillshaft.train.machine_rows import MACHINE_ROWS, CylinderRow
+from quillshaft.train.machine_rows import MACHINE_ROWS
 from quillshaft.train.messages import keys_of
 from quillshaft.train.overlay import KEYED_TABLES, PLAIN_TABLES
-from quillshaft.train.rows import EpicyclicTeethRow, EquivalentRow, PieceRow
+from quillshaft.train.reciprocating_rows import (
+    CompressorCylinderRow,
+    CompressorEndRow,
+    CylinderRow,
+    GasRow,
+    SimpleCycleRow,
+)
+from quillshaft.train.rows import EpicyclicTeethRow, RunningGearRow
 from quillshaft.train.schema import build_schema, schema_as_text
+from quillshaft.train.shaft_rows import EquivalentRow, KeywayRow, PieceRow, SectionRow, SplineRow, ThrowRow
 from quillshaft.train.starters import KINDS, schema_text, starter_text
 from quillshaft.train.tables import RevisionRow
 from quillshaft.train.validate import GEAR_ROWS, PLAIN, ROWS
@@ -22,7 +30,9 @@ from train_files import MORE, TEXT, complaint, edited
 
 EXAMPLES = sorted((Path(__file__).parents[2] / "examples").glob("*.toml"))
 CLASSES = [*ROWS.values(), *PLAIN.values(), *MACHINE_ROWS.values(), *GEAR_ROWS.values()]
-INNER = [PieceRow, EquivalentRow, EpicyclicTeethRow, CylinderRow, RevisionRow]
+INNER = [PieceRow, KeywayRow, SplineRow, SectionRow, ThrowRow, EquivalentRow, RunningGearRow]
+INNER += [EpicyclicTeethRow, CylinderRow, RevisionRow]
+INNER += [GasRow, SimpleCycleRow, CompressorCylinderRow, CompressorEndRow]
 SOUND = [TEXT, TEXT + MORE, *(starter_text(kind) for kind in KINDS), *(path.read_text("utf-8") for path in EXAMPLES)]
 
 

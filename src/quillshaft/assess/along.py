@@ -1,4 +1,4 @@
-"""Natural frequencies along the speed, where a coupling's stiffness follows its mean torque."""
+"""Natural frequencies along the speed: couplings whose stiffness follows mean torque, pendulums."""
 
 from __future__ import annotations
 
@@ -11,8 +11,9 @@ import numpy as np
 from quillshaft.assess.mean_torque import mean_torques
 from quillshaft.assess.results import LinkDuty
 from quillshaft.elements.coupling import table_value
+from quillshaft.graph.dampers import follows_pendulums, with_pendulums
 from quillshaft.graph.network import Floats, Ints, Network
-from quillshaft.graph.states import Temperature, with_mean_torques
+from quillshaft.graph.states import Temperature, follows_torque, with_mean_torques
 from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.solve.modes import Modes, natural_modes
 from quillshaft.solve.plan import plan_elimination
@@ -42,6 +43,11 @@ class Track:
     low_hz: Floats
     high_hz: Floats
     exact_hz: Callable[[float], Floats]
+
+
+def follows_speed(train: Train) -> bool:
+    """True where natural frequencies follow speed: by a coupling's mean torque, or by pendulums."""
+    return follows_torque(train) or follows_pendulums(train)
 
 
 def torque_share(power: Power, speed_rad_s: float, rated_rad_s: float) -> float:
@@ -76,6 +82,8 @@ def settle(train: Train, graph: TorsionalGraph, temperature: Temperature, share:
 
     Raises TrainFileError where the file gives no power, so that the mean torque is not known.
     """
+    if not follows_torque(train):
+        return Settled(graph, mean_torques(train, graph), False)
     if train.power is None:
         findings = Findings(train.file, train.cases)
         text = "a coupling's stiffness is stated against mean torque, but no power is given"
@@ -98,7 +106,12 @@ def settle(train: Train, graph: TorsionalGraph, temperature: Temperature, share:
 
 
 def graph_at(train: Train, settled: Settled, speed_rad_s: float, temperature: Temperature) -> TorsionalGraph:
-    """The graph with its couplings at the mean torque of a speed. Raises TrainFileError without a load law."""
+    """The graph at a speed: couplings at its mean torque, pendulums. Raises TrainFileError without a load law."""
+    graph = settled.graph if not follows_torque(train) else _torque_graph(train, settled, speed_rad_s, temperature)
+    return with_pendulums(train, graph, speed_rad_s)
+
+
+def _torque_graph(train: Train, settled: Settled, speed_rad_s: float, temperature: Temperature) -> TorsionalGraph:
     power = train.power
     if power is None or (power.law is None and _wide(train.operation)):
         findings = Findings(train.file, train.cases)

@@ -14,9 +14,10 @@ from quillshaft.sources.line import Source
 def excitabilities(graph: TorsionalGraph, network: Network, modes: Modes, sources: tuple[Source, ...]) -> Floats:
     """(sources, modes), each 0 to 1; nan where a rigid loop leaves the torque at the source open.
 
-    A point: |referred angle| there over the largest of the mode. Several points: |Σ θ exp(j n φ)| over their
-    number and that largest angle (phase vectors: Den Hartog, Mechanical Vibrations, ch. 5). A shaft line: its
-    most moved station. Inside a link: its torque over the largest link torque.
+    A point: |referred angle| there over the largest of the mode. Several points: |Σ w θ exp(j n φ)| over the sum
+    of their weights w (1 where the action gives none) and that largest angle (phase vectors: Den Hartog,
+    Mechanical Vibrations, ch. 5). A shaft line: its most moved station. Inside a link: its torque over the
+    largest link torque.
     """
     size = moved_angles(graph, modes)
     torques = np.abs(mode_torques(graph, network, modes))
@@ -41,14 +42,15 @@ def _row(
         return np.asarray(size[:, stations].max(axis=1))
     if len(stations) == 1:
         return np.asarray(size[:, stations[0]])
-    return _phase_sum(modes, graph, stations, np.array(action.phases_rad))
+    weights = np.array(action.weights) if action.weights else np.ones(len(stations))
+    return _phase_sum(modes, graph, stations, np.array(action.phases_rad), weights)
 
 
-def _phase_sum(modes: Modes, graph: TorsionalGraph, stations: list[int], phases: Floats) -> Floats:
+def _phase_sum(modes: Modes, graph: TorsionalGraph, stations: list[int], phases: Floats, weights: Floats) -> Floats:
     angle = modes.angle[:, graph.node]
-    total = np.abs(angle[:, stations] @ np.exp(1j * phases))
+    total = np.abs(angle[:, stations] @ (weights * np.exp(1j * phases)))
     largest = np.max(np.abs(angle), axis=1)
     for members in shared_clusters(modes):
         total[members] = np.sqrt(np.sum(total[members] ** 2))
         largest[members] = np.max(np.sqrt(np.sum(angle[members] ** 2, axis=0)))
-    return np.asarray(total / (len(stations) * largest))
+    return np.asarray(total / (max(float(np.sum(weights)), 1e-300) * largest))

@@ -34,12 +34,18 @@ def link_torques(
             give[position, station] += coefficient
         if link.slot == "spring":
             torques[:, position] = spring_torque[:, link.index]
+        elif link.cut is not None:
+            torques[:, position] = spring_torque[:, link.cut.springs[0]]
         elif link.slot == "torque":
             torques[:, position] = torque_link_torque[:, link.index]
         elif link.slot == "tie" and not (turning_ties and network.turning[graph.node[link.stations[0]]]):
             torques[:, position] = tie_torque[:, tie]
             tie += 1
     left = load_nm - torques @ give
+    for link in graph.links:
+        if link.cut is not None:
+            inside = spring_torque[:, link.cut.springs[0]] - spring_torque[:, link.cut.springs[-1]]
+            left[:, link.stations[1]] += inside * link.coefficients[1]
     rigid = graph.rigid
     if len(rigid.links):
         torques[:, rigid.links] = left @ rigid.recovery.T

@@ -5,20 +5,16 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator
 
+from quillshaft.assess.coupling_flags import damper_flags, fluid_flags, overspeed_flags, rating_flags, twist_flags
+from quillshaft.assess.gear_flags import gear_flags
+from quillshaft.assess.reciprocating_flags import reciprocating_flags
 from quillshaft.assess.results import Flag, LinkDuty
+from quillshaft.assess.throw_flags import throw_flags
+from quillshaft.elements.coupling import is_rubber
 from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.train.model import Coupling, Epicyclic, GearMesh, Station, Train
 
 RPM = 30.0 / math.pi
-STIFFNESS_OVER_TORQUE = {
-    "elastomer": (4.0, 150.0),
-    "steel-spring": (10.0, 60.0),
-    "grid": (10.0, 200.0),
-    "disc": (100.0, 3000.0),
-    "diaphragm": (100.0, 3000.0),
-    "gear": (300.0, 6000.0),
-}
-"""Ordinary coupling stiffness over rated torque [1/rad] by kind."""
 
 
 def plausibility_flags(train: Train, graph: TorsionalGraph, duties: tuple[LinkDuty, ...]) -> tuple[Flag, ...]:
@@ -28,12 +24,19 @@ def plausibility_flags(train: Train, graph: TorsionalGraph, duties: tuple[LinkDu
         *_spread_flags(train, graph),
         *_referral_flags(train),
         *_shaft_flags(train),
+        *throw_flags(train),
         *_coupling_flags(train),
+        *rating_flags(train),
+        *overspeed_flags(train, graph),
+        *fluid_flags(train),
+        *damper_flags(train),
         *_gear_flags(train),
+        *gear_flags(train, duties),
         *_duty_flags(train, graph, duties),
         *_power_flags(train),
         *_inertia_flags(train, graph),
         *_operation_flags(train),
+        *reciprocating_flags(train, graph),
     )
 
 
@@ -104,7 +107,7 @@ def _shaft_flags(train: Train) -> Iterator[Flag]:
             modulus = material.shear_modulus_pa / 1e9
             if material.density_kgm3 < 8100 and not 60 <= modulus <= 85:
                 yield Flag(f"shafts.{shaft.name}", f"G = {modulus:.4g} GPa; steel has 79 to 83 GPa")
-        if shaft.pieces and not any(piece.hub_m for piece in shaft.pieces):
+        if shaft.pieces and not any(piece.hub_m or piece.flange for piece in shaft.pieces):
             text = "no hub engagement on any piece: are both ends integral flanges or forged on?"
             yield Flag(f"shafts.{shaft.name}", text)
 
@@ -112,20 +115,13 @@ def _shaft_flags(train: Train) -> Iterator[Flag]:
 def _coupling_flags(train: Train) -> Iterator[Flag]:
     for coupling in train.couplings:
         where = f"couplings.{coupling.name}"
-        rated = coupling.rated_torque_nm
-        if rated is not None and coupling.kind is not None:
-            low, high = STIFFNESS_OVER_TORQUE[coupling.kind]
-            ratio = coupling.stiffness_nm_rad / rated
-            if not low <= ratio <= high:
-                ordinary = f"ordinary for this kind is {low:g} to {high:g}"
-                text = f"stiffness over rated torque is {ratio:.3g} per rad; {ordinary}"
-                yield Flag(where, text)
+        yield from twist_flags(coupling)
         psi = (coupling.loss_factor or 0.0) * 2.0 * math.pi
         if psi > 2.5:
             asked = "is it a magnifier, or a loss factor in per cent?"
             text = f"ψ = {psi:.3g} is more than rubber gives (0.4 to 1.6): {asked}"
             yield Flag(where, text)
-        if coupling.kind == "elastomer" or (coupling.kind is None and coupling.loss_factor is not None):
+        if is_rubber(coupling.kind) or (coupling.kind is None and coupling.loss_factor is not None):
             yield Flag(where, "rubber: is this the dynamic stiffness, at what temperature and at what mean torque?")
 
 
@@ -179,6 +175,8 @@ def _power_flags(train: Train) -> Iterator[Flag]:
 def _inertia_flags(train: Train, graph: TorsionalGraph) -> Iterator[Flag]:
     """A shaft heavy against its ends is poorly held by two lumps."""
     for shaft in train.shafts:
+        if shaft.own_inertia == "distributed":
+            continue
         own = sum(part.inertia_kgm2 for part in graph.parts if part.element == f"shafts.{shaft.name}")
         ends = [graph.inertia_kgm2[graph.number(name)] for name in shaft.between]
         if own > 0.3 * min(ends) and own > 0.1 * sum(ends):

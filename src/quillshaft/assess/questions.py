@@ -6,13 +6,24 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from typing import Literal
 
+from quillshaft.assess.mode_results import part_energy
 from quillshaft.assess.results import Interference, ModeResult, Screening
-from quillshaft.train.model import Assumed, Provenance, Tolerance, Train
+from quillshaft.elements.coupling import is_rubber
+from quillshaft.elements.epicyclic import ring_mesh_name
+from quillshaft.train.model import Assumed, Epicyclic, Provenance, Tolerance, Train
 
 DECISIVE = 0.25
 """Share of a critical mode's uncertainty from which one value decides."""
 OPERATOR = "operator of the train"
-TABLE = {"shaft": "shafts", "coupling": "couplings", "mesh": "gears", "epicyclic": "gears", "tie": "ties"}
+TABLE = {
+    "shaft": "shafts",
+    "coupling": "couplings",
+    "mesh": "gears",
+    "epicyclic": "gears",
+    "belt": "belts",
+    "tie": "ties",
+    "damper": "dampers",
+}
 OWN_CHOICE = ("operation", "criteria", "assumptions")
 Kind = Literal["decisive", "odd", "missing", "assumed"]
 
@@ -31,7 +42,18 @@ ASKED = {
     "operating-temperature": "Between what temperatures does {element} work in service? {value} was assumed.",
     "vanes": "How many vanes has {element}? Without the number its vane passing is not screened.",
     "blades": "How many blades has {element}? Without the number its blade passing is not screened.",
-    "slip": "What is the slip frequency of {element} at rated load? {value} was assumed.",
+    "slip": "What is the slip of {element} at rated load? {value} was assumed.",
+    "undamped": "How much of its ring does the maker of {element} count with the station in undamped modes? It was "
+    "taken as {value}.",
+    "reference-frequency": "For what frequency does the vibratory torque of {element} stand? {value} was assumed.",
+    "mesh stiffness by rule": "What mesh stiffness does the maker of {element} give? That of {value} was used ({why}).",
+    "blanks and rack": "Are the wheels of {element} solid steel blanks, and what dedendum has their rack? {value} was "
+    "assumed.",
+    "contact-ratio": "What is the transverse contact ratio of {element}? It was worked out from the teeth.",
+    "planet teeth": "How many teeth has one planet of {element}? {value} was assumed.",
+    "planet-mass": "Does the carrier's inertia hold the mass of the planets of {element}? It was taken to.",
+    "spans": "How many spans of {element} stay taut under load? {value} was assumed.",
+    "creep": "By how much does {element} creep at rated load? {value} was assumed.",
     "status": "What is the maker's own value for {element}? The value in use is marked as assumed ({why}).",
 }
 """Question for each key that had to be assumed."""
@@ -91,7 +113,13 @@ def _provenance(train: Train) -> dict[str, Provenance]:
     out |= {f"shafts.{item.name}": item.provenance for item in train.shafts}
     out |= {f"couplings.{item.name}": item.provenance for item in train.couplings}
     out |= {f"gears.{item.name}": item.provenance for item in train.gears}
+    rings = [item for item in train.gears if isinstance(item, Epicyclic) and item.wheels is not None]
+    out |= {f"gears.{ring_mesh_name(item)}": item.provenance for item in rings}
+    out |= {f"belts.{item.name}": item.provenance for item in train.belts}
+    out |= {f"joints.{item.name}": item.provenance for item in train.joints}
     out |= {f"ties.{item.name}": item.provenance for item in train.ties}
+    out |= {f"dampers.{item.name}": item.provenance for item in train.dampers}
+    out |= {f"couplings.{item.name}": item.provenance for item in train.fluid_couplings}
     out |= {f"machines.{item.name}": item.provenance for item in train.machines}
     return out | {f"excitations.{item.name}": item.provenance for item in train.excitations}
 
@@ -118,10 +146,8 @@ def uncertainty_shares(screening: Screening, mode: ModeResult) -> dict[tuple[str
         key = f"{TABLE[link.kind]}.{link.name}", "stiffness"
         parts[key] = mode.strain_energy[link.name] * _width(link.tolerance)
     for part in graph.parts:
-        whole = float(graph.inertia_kgm2[part.station])
-        share = part.inertia_kgm2 / whole if whole > 0 else 0.0
         key = part.element, "inertia"
-        moved = mode.kinetic_energy[graph.stations[part.station]] * share * _width(part.tolerance)
+        moved = part_energy(graph, mode, part) * _width(part.tolerance)
         parts[key] = parts.get(key, 0.0) + moved
     total = sum(parts.values())
     return {key: value / total for key, value in parts.items()} if total > 0 else {}
@@ -164,7 +190,7 @@ def _missing(train: Train) -> Iterator[tuple[str, str]]:
             yield element, f"What is the rated torque of {element}? Its mean torque could not be judged without it."
         if coupling.kind is None:
             yield element, f"Of what kind is {element}? Where nothing else is stated it was taken as rubber."
-        if coupling.kind == "elastomer" and coupling.loss_factor is None:
+        if is_rubber(coupling.kind) and coupling.loss_factor is coupling.viscous_nms_rad is None:
             low = f"ζ = {train.zeta[0] * 100:.3g} %"
             yield element, f"What is the relative damping ψ of {element}, and at what temperature? {low} was used."
 

@@ -56,7 +56,7 @@ class ModeResult:
     link_torque       referred torque by link over the largest of the mode; None where a closed loop of rigid
                       meshes leaves the split open
     bounds_hz         lowest and highest frequency over all tolerances
-    damping_ratio     half the loss factors weighted by strain energy, low damping
+    damping_ratio     half the loss factors weighted by strain energy, low damping, and the viscous part
     frequency_along   (rpm, nominal, low, high) rows [rpm, Hz] where it follows speed; else None, and the other
                       numbers hold at every speed (with it they are those at rated speed)
     cluster           numbers of the modes that share this frequency, itself included
@@ -174,6 +174,17 @@ class Flag:
 
 
 @dataclass(frozen=True)
+class DerivedValue:
+    """A spring, damper or frequency worked out from electrical data or a load curve: SI, at its element's own shaft."""
+
+    element: str
+    quantity: str
+    value: float
+    unit: str
+    basis: str
+
+
+@dataclass(frozen=True)
 class CaseResult:
     """One case of the file screened beside the base: its result, or why it cannot be."""
 
@@ -192,6 +203,7 @@ class Screening:
     cases             what screening each of them gave; None where they were not screened
     judged_modes      numbers of the modes up to the highest source, margin included
     interferences     every judged pair of continuous source and mode, in order of mode and source
+    derived           damping and springs worked out from load laws and electrical data
     verdict           of the worst pair not dismissed, nominal; worst_verdict over the tolerances
     """
 
@@ -214,6 +226,7 @@ class Screening:
     station_power_w: tuple[tuple[str, float], ...] = ()
     case_names: tuple[str, ...] = ()
     cases: tuple[CaseResult, ...] | None = None
+    derived: tuple[DerivedValue, ...] = ()
 
     @property
     def fails(self) -> bool:

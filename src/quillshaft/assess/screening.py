@@ -3,14 +3,18 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 import numpy as np
 
-from quillshaft.assess.along import Track, follow, settle
+from quillshaft.assess.along import Track, follow, follows_speed, settle
+from quillshaft.assess.cutting import cut_finely
+from quillshaft.assess.dismissals import check_dismissals, sort_dismissals
+from quillshaft.assess.electrical import derived_values, electrical_flags
 from quillshaft.assess.excitability import excitabilities
 from quillshaft.assess.mean_torque import mean_powers, mean_torques
-from quillshaft.assess.mode_results import mode_results
+from quillshaft.assess.mode_results import growth_flags, mode_results
+from quillshaft.assess.pairs import judged_pair, lowest_frequency, seen
 from quillshaft.assess.plausibility import plausibility_flags
 from quillshaft.assess.results import (
     SEVERITY,
@@ -23,33 +27,25 @@ from quillshaft.assess.results import (
     StaleDismissal,
     Verdict,
 )
+from quillshaft.assess.separate_parts import out_of_reach
 from quillshaft.assess.separation import (
-    JudgedRange,
-    Separation,
-    bar_needed,
-    critical_speeds,
     highest_frequency,
     judged_ranges,
-    required_separation,
-    separate,
 )
-from quillshaft.assess.separation_along import critical_speeds_along, separate_along
 from quillshaft.graph.build import build_graph
 from quillshaft.graph.network import Floats
-from quillshaft.graph.states import Temperature, follows_torque
+from quillshaft.graph.states import Temperature
 from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.solve.modes import Modes, natural_modes
 from quillshaft.solve.plan import plan_elimination
 from quillshaft.sources.collect import collect_sources
 from quillshaft.sources.line import Source
-from quillshaft.train.model import Dismissal, Operation, Train
+from quillshaft.train.model import Train
 from quillshaft.train.overlay import case_names
-from quillshaft.train.problems import TrainFileError, did_you_mean
+from quillshaft.train.problems import TrainFileError
 from quillshaft.train.read import train_of
-from quillshaft.train.validate import Findings
 
 RPM = 30.0 / math.pi
-MATCH = 0.03
 
 
 def screen_alone(train: Train, temperature: Temperature = "reference") -> Screening:
@@ -61,11 +57,13 @@ def screen_alone(train: Train, temperature: Temperature = "reference") -> Screen
     Raises TrainFileError when the train cannot turn, is not connected, its power does not close, or a
     machine, a criterion or a dismissal names what does not exist.
     """
+    cut = cut_finely(train, temperature)
+    train = cut.train
     graph = build_graph(train, temperature)
-    settled = settle(train, graph, temperature) if follows_torque(train) else None
+    settled = settle(train, graph, temperature) if follows_speed(train) else None
     graph = graph if settled is None else settled.graph
     sources = collect_sources(train, graph)
-    _check_dismissals(train, (*sources.active, *(source for source, _ in sources.off)))
+    check_dismissals(train, (*sources.active, *(source for source, _ in sources.off)))
     plan = plan_elimination(graph.network)
     nominal, soft, stiff = (
         natural_modes(network, plan) for network in (graph.network, graph.soft_heavy, graph.stiff_light)
@@ -76,8 +74,10 @@ def screen_alone(train: Train, temperature: Temperature = "reference") -> Screen
     modes = modes if track is None else tuple(_with_track(mode, track) for mode in modes)
     duties = mean_torques(train, graph) if settled is None else settled.duties
     excitable = _excitability(graph, nominal, soft, stiff, sources.active)
-    judged, pairs, stale = _judge(train, modes, sources.active, excitable, track)
+    apart = out_of_reach(graph, modes, sources.active)
+    judged, pairs, stale = _judge(train, modes, sources.active, excitable, track, apart)
     counted = [pair for pair in pairs if pair.dismissed is None]
+    powers = mean_powers(train, graph)
     return Screening(
         train=train,
         graph=graph,
@@ -89,14 +89,21 @@ def screen_alone(train: Train, temperature: Temperature = "reference") -> Screen
         interferences=pairs,
         stale_dismissals=stale,
         duties=duties,
-        flags=(*plausibility_flags(train, graph, duties), *_idle_flags(train, pairs)),
+        flags=(
+            *plausibility_flags(train, graph, duties),
+            *cut.flags,
+            *electrical_flags(train, graph, modes),
+            *growth_flags(train, modes),
+            *_idle_flags(train, pairs),
+        ),
         assumed=train.assumed,
         self_check=_self_check(nominal, modes),
         verdict=_worst([pair.verdict for pair in counted]),
         worst_verdict=_worst([pair.worst_verdict for pair in counted]),
         temperature=temperature,
-        station_power_w=mean_powers(train, graph),
+        station_power_w=powers,
         case_names=() if train.cases else case_names(train.file.data),
+        derived=derived_values(train, graph, modes, powers),
     )
 
 
@@ -137,18 +144,6 @@ def _worst(verdicts: list[Verdict]) -> Verdict:
     return max(verdicts, key=SEVERITY.__getitem__, default="clear")
 
 
-def _check_dismissals(train: Train, sources: tuple[Source, ...]) -> None:
-    """A dismissal of a source that the base train does not have is a slip; in a case it is only stale."""
-    findings = Findings(train.file, train.cases)
-    for dismissal in train.dismissals:
-        if not train.cases and not any(source.answers_to(dismissal.source) for source in sources):
-            hint = did_you_mean(dismissal.source, [source.name for source in sources])
-            path = ("dismissals", dismissal.name, "source")
-            findings.add(path, f"there is no source of this name{hint}", dismissal.source, "as `check` lists it")
-    if findings.problems:
-        raise TrainFileError(tuple(findings.problems))
-
-
 def _excitability(
     graph: TorsionalGraph, nominal: Modes, soft: Modes, stiff: Modes, sources: tuple[Source, ...]
 ) -> tuple[Floats, Floats]:
@@ -167,156 +162,27 @@ def _judge(
     sources: tuple[Source, ...],
     excitable: tuple[Floats, Floats],
     track: Track | None,
+    apart: frozenset[tuple[int, str]],
 ) -> tuple[tuple[int, ...], tuple[Interference, ...], tuple[StaleDismissal, ...]]:
     top = highest_frequency(sources, train.operation, train.criteria)
-    judged = tuple(mode.mode for mode in modes if _lowest(mode, train.operation) <= top)
+    judged = tuple(mode.mode for mode in modes if lowest_frequency(mode, train.operation) <= top)
     ranges = judged_ranges(train.operation)
-    applied, stale = _sort_dismissals(train, modes, sources)
+    applied, stale = sort_dismissals(train, modes, sources)
     pairs = tuple(
-        _pair(
+        judged_pair(
             train,
             mode,
             source,
-            _seen(mode, source, train, ranges, track),
+            seen(mode, source, train, ranges, track),
             (own[row, i - 1], worst[row, i - 1]),
             applied,
         )
         for own, worst in (excitable,)
         for i, mode in ((mode.mode, mode) for mode in modes if mode.mode in judged)
         for row, source in enumerate(sources)
-        if source.when == "continuous"
+        if source.when == "continuous" and (i, source.name) not in apart
     )
     return judged, pairs, stale
-
-
-def _lowest(mode: ModeResult, operation: Operation) -> float:
-    """Lowest frequency [Hz] of a mode over the tolerances and, where it follows speed, over the judged range."""
-    if mode.frequency_along is None:
-        return mode.bounds_hz[0]
-    low, high = operation.ranges_rad_s[0][0] * RPM, operation.ranges_rad_s[-1][1] * RPM
-    inside = [row[2] for row in mode.frequency_along if low * (1 - 1e-9) <= row[0] <= high * (1 + 1e-9)]
-    return min(inside, default=mode.bounds_hz[0])
-
-
-@dataclass(frozen=True)
-class _Seen:
-    """A pair as judged: nominal and over the tolerances, over the free stretches alone, and where they meet."""
-
-    nominal: Separation
-    worst: Separation
-    free: tuple[Separation, Separation] | None
-    speeds_rpm: tuple[float, ...]
-    chosen_rpm: float | None
-
-
-def _seen(
-    mode: ModeResult, source: Source, train: Train, ranges: tuple[JudgedRange, ...], track: Track | None
-) -> _Seen:
-    on = train.criteria.margin_on
-    required = required_separation(source, train.criteria.separation)
-    worst_required = required_separation(source, train.criteria.worst_case)
-
-    def both(stretches: tuple[JudgedRange, ...]) -> tuple[Separation, Separation]:
-        if track is None:
-            own = (mode.frequency_hz, mode.frequency_hz)
-            nominal = separate(source, own, stretches, required, on)
-            return nominal, separate(source, mode.bounds_hz, stretches, worst_required, on)
-        column = mode.mode - 1
-        middle, low, high = (values[:, column] for values in (track.nominal_hz, track.low_hz, track.high_hz))
-        nominal = separate_along(source, track, (middle, middle), stretches, required, on)
-        return nominal, separate_along(source, track, (low, high), stretches, worst_required, on)
-
-    nominal, worst = both(ranges)
-    barred = "barred" in (nominal.verdict, worst.verdict)
-    free = both(tuple(stretch for stretch in ranges if not stretch.barred)) if barred else None
-    if track is None:
-        speeds, chosen = critical_speeds(source, mode.frequency_hz, train.operation)
-    else:
-        speeds, chosen = critical_speeds_along(source, track, mode.mode - 1, train.operation)
-    return _Seen(nominal, worst, free, speeds, chosen)
-
-
-def _bar(mode: ModeResult, source: Source, train: Train, seen: _Seen) -> tuple[float, float] | None:
-    """The barred range [rpm] that nominal and worst-case requirements together ask for."""
-    if mode.frequency_along is not None:
-        return None
-    on, inside = train.criteria.margin_on, seen.nominal.at_rad_s
-    required = required_separation(source, train.criteria.separation)
-    worst_required = required_separation(source, train.criteria.worst_case)
-    first = bar_needed(source, (mode.frequency_hz, mode.frequency_hz), required, on, inside)
-    second = bar_needed(source, mode.bounds_hz, worst_required, on, inside)
-    if first is None or second is None:
-        return None
-    return min(first[0], second[0]), max(first[1], second[1])
-
-
-def _where(seen: _Seen, operation: Operation) -> float:
-    """Speed [rpm] of the smallest margin; where they meet in range, the critical speed."""
-    meets = seen.nominal.margin == 0.0 and seen.chosen_rpm is not None
-    if meets and any(low <= (seen.chosen_rpm or 0.0) / RPM <= high for low, high in operation.ranges_rad_s):
-        return seen.chosen_rpm or 0.0
-    return seen.nominal.at_rad_s * RPM
-
-
-def _pair(
-    train: Train,
-    mode: ModeResult,
-    source: Source,
-    seen: _Seen,
-    excitable: tuple[float, float],
-    applied: tuple[Dismissal, ...],
-) -> Interference:
-    criteria = train.criteria
-    required = required_separation(source, criteria.separation)
-    worst_required = required_separation(source, criteria.worst_case)
-    dismissed = next((item for item in applied if item.mode == mode.mode and source.answers_to(item.source)), None)
-    own, largest = (None if math.isnan(value) else float(value) for value in excitable)
-    return Interference(
-        source.name,
-        mode.mode,
-        seen.chosen_rpm,
-        seen.speeds_rpm,
-        seen.nominal.margin,
-        seen.worst.margin,
-        _where(seen, train.operation),
-        required,
-        worst_required,
-        own,
-        largest,
-        seen.nominal.verdict,
-        seen.worst.verdict,
-        dismissed,
-        None if seen.free is None else seen.free[0].margin,
-        None if seen.free is None else seen.free[1].margin,
-        None if seen.free is None else _bar(mode, source, train, seen),
-    )
-
-
-def _sort_dismissals(
-    train: Train, modes: tuple[ModeResult, ...], sources: tuple[Source, ...]
-) -> tuple[tuple[Dismissal, ...], tuple[StaleDismissal, ...]]:
-    applied, stale = [], []
-    for item in train.dismissals:
-        why = _why_stale(item, train, modes, sources)
-        if why is None:
-            applied.append(item)
-        else:
-            stale.append(StaleDismissal(item, why))
-    return tuple(applied), tuple(stale)
-
-
-def _why_stale(item: Dismissal, train: Train, modes: tuple[ModeResult, ...], sources: tuple[Source, ...]) -> str | None:
-    if not any(source.answers_to(item.source) for source in sources):
-        return f"there is no source {item.source} in this train as it stands"
-    if not set(train.cases) <= set(item.cases):
-        missing = ", ".join(case for case in train.cases if case not in item.cases)
-        return f"it is not stated for the case {missing}"
-    if item.mode > len(modes):
-        return f"there is no mode {item.mode}"
-    frequency = modes[item.mode - 1].frequency_hz
-    if abs(frequency - item.frequency_hz) > MATCH * item.frequency_hz:
-        return f"mode {item.mode} is now at {frequency:.2f} Hz, dismissed at {item.frequency_hz:.2f} Hz"
-    return None
 
 
 def _idle_flags(train: Train, pairs: tuple[Interference, ...]) -> tuple[Flag, ...]:

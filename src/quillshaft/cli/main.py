@@ -12,7 +12,10 @@ from typing import TYPE_CHECKING, Annotated
 import typer
 
 from quillshaft.cli.compare_command import compare
+from quillshaft.cli.damped_command import damped
+from quillshaft.cli.damper_command import damper
 from quillshaft.cli.drift_command import drift
+from quillshaft.cli.orders_command import orders
 from quillshaft.cli.output import check_folder, check_target, console, refuse, write_many, write_whole
 from quillshaft.cli.tolerance_command import tolerance
 from quillshaft.cli.windows_command import windows
@@ -64,9 +67,16 @@ def new(
         Path | None,
         typer.Option(metavar="PATH", help="Also write the JSON schema, for editors that complete it."),
     ] = None,
+    table: Annotated[
+        Path | None,
+        typer.Option("--from", metavar="TABLE", help="Make it of a mass-elastic table, CSV or .xlsx."),
+    ] = None,
+    rated: Annotated[
+        str | None, typer.Option(metavar="SPEED", help="With --from: rated speed of the table's first station.")
+    ] = None,
     force: Annotated[bool, typer.Option(help="Replace an existing file.")] = False,
 ) -> None:
-    """Write a commented train file that screens as it stands."""
+    """Write a commented train file that screens as it stands, or the train of a mass-elastic table."""
     from quillshaft.train.problems import did_you_mean
     from quillshaft.train.starters import KINDS, schema_text, starter_text
 
@@ -80,10 +90,19 @@ def new(
             check_target(target)
             if target.exists() and not force:
                 refuse(f"{target}: exists already; --force replaces it")
-    write_whole(out, starter_text(kind).encode())
+    if rated is not None and table is None:
+        refuse("--rated goes with --from TABLE: a starter holds its own speed")
+    if table is not None:
+        from quillshaft.cli.new_from_table import new_from_table
+
+        check_target(out, table)
+        new_from_table(out, table, rated)
+    else:
+        write_whole(out, starter_text(kind).encode())
     if schema is not None:
         write_whole(schema, schema_text().encode())
-    console().print(f"Wrote {out}. Next: quillshaft check {out}")
+    if table is None:
+        console().print(f"Wrote {out}. Next: quillshaft check {out}")
 
 
 @app.command()
@@ -113,6 +132,7 @@ def screen(
     case: Cases = None,
     json: JsonPath = None,
     charts: Annotated[Path | None, typer.Option(metavar="DIR", help="Write the charts as PDF files.")] = None,
+    csv: Annotated[Path | None, typer.Option(metavar="DIR", help="Write the result tables as CSV files.")] = None,
     every: Annotated[bool, typer.Option("--all", help="Show every pair of mode and source.")] = False,
     levers: Annotated[bool, typer.Option(help="Show the cheapest ways out of each interference.")] = False,
     at: Annotated[
@@ -131,8 +151,14 @@ def screen(
         check_target(Path(json or ""), train)
     if charts is not None:
         check_folder(charts)
+    if csv is not None:
+        from quillshaft.cli.csv_output import check_csv_folder, put_csv
+
+        check_csv_folder(csv, train)
     screening = screened(train, case, temperature_of(at))
     written = [] if charts is None else write_many(charts, chart_makers(screening))
+    if csv is not None:
+        written += put_csv(screening, csv)
     found: tuple[WaysOut, ...] = ()
     if levers:
         from quillshaft.cli.more_output import find_levers, put_json_with_levers, show_levers
@@ -179,6 +205,8 @@ def report(
     temperatures: Annotated[bool, typer.Option(help="Add the couplings cold, at 30 degC and hot.")] = False,
     levers: Annotated[bool, typer.Option(help="Add the cheapest ways out of each interference.")] = False,
     questions: Annotated[bool, typer.Option(help="Add the questions to each supplier.")] = False,
+    damped: Annotated[bool, typer.Option(help="Add the damped modes.")] = False,
+    orders: Annotated[bool, typer.Option(help="Add the orders of engines and reciprocating compressors.")] = False,
     strict: Annotated[bool, typer.Option(help="Exit with 3 when the worst case is not clear.")] = False,
 ) -> None:
     """Write the report as PDF, with the studies asked for."""
@@ -193,7 +221,8 @@ def report(
     screening = screened(train, case)
     target = out or report_path(screening)
     check_target(target, train)
-    asked = Asked(tuple(windows or ()), tuple(compare or ()), tolerance, seed, drift, temperatures, levers, questions)
+    chosen = (temperatures, levers, questions, damped, orders)
+    asked = Asked(tuple(windows or ()), tuple(compare or ()), tolerance, seed, drift, *chosen)
     write_whole(target, report_bytes(screening, work_out(screening, asked)))
     if json is not None:
         put_json(screening, json)
@@ -213,6 +242,9 @@ app.command()(compare)
 app.command()(windows)
 app.command()(tolerance)
 app.command()(drift)
+app.command()(damper)
+app.command()(damped)
+app.command()(orders)
 
 
 def run() -> None:

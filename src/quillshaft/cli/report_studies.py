@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
+from quillshaft.assess.orders import OrderStudy
 from quillshaft.assess.results import Screening
 from quillshaft.assess.screening import screen_temperatures
 from quillshaft.cli.output import refuse
@@ -23,6 +24,8 @@ class Asked:
     temperatures: bool = False
     levers: bool = False
     questions: bool = False
+    damped: bool = False
+    orders: bool = False
 
     @property
     def nothing(self) -> bool:
@@ -46,6 +49,7 @@ def work_out(screening: Screening, asked: Asked) -> Studies | None:
 
 
 def _studies(screening: Screening, asked: Asked) -> Studies:
+    from quillshaft.cli.damped_command import damped_of
     from quillshaft.cli.more_output import find_levers
     from quillshaft.cli.study_output import progress_bar
     from quillshaft.study.compare import compare_cases
@@ -73,4 +77,16 @@ def _studies(screening: Screening, asked: Asked) -> Studies:
         temperatures=screen_temperatures(screening.train) if asked.temperatures else None,
         levers=find_levers(screening) if asked.levers else None,
         questions=asked.questions,
+        damped=damped_of(screening) if asked.damped else None,
+        orders=_orders(screening) if asked.orders else (),
     )
+
+
+def _orders(screening: Screening) -> tuple[OrderStudy, ...]:
+    """The orders of every engine and reciprocating compressor; leaves with exit code 2 where there is none."""
+    from quillshaft.assess.orders import order_study, reciprocating_machines
+
+    machines = reciprocating_machines(screening)
+    if not machines:
+        refuse("--orders: the file has no reciprocating-engine and no reciprocating-compressor")
+    return tuple(order_study(screening, machine.name) for machine in machines)

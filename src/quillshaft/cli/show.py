@@ -6,6 +6,8 @@ from rich.console import Console
 
 from quillshaft.assess.results import Screening
 from quillshaft.present import tables
+from quillshaft.present.listed_modes import listed_modes, unlisted_sentence
+from quillshaft.present.viscous_words import viscous_rows
 from quillshaft.present.words import (
     case_lines,
     counted,
@@ -53,10 +55,11 @@ def show_screening(screening: Screening, out: Console, every: bool) -> None:
         out.print(f"Dismissal {item.dismissal.name} was not applied: {item.why}.")
     out.print()
     out.print(tables.modes_table(screening))
-    beyond = len(screening.modes) - len(screening.judged_modes)
+    beyond = len(listed_modes(screening)) - len(screening.judged_modes)
     if beyond:
         verb = "is" if beyond == 1 else "are"
-        out.print(f"{counted(beyond, 'mode')} above the highest source {verb} listed and not judged.")
+        left = unlisted_sentence(screening)
+        out.print(f"{counted(beyond, 'mode')} above the highest source {verb} listed and not judged.{left}")
     if every:
         out.print()
         out.print(tables.matrix_table(screening))
@@ -77,6 +80,12 @@ def show_check(screening: Screening, out: Console) -> None:
     for table in (tables.stations_table, tables.links_table, tables.sources_table, tables.assumed_table):
         out.print()
         out.print(table(screening))
+    if screening.derived:
+        out.print()
+        out.print(tables.derived_table(screening))
+    if viscous_rows(screening):
+        out.print()
+        out.print(tables.viscous_table(screening))
     out.print()
     out.print(f"Questions about the data ({len(screening.flags)})", style="bold")
     for flag in screening.flags:

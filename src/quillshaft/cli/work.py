@@ -11,7 +11,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from quillshaft.assess.results import Screening
-from quillshaft.assess.screening import screen
+from quillshaft.assess.screening import screen, screen_alone
 from quillshaft.cli.output import make_folder, refuse, write_whole
 from quillshaft.graph.states import Temperature
 from quillshaft.train.document import read_document
@@ -45,6 +45,14 @@ def screened(path: Path, cases: list[str] | None, temperature: Temperature = "re
     try:
         train = load(path, tuple(cases or ()))
         return screen(train, temperature)
+    except TrainFileError as error:
+        refuse(str(error))
+
+
+def screened_alone(path: Path, cases: list[str] | None, temperature: Temperature = "reference") -> Screening:
+    """The same without the cases of the file beside it."""
+    try:
+        return screen_alone(load(path, tuple(cases or ())), temperature)
     except TrainFileError as error:
         refuse(str(error))
 

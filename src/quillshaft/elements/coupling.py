@@ -23,6 +23,11 @@ def table_value(points: Table, at: float) -> float:
     return high
 
 
+def is_rubber(kind: str | None) -> bool:
+    """True of the couplings that rubber or another elastomer makes soft."""
+    return kind is not None and kind.startswith("elastomer")
+
+
 def coupling_stiffness(coupling: Coupling, mean_torque_nm: float | None, temperature_k: float) -> float:
     """Stiffness [N·m/rad] at a mean torque [N·m, None: not known, taken as 0] and a temperature [K].
 
@@ -42,3 +47,10 @@ def coupling_loss_factor(coupling: Coupling, temperature_k: float) -> float | No
     if coupling.loss_factor is None or not coupling.damping_points:
         return coupling.loss_factor
     return coupling.loss_factor * table_value(coupling.damping_points, temperature_k)
+
+
+def coupling_viscous(coupling: Coupling, temperature_k: float) -> float | None:
+    """Viscous coefficient [N·m·s/rad] at a temperature [K]; None where the coupling states none."""
+    if coupling.viscous_nms_rad is None or not coupling.damping_points:
+        return coupling.viscous_nms_rad
+    return coupling.viscous_nms_rad * table_value(coupling.damping_points, temperature_k)

@@ -3,8 +3,10 @@
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 from fractions import Fraction
 
+from quillshaft.elements.mesh_stiffness import PER_MM_UM, MeshRuleResult, rule_stiffness
 from quillshaft.train.model import FIXED, Epicyclic, GearGeometry, GearMesh
 
 
@@ -26,15 +28,43 @@ def mesh_stiffness_at_first(gear: GearMesh) -> float | None:
     """Stiffness [N·m/rad] of a mesh at its first-named station; None where the mesh is rigid."""
     if gear.mesh_nm_rad is not None:
         return gear.mesh_nm_rad
-    if gear.mesh_n_m is None or gear.geometry is None:
+    linear = mesh_linear_stiffness(gear)
+    if linear is None or gear.geometry is None:
         return None
-    return mesh_torsional_stiffness(gear.mesh_n_m, base_radius(gear.geometry, gear.teeth[0]))
+    return mesh_torsional_stiffness(linear, base_radius(gear.geometry, gear.teeth[0]))
+
+
+def mesh_linear_stiffness(gear: GearMesh) -> float | None:
+    """Stiffness [N/m] of a mesh along the base tangent, given or by the rule; None where neither says so."""
+    if not gear.by_rule:
+        return gear.mesh_n_m
+    rule = mesh_by_rule(gear)
+    if rule is None or gear.geometry is None or gear.geometry.face_m is None:
+        return None
+    return rule.mean_n_mm_um * PER_MM_UM * gear.geometry.face_m
+
+
+def mesh_by_rule(gear: GearMesh) -> MeshRuleResult | None:
+    """What ISO 6336-1, simplified, gives for a mesh; None where its stiffness is stated otherwise.
+
+    The ring of an internal mesh is its larger wheel. Raises ValueError where the teeth cannot mesh.
+    """
+    if not gear.by_rule or gear.geometry is None:
+        return None
+    if not gear.internal or gear.teeth[0] < gear.teeth[1]:
+        return rule_stiffness(gear.geometry, gear.teeth, gear.internal)
+    x1, x2 = gear.geometry.profile_shift
+    return rule_stiffness(replace(gear.geometry, profile_shift=(x2, x1)), (gear.teeth[1], gear.teeth[0]), True)
 
 
 def mesh_ratio(gear: GearMesh) -> Fraction:
-    """Signed speed of the second wheel over that of the first: −z1/z2, + in an internal mesh."""
+    """Signed speed of the second wheel over that of the first: −z1/z2, + in an internal mesh.
+
+    Shafts of a bevel stage have no common sense of rotation: + unless the file says that it reverses.
+    """
     ratio = Fraction(gear.teeth[0], gear.teeth[1])
-    return ratio if gear.internal else -ratio
+    positive = not gear.reverses if gear.kind == "bevel" else gear.internal
+    return ratio if positive else -ratio
 
 
 def turning_members(stage: Epicyclic) -> tuple[tuple[str, int], ...]:

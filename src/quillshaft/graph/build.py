@@ -8,10 +8,15 @@ from fractions import Fraction
 import numpy as np
 
 from quillshaft.elements import shaft as shaft_formulas
+from quillshaft.elements.crank import running_gear_inertia
+from quillshaft.graph.cut_links import add_cuts, inner_nodes, with_cuts
+from quillshaft.graph.dampers import damper_drafts, damper_parts, viscous_rings
+from quillshaft.graph.fluid import fluid_parts
+from quillshaft.graph.gears import check_rules, gear_parts
 from quillshaft.graph.links import LinkDraft, draft_links
 from quillshaft.graph.motions import held_by_nothing, independent_rows, rigid_motion_count
 from quillshaft.graph.network import Floats, Ints, Network, TorqueLink
-from quillshaft.graph.speeds import speed_ratios
+from quillshaft.graph.speeds import speed_ratios, station_names
 from quillshaft.graph.states import Temperature
 from quillshaft.graph.torsional import GraphLink, InertiaPart, RigidMeshes, TorsionalGraph
 from quillshaft.train.model import Train
@@ -29,6 +34,9 @@ def build_graph(train: Train, temperature: Temperature = "reference") -> Torsion
     a speed undetermined, or has a part without inertia and without stiffness to hold it.
     """
     findings = Findings(train.file, train.cases)
+    check_rules(train, findings)
+    if findings.problems:
+        raise TrainFileError(tuple(findings.problems))
     ratios = speed_ratios(train, findings)
     if ratios is None:
         raise TrainFileError(tuple(findings.problems))
@@ -41,17 +49,22 @@ def build_graph(train: Train, temperature: Temperature = "reference") -> Torsion
 def _assemble(
     train: Train, ratios: tuple[Fraction, ...], findings: Findings, temperature: Temperature
 ) -> TorsionalGraph:
-    names = tuple(station.name for station in train.stations)
+    names = station_names(train)
+    number = {name: index for index, name in enumerate(names)}
     scale = np.array([abs(float(ratio)) or 1.0 for ratio in ratios])
     parts = _inertia_parts(train, names, scale, ratios, findings)
+    parts += (*fluid_parts(train, number), *damper_parts(train, number), *gear_parts(train, number))
     drafts = draft_links(train, names, ratios, temperature)
+    drafts += damper_drafts(train, number, ratios, findings)
     node = _merge(len(names), drafts)
     coefficients = [draft.node_coefficients(node, ratios) if draft.slot == "torque" else {} for draft in drafts]
     rigid_rows = [i for i, draft in enumerate(drafts) if draft.slot == "torque" and draft.stiffness is None]
     kept = independent_rows([coefficients[i] for i in rigid_rows])
     dropped = {i for i, keep in zip(rigid_rows, kept, strict=True) if not keep}
     links = _number_links(drafts, node, dropped, scale, ratios)
+    links = with_cuts(links, train, int(node.max()) + 1, ratios)
     turning = _by_node(node, np.array([ratio != 0 for ratio in ratios]))
+    turning = np.append(turning, [turning[node[first]] for _, first in inner_nodes(links)]).astype(bool)
     networks = {
         corner: _network(corner, node, turning, scale, parts, links, drafts, coefficients)
         for corner in ("nominal", "soft", "stiff", "static")
@@ -72,6 +85,8 @@ def _assemble(
         networks["static"],
         _rigid_meshes(names, links, bool(dropped)),
         _lines(train, names),
+        _viscous_to_ground(train, len(names)),
+        viscous_rings(train, number),
     )
 
 
@@ -88,11 +103,12 @@ def _inertia_parts(
                 message = "a station at rest has no speed to refer an inertia by"
                 findings.add(("stations", station.name, "referred-to"), message, station.referred_to)
             inertia *= (scale[other] / scale[index]) ** 2
+        if station.running_gear is not None:
+            inertia += running_gear_inertia(station.running_gear)
         parts.append(InertiaPart(index, f"stations.{station.name}", inertia, station.tolerance))
     for shaft in train.shafts:
-        if shaft.own_inertia == "ends" and shaft.material is not None:
-            ends = shaft_formulas.end_inertias(shaft.pieces, shaft.material)
-            for name, inertia in zip(shaft.between, ends, strict=True):
+        if shaft.own_inertia != "none" and shaft.material is not None:
+            for name, inertia in zip(shaft.between, shaft_formulas.own_inertias(shaft), strict=True):
                 parts.append(InertiaPart(number[name], f"shafts.{shaft.name}", inertia, shaft.inertia_tolerance))
     for coupling in train.couplings:
         for name, inertia in zip(coupling.between, coupling.half_inertias_kgm2, strict=True):
@@ -100,6 +116,13 @@ def _inertia_parts(
                 element = f"couplings.{coupling.name}"
                 parts.append(InertiaPart(number[name], element, inertia, coupling.inertia_tolerance))
     return tuple(parts)
+
+
+def _viscous_to_ground(train: Train, count: int) -> Floats | None:
+    """Damping to ground [N·m·s/rad] per station at its own speed; None where no station states any."""
+    given = np.zeros(count)
+    given[: len(train.stations)] = [station.viscous_nms_rad or 0.0 for station in train.stations]
+    return given if given.any() else None
 
 
 def _station_inertia(count: int, parts: tuple[InertiaPart, ...], side: int) -> Floats:
@@ -138,7 +161,7 @@ def _by_node(node: Ints, values: Ints) -> Ints:
 def _number_links(
     drafts: list[LinkDraft], node: Ints, dropped: set[int], scale: Floats, ratios: tuple[Fraction, ...]
 ) -> tuple[GraphLink, ...]:
-    counts = {"spring": 0, "tie": 0, "torque": 0, "rigid": 0, "slack": 0}
+    counts = {"cut": 0, "spring": 0, "tie": 0, "torque": 0, "rigid": 0, "slack": 0}
     links = []
     for position, draft in enumerate(drafts):
         slot = draft.slot
@@ -158,10 +181,11 @@ def _number_links(
                 tuple(float(value) for value in draft.station_coefficients(ratios)),
                 1.0 / first,
                 draft.tolerance,
-                draft.loss_factor,
+                0.0 if draft.viscous is not None and draft.loss_factor is None else draft.loss_factor,
                 slot,
                 counts[slot],
                 draft.ratio_text,
+                draft.viscous or 0.0,
             )
         )
         counts[slot] += 1
@@ -198,7 +222,7 @@ def _network(
     spring_ends = np.array([[node[s] for s in link.stations] for link in springs], dtype=np.intp)
     tie_node = np.array([node[link.stations[0]] for link in ties], dtype=np.intp)
     rows = [coefficients[position] for position, link in enumerate(links) if link.slot == "torque"]
-    return Network(
+    network = Network(
         inertia,
         turning.astype(bool),
         spring_ends.reshape(-1, 2),
@@ -206,8 +230,10 @@ def _network(
         tie_node,
         np.array([stiffness(link) for link in ties]),
         tuple(torque_links),
-        rigid_motion_count(len(turning), spring_ends.reshape(-1, 2), tie_node, rows),
+        0,
     )
+    network = add_cuts(network, links, node, side)
+    return replace(network, rigid_motions=rigid_motion_count(len(turning), network.spring_ends, tie_node, rows))
 
 
 def _torque_link(coefficients: dict[int, Fraction], compliance: float) -> TorqueLink:
@@ -253,11 +279,12 @@ def _is_bridge(position: int, ends: Ints) -> bool:
 def _lines(train: Train, names: tuple[str, ...]) -> tuple[tuple[int, ...], ...]:
     """Stations joined by shafts, each line and the lines themselves in file order."""
     number = {name: index for index, name in enumerate(names)}
-    line = list(range(len(names)))
+    line = list(range(len(train.stations)))
     for shaft in train.shafts:
         a, b = (line[number[name]] for name in shaft.between)
         line = [min(a, b) if own in (a, b) else own for own in line]
-    return tuple(tuple(i for i, own in enumerate(line) if own == first) for first in sorted(set(line)))
+    own_lines = {own for own, station in zip(line, train.stations, strict=True) if station.made_by is None}
+    return tuple(tuple(i for i, own in enumerate(line) if own == first) for first in sorted(own_lines))
 
 
 def without_damping_words(graph: TorsionalGraph, low_zeta: float) -> TorsionalGraph:

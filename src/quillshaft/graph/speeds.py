@@ -6,19 +6,34 @@ from collections import deque
 from dataclasses import dataclass
 from fractions import Fraction
 
-from quillshaft.elements.gear import mesh_ratio, turning_members
+from quillshaft.elements.belt import belt_ratio
+from quillshaft.elements.epicyclic import stage_meshes
+from quillshaft.elements.gear import mesh_ratio
 from quillshaft.train.model import Epicyclic, GearMesh, Train
 from quillshaft.train.validate import Findings
+
+BELT_PLAY = Fraction(1, 1000)
+"""Relative disagreement of a loop's ratios that a belt's creep takes up (common practice)."""
+
+
+def station_names(train: Train) -> tuple[str, ...]:
+    """Stations of the graph: those of the file in its order, then those that dampers add."""
+    added = (damper.added_station for damper in train.dampers if damper.swings)
+    return (*(station.name for station in train.stations), *added)
 
 
 @dataclass(frozen=True)
 class RatioEdge:
-    """Speed of `second` = ratio · speed of `first`; `gear` is None for shafts and couplings."""
+    """Speed of `second` = ratio · speed of `first`; `gear` is None for shafts and couplings.
+
+    play is the relative disagreement of a loop that the link takes up by slipping: a belt's, else 0.
+    """
 
     first: int
     second: int
     ratio: Fraction
     gear: str | None
+    play: Fraction = Fraction(0)
 
 
 @dataclass(frozen=True)
@@ -31,9 +46,17 @@ class SpeedRow:
 
 def ratio_edges(train: Train) -> tuple[list[RatioEdge], list[SpeedRow]]:
     """Every link that ties two speeds, and the equations of epicyclic stages that tie three."""
-    number = {station.name: index for index, station in enumerate(train.stations)}
+    number = {name: index for index, name in enumerate(station_names(train))}
     pairs = [*(shaft.between for shaft in train.shafts), *(coupling.between for coupling in train.couplings)]
     edges = [RatioEdge(number[first], number[second], Fraction(1), None) for first, second in pairs]
+    edges += [
+        RatioEdge(number[damper.at], number[damper.added_station], Fraction(1), None)
+        for damper in train.dampers
+        if damper.swings
+    ]
+    for fluid in train.fluid_couplings:
+        kept = Fraction(1.0 - fluid.slip).limit_denominator(10**6)
+        edges.append(RatioEdge(number[fluid.between[0]], number[fluid.between[1]], kept, None))
     rows: list[SpeedRow] = []
     for gear in train.gears:
         if isinstance(gear, GearMesh):
@@ -41,16 +64,21 @@ def ratio_edges(train: Train) -> tuple[list[RatioEdge], list[SpeedRow]]:
             edges.append(RatioEdge(first, second, mesh_ratio(gear), gear.name))
         else:
             _stage(gear, number, edges, rows)
+    for belt in train.belts:
+        first, second = (number[name] for name in belt.between)
+        play = BELT_PLAY if belt.teeth is None else Fraction(0)
+        edges.append(RatioEdge(first, second, belt_ratio(belt), belt.name, play))
     return edges, rows
 
 
 def _stage(gear: Epicyclic, number: dict[str, int], edges: list[RatioEdge], rows: list[SpeedRow]) -> None:
-    members = turning_members(gear)
-    if len(members) == 2:
-        (first, a), (second, b) = members
-        edges.append(RatioEdge(number[first], number[second], Fraction(-a, b), gear.name))
-    else:
-        rows.append(SpeedRow(gear.name, tuple((number[name], Fraction(z)) for name, z in members)))
+    for mesh in stage_meshes(gear):
+        members = mesh.turning
+        if len(members) == 2:
+            (first, a), (second, b) = members
+            edges.append(RatioEdge(number[first], number[second], -a / b, gear.name))
+        else:
+            rows.append(SpeedRow(gear.name, tuple((number[name], z) for name, z in members)))
 
 
 def unconnected(count: int, start: int, edges: list[RatioEdge], rows: list[SpeedRow]) -> list[int]:
@@ -74,7 +102,7 @@ def unconnected(count: int, start: int, edges: list[RatioEdge], rows: list[Speed
 def _spread(count: int, edges: list[RatioEdge]) -> tuple[list[int], list[Fraction], list[tuple[RatioEdge, list[str]]]]:
     """Root and factor of every station (speed = factor · root's speed), and the edges that disagree."""
     beside: list[list[tuple[int, Fraction, RatioEdge]]] = [[] for _ in range(count)]
-    for edge in edges:
+    for edge in _without_closing_belts(count, edges):
         beside[edge.first].append((edge.second, edge.ratio, edge))
         beside[edge.second].append((edge.first, 1 / edge.ratio, edge))
     root, factor = [-1] * count, [Fraction(0)] * count
@@ -91,8 +119,33 @@ def _spread(count: int, edges: list[RatioEdge]) -> tuple[list[int], list[Fractio
                     root[other], factor[other] = start, factor[station] * ratio
                     parent[other] = (station, edge)
                     queue.append(other)
-    wrong = [edge for edge in edges if factor[edge.second] != edge.ratio * factor[edge.first]]
+    wrong = [
+        edge
+        for edge in edges
+        if abs(factor[edge.second] - edge.ratio * factor[edge.first]) > edge.play * abs(factor[edge.second])
+    ]
     return root, factor, [(edge, _loop_gears(edge, parent)) for edge in wrong]
+
+
+def _without_closing_belts(count: int, edges: list[RatioEdge]) -> list[RatioEdge]:
+    """The edges without belts that close a loop: exact ratios give the speeds wherever they can."""
+    root = list(range(count))
+
+    def find(a: int) -> int:
+        while root[a] != a:
+            root[a] = root[root[a]]
+            a = root[a]
+        return a
+
+    kept = [edge for edge in edges if not edge.play]
+    for edge in kept:
+        root[find(edge.first)] = find(edge.second)
+    for edge in (edge for edge in edges if edge.play):
+        a, b = find(edge.first), find(edge.second)
+        if a != b:
+            root[a] = b
+            kept.append(edge)
+    return kept
 
 
 def _loop_gears(edge: RatioEdge, parent: dict[int, tuple[int, RatioEdge]]) -> list[str]:
@@ -145,7 +198,7 @@ def speed_ratios(train: Train, findings: Findings) -> tuple[Fraction, ...] | Non
 
     Ratios are exact fractions of teeth, so a loop closes exactly or not at all.
     """
-    names = [station.name for station in train.stations]
+    names = station_names(train)
     number = {name: index for index, name in enumerate(names)}
     start = number[train.operation.speed_at]
     edges, rows = ratio_edges(train)

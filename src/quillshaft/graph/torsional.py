@@ -9,36 +9,59 @@ from typing import Literal
 from quillshaft.graph.network import Bools, Floats, Ints, Network
 from quillshaft.train.model import Tolerance
 
-Slot = Literal["spring", "tie", "torque", "rigid", "slack"]
+Slot = Literal["spring", "tie", "torque", "rigid", "slack", "cut"]
 
 
 @dataclass(frozen=True)
 class InertiaPart:
-    """One contribution [kg·m²] to a station's inertia, at the station's own speed."""
+    """One contribution [kg·m²] to a station's inertia, at the station's own speed.
+
+    counted_at   the station whose entry holds its kinetic energy, where that is another: the mass of planets turns
+                 with the carrier and counts as theirs
+    """
 
     station: int
     element: str
     inertia_kgm2: float
     tolerance: Tolerance
+    counted_at: int | None = None
+
+
+@dataclass(frozen=True)
+class CutLink:
+    """A shaft of distributed inertia inside the networks: lengths in series with inertia between them.
+
+    springs, nodes     their numbers in the networks, from the first-named station on; one node fewer
+    referred_nm_rad    (springs,) nominal stiffness; referred_kgm2 (nodes,) nominal inertia
+    """
+
+    springs: tuple[int, ...]
+    nodes: tuple[int, ...]
+    referred_nm_rad: tuple[float, ...]
+    referred_kgm2: tuple[float, ...]
+    inertia_tolerance: Tolerance
 
 
 @dataclass(frozen=True)
 class GraphLink:
     """One link of the train as the graph holds it.
 
-    kind               shaft | coupling | mesh | epicyclic | tie
+    kind               shaft | coupling | mesh | epicyclic | belt | tie | damper
     stations           station numbers in the order the file names them
     stiffness_nm_rad   actual, at the first-named station (an epicyclic stage: at its sun); None if rigid
     referred_nm_rad    referred to the speed of `speed-at`; None if rigid
     coefficients       (stations) referred twist = sum(coefficient · referred angle); a station gives the link
                        its coefficient times the referred torque
     torque_scale       actual torque at the first-named station over the referred torque
+    loss_factor        None where the link states no damping of its own; 0 where it states a viscous one
+    viscous_nms_rad    viscous coefficient, actual, at the same place as the stiffness; 0 where none is stated
     slot, index        where the networks keep it: a spring, a tie, a torque link or a rigid mesh, and its
-                       number there; "slack" is a spring whose two ends are rigidly one
+                       number there; "slack" is a spring whose two ends are rigidly one; "cut" is a shaft in
+                       lengths, whose places `cut` holds
     """
 
     name: str
-    kind: Literal["shaft", "coupling", "mesh", "epicyclic", "tie"]
+    kind: Literal["shaft", "coupling", "mesh", "epicyclic", "belt", "tie", "damper"]
     stations: tuple[int, ...]
     stiffness_nm_rad: float | None
     referred_nm_rad: float | None
@@ -49,6 +72,8 @@ class GraphLink:
     slot: Slot
     index: int
     ratio_text: str = ""
+    viscous_nms_rad: float = 0.0
+    cut: CutLink | None = None
 
 
 @dataclass(frozen=True)
@@ -68,6 +93,21 @@ class RigidMeshes:
 
 
 @dataclass(frozen=True)
+class ViscousRing:
+    """A damper's ring that fluid alone joins to its station, all actual.
+
+    inertia_kgm2      of the whole ring; counted_kgm2 of it moves with the station in the undamped networks
+    viscous_nms_rad   None where the file states none
+    """
+
+    name: str
+    station: int
+    inertia_kgm2: float
+    counted_kgm2: float
+    viscous_nms_rad: float | None
+
+
+@dataclass(frozen=True)
 class TorsionalGraph:
     """A train as a graph, everything in file order.
 
@@ -82,6 +122,8 @@ class TorsionalGraph:
                    and the highest frequencies), `static` has no ties on turning stations
     rigid          rigid meshes and how their torques are recovered
     lines          station numbers of each shaft line: stations joined by shafts, between couplings and gears
+    viscous_nms_rad   (stations,) damping to ground, actual; None where no station has any
+    rings          rings of untuned dampers, for solutions that hold damping
     """
 
     stations: tuple[str, ...]
@@ -97,6 +139,8 @@ class TorsionalGraph:
     static: Network
     rigid: RigidMeshes
     lines: tuple[tuple[int, ...], ...]
+    viscous_nms_rad: Floats | None = None
+    rings: tuple[ViscousRing, ...] = ()
 
     def number(self, name: str) -> int:
         """Number of a station by its name. Raises ValueError where there is none."""

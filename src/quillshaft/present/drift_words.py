@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import math
 
-from quillshaft.graph.states import follows_torque
+from quillshaft.assess.along import follows_speed
+from quillshaft.present.fluid_words import BOTH_SIDES
 from quillshaft.present.words import VERDICT_WORDS, hertz, number, plain
 from quillshaft.study.drift import Drift, FirstInterference
 
@@ -89,7 +90,9 @@ def drift_sentences(drift: Drift) -> list[str]:
         "Judged at nominal values against criteria.separation, dismissals left out; modes are numbered by rising "
         "frequency at every value."
     )
-    if follows_torque(drift.train):
+    if drift.train.fluid_couplings:
+        lines.append(BOTH_SIDES)
+    if follows_speed(drift.train):
         lines.append(
             "Frequencies follow speed here: those listed stand at the mean torque of rated speed, nearness is judged "
             "at every speed of the range."

@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import Any
 
 from quillshaft.assess.results import Screening
+from quillshaft.present.fluid_words import BOTH_SIDES
 from quillshaft.present.units import SHOWN
 from quillshaft.present.words import VERDICT_WORDS, hertz, number
 from quillshaft.study.lever_search import LARGEST_FACTOR
@@ -79,6 +80,11 @@ def lever_notes(screening: Screening, ways: WaysOut) -> list[str]:
         lines.append(f"Moves the mode, but clears nothing alone {reach}: {', '.join(ways.not_alone)}.")
     if ways.at_rated:
         lines.append("Frequencies follow speed here: the changes are worked out at rated speed; screen them again.")
+    swinging = {f"dampers.{item.name}" for item in screening.train.dampers if item.kind == "pendulum"}
+    if any(lever.element in swinging for lever in ways.levers):
+        lines.append("A pendulum damper's stiffness stands for its order: the order changes by the root of the factor.")
+    if screening.train.fluid_couplings:
+        lines.append(BOTH_SIDES)
     return lines
 
 

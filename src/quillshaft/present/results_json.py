@@ -117,6 +117,10 @@ def screening_data(screening: Screening) -> dict[str, Any]:
             {"element": item.element, "key": item.key, "value": item.value, "why": item.why}
             for item in screening.assumed
         ],
+        "derived": [
+            {"element": item.element, "quantity": item.quantity, "value": item.value, "unit": item.unit}
+            for item in screening.derived
+        ],
         "flags": [{"element": flag.element, "text": flag.text} for flag in screening.flags],
         "self_check": {
             "modes": check.modes,

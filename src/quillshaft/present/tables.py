@@ -8,6 +8,8 @@ from rich.table import Table
 from rich.text import Text
 
 from quillshaft.assess.results import Screening
+from quillshaft.present.derived_rows import DERIVED_HEADS, derived_rows
+from quillshaft.present.listed_modes import listed_modes
 from quillshaft.present.rows import (
     link_heads,
     link_rows,
@@ -16,6 +18,7 @@ from quillshaft.present.rows import (
     station_heads,
     station_rows,
 )
+from quillshaft.present.viscous_words import VISCOUS_HEADS, viscous_rows
 from quillshaft.present.words import attention_sentences, hertz, mode_words
 
 
@@ -42,7 +45,7 @@ def modes_table(screening: Screening) -> Table:
             "proven" if mode.proof.proven else "NOT PROVEN",
             mode_words(mode) + ("" if len(mode.cluster) == 1 else f" (one basis of {len(mode.cluster)} equal modes)"),
         )
-        for mode in screening.modes
+        for mode in listed_modes(screening)
     )
     return make_table(
         "Natural frequencies", "Mode>|Hz>|cycles/min>|over tolerances, Hz>|damping>|proof|what it does", rows
@@ -80,9 +83,22 @@ def links_table(screening: Screening) -> Table:
     return make_table("Links (stiffness and torque at the first-named station)", columns, link_rows(screening))
 
 
+def derived_table(screening: Screening) -> Table:
+    """Damping and springs worked out from load laws and electrical data."""
+    head = DERIVED_HEADS
+    columns = f"{head[0]}|{head[1]}|{head[2]}>|{head[3]}|{head[4]}"
+    return make_table("Worked out from electrical data and load curves", columns, derived_rows(screening))
+
+
 def sources_table(screening: Screening) -> Table:
     """Every source by the name that [excitations-off], [dismissals] and [criteria] use."""
     return make_table("Sources", "Source|at|line|speed ratio>|when|order|remark", source_rows(screening))
+
+
+def viscous_table(screening: Screening) -> Table:
+    """Viscous damping of links and stations."""
+    heads = f"{VISCOUS_HEADS[0]}|{VISCOUS_HEADS[1]}>|{VISCOUS_HEADS[2]}>|{VISCOUS_HEADS[3]}"
+    return make_table("Viscous damping", heads, viscous_rows(screening))
 
 
 def assumed_table(screening: Screening) -> Table:

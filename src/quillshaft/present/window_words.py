@@ -6,6 +6,7 @@ import math
 from collections.abc import Iterable
 
 from quillshaft.assess.results import Screening
+from quillshaft.present.fluid_words import BOTH_SIDES
 from quillshaft.present.rows import tolerance_words
 from quillshaft.present.units import SHOWN
 from quillshaft.present.words import VERDICT_WORDS, number, percent
@@ -54,6 +55,8 @@ def window_sentences(screening: Screening, windows: Windows) -> list[str]:
         lines.append(f"This is a narrowed question{narrowed}: what is left out may still be met.")
     if windows.over_speeds:
         lines.append("Stiffnesses of this train depend on speed: the windows are the union over its speeds.")
+    if screening.train.fluid_couplings:
+        lines.append(BOTH_SIDES)
     return lines
 
 

@@ -6,6 +6,7 @@ from dataclasses import dataclass, replace
 
 from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.sources.implied import gear_sources, machine_sources, shaft_sources
+from quillshaft.sources.joints import joint_sources
 from quillshaft.sources.line import Action, Source
 from quillshaft.train.model import Excitation, Train
 from quillshaft.train.problems import TrainFileError, did_you_mean
@@ -13,8 +14,18 @@ from quillshaft.train.validate import Findings
 
 FAMILIES: tuple[str, ...] = (
     *("default", "shaft", "1x", "2x", "gear", "mesh", "planet-pass", "line", "line-1x", "line-2x"),
-    *("converter", "out-1x", "out-2x", "out-6x", "out-12x", "pass", "vane-pass", "vane-pass 2x"),
-    *("blade-pass", "blade-pass 2x", "diffuser-pass", "engine", "excitation"),
+    *("converter", "out-1x", "out-2x", "out-6x", "out-12x", "switch", "beat", "grid", "slip"),
+    *(
+        "pass",
+        "vane-pass",
+        "vane-pass 2x",
+        "blade-pass",
+        "blade-pass 2x",
+        "diffuser-pass",
+        "engine",
+        "joint",
+        "excitation",
+    ),
 )
 
 
@@ -36,6 +47,7 @@ def collect_sources(train: Train, graph: TorsionalGraph) -> SourceSet:
     sources = [
         *shaft_sources(graph),
         *gear_sources(train, graph),
+        *joint_sources(train, graph),
         *machine_sources(train, graph, findings),
         *(_given(excitation, graph, findings) for excitation in train.excitations),
     ]

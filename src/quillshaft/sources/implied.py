@@ -7,8 +7,10 @@ from dataclasses import replace
 
 from quillshaft.elements.gear import turning_members
 from quillshaft.graph.torsional import TorsionalGraph
-from quillshaft.sources.engine import is_major, orders_of
+from quillshaft.sources.electrical import converter_lines, grid_lines, start_lines
 from quillshaft.sources.line import Action, Source
+from quillshaft.sources.reciprocating_sources import KINDS as RECIPROCATING
+from quillshaft.sources.reciprocating_sources import reciprocating_sources
 from quillshaft.train.model import Epicyclic, GearMesh, Machine, Train
 from quillshaft.train.validate import Findings
 
@@ -103,8 +105,10 @@ def _machine_lines(machine: Machine, supply_band: float) -> list[tuple[str, floa
         lines.append(("diffuser-pass", machine.diffuser_vanes, 0.0, 0.0))
     lines += [(f"pass-{count}", count, 0.0, 0.0) for count in machine.passes]
     if machine.kind == "converter-fed-motor":
-        lines += [(f"out-{k}x", k * pairs, k * machine.slip_hz, 0.0) for k in (1, 2, 6, 12)]
-    if machine.supply_hz is not None:
+        lines += converter_lines(machine, supply_band)
+    if machine.supply_hz is not None and machine.electrical.grid_resonance_hz is not None:
+        lines += grid_lines(machine.electrical.grid_resonance_hz, machine.supply_hz, supply_band)
+    if machine.supply_hz is not None and (machine.line_side or machine.kind != "converter-fed-motor"):
         lines += [(f"line-{k}x", 0.0, k * machine.supply_hz, supply_band) for k in (1, 2)]
     elif machine.kind == "generator":
         lines += [(f"line-{k}x", k * pairs, 0.0, 0.0) for k in (1, 2)]
@@ -114,8 +118,8 @@ def _machine_lines(machine: Machine, supply_band: float) -> list[tuple[str, floa
 def machine_sources(train: Train, graph: TorsionalGraph, findings: Findings) -> Iterator[Source]:
     """What the machines imply; contradictions between a machine and the speeds go to `findings`."""
     for machine in train.machines:
-        if machine.kind == "reciprocating-engine":
-            yield from _engine_sources(machine, graph, findings)
+        if machine.kind in RECIPROCATING:
+            yield from reciprocating_sources(machine, train, graph, findings)
             continue
         station = graph.number(machine.at or "")
         if graph.speed_ratio[station] == 0:
@@ -125,34 +129,20 @@ def machine_sources(train: Train, graph: TorsionalGraph, findings: Findings) -> 
         for tail, order, frequency, band in _machine_lines(machine, train.operation.supply_band):
             family = FAMILY.get(machine.kind, "pass")
             kind = "line" if tail.startswith("line-") else "pass" if "pass" in tail else family
+            kind = next((word for word in ("switch", "beat", "grid") if tail.startswith(f"{word}-")), kind)
             labels = (tail, kind, machine.kind, machine.name)
             yield _source(graph, f"{machine.name} {tail}", labels, station, order, frequency, band)
+        yield from _start_sources(machine, station, graph)
 
 
-def _engine_sources(machine: Machine, graph: TorsionalGraph, findings: Findings) -> Iterator[Source]:
-    stations = tuple(graph.number(cylinder.at) for cylinder in machine.cylinders)
-    firing = tuple(cylinder.fires_at_rad for cylinder in machine.cylinders)
-    ratios = {graph.speed_ratio[station] for station in stations}
-    if len(ratios) > 1 or 0 in ratios:
-        findings.add(("machines", machine.name, "cylinders"), "the cylinders of one engine turn at one speed")
+def _start_sources(machine: Machine, station: int, graph: TorsionalGraph) -> Iterator[Source]:
+    """Slip-frequency lines of a synchronous motor that runs up on its damper winding; they act at the start only."""
+    if machine.electrical.start != "asynchronous" or machine.poles is None or machine.supply_hz is None:
         return
-    names = [graph.stations[station] for station in stations]
-    at = names[0] if len(set(names)) == 1 else f"{names[0]} to {names[-1]}"
-    for order in orders_of(machine.strokes or 4):
-        phases = tuple(order * angle for angle in firing)
-        action = Action("point", stations, phases)
-        tail = f"order-{order:g}"
-        labels = (tail, "engine", machine.kind, machine.name)
-        yield _source(
-            graph,
-            f"{machine.name} {tail}",
-            labels,
-            stations[0],
-            order,
-            action=action,
-            at=at,
-            major=is_major(order, firing),
-        )
+    for tail, order, frequency, band in start_lines(machine.poles, machine.supply_hz):
+        labels = (tail, "slip", machine.kind, machine.name)
+        source = _source(graph, f"{machine.name} {tail}", labels, station, order, frequency, band)
+        yield replace(source, when="start")
 
 
 def _check_supply(machine: Machine, station: int, train: Train, graph: TorsionalGraph, findings: Findings) -> None:

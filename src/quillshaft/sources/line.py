@@ -16,12 +16,14 @@ class Action:
 
     kind     point: the stations in `stations`, each with the phase of its share [rad];
              line: the most moved of `stations`; link: inside the link `link`
+    weights  of the stations, where they are not all of one amplitude
     """
 
     kind: Literal["point", "line", "link"]
     stations: tuple[int, ...] = ()
     phases_rad: tuple[float, ...] = ()
     link: str | None = None
+    weights: tuple[float, ...] = ()
 
 
 @dataclass(frozen=True)

@@ -10,7 +10,15 @@ from quillshaft.assess.results import Screening
 from quillshaft.graph.network import Floats, Network
 from quillshaft.graph.torsional import GraphLink, InertiaPart, TorsionalGraph
 
-TABLE = {"shaft": "shafts", "coupling": "couplings", "mesh": "gears", "epicyclic": "gears", "tie": "ties"}
+TABLE = {
+    "shaft": "shafts",
+    "coupling": "couplings",
+    "mesh": "gears",
+    "epicyclic": "gears",
+    "belt": "belts",
+    "tie": "ties",
+    "damper": "dampers",
+}
 """Table of the train file that holds a link of each kind."""
 
 
@@ -112,4 +120,6 @@ def blend(base: Screening, case: Screening, share: float) -> Blend:
             inertia[index] *= (own / inertia[index]) ** (1.0 - share)
     nodal = np.zeros(network.nodes)
     np.add.at(nodal, graph.node, inertia * graph.scale**2)
+    for inner in (list(link.cut.nodes) for link in graph.links if link.cut is not None):
+        nodal[inner] = network.inertia_kgm2[inner]
     return Blend(replace(network, inertia_kgm2=nodal), inertia)

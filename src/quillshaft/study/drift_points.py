@@ -7,11 +7,10 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
-from quillshaft.assess.along import graph_at, settle
+from quillshaft.assess.along import follows_speed, graph_at, settle
 from quillshaft.assess.separation import JudgedRange, judged_ranges, required_separation
 from quillshaft.graph.build import build_graph
 from quillshaft.graph.network import Floats
-from quillshaft.graph.states import follows_torque
 from quillshaft.solve.modes import natural_frequencies
 from quillshaft.sources.collect import collect_sources
 from quillshaft.sources.line import Source
@@ -103,7 +102,7 @@ def _bands(train: Train, sources: list[Source], ranges: tuple[JudgedRange, ...],
 def _frequencies(train: Train, ranges: tuple[JudgedRange, ...]) -> tuple[Floats, list[Along]]:
     """Natural frequencies (modes,) [Hz], and how each follows speed; none where they do not."""
     graph = build_graph(train)
-    if not follows_torque(train):
+    if not follows_speed(train):
         return natural_frequencies(graph.network) / TWO_PI, []
     settled = settle(train, graph, "reference")
     rated = natural_frequencies(settled.graph.network)

@@ -7,13 +7,22 @@ from typing import Literal
 
 import numpy as np
 
+from quillshaft.elements.epicyclic import ring_mesh_name
 from quillshaft.graph.network import Floats, Ints, Network
-from quillshaft.graph.torsional import GraphLink, TorsionalGraph
+from quillshaft.graph.torsional import GraphLink, InertiaPart, TorsionalGraph
 from quillshaft.solve.modes import Modes
-from quillshaft.train.model import Tolerance, Train
+from quillshaft.train.model import Epicyclic, Tolerance, Train
 
-TABLE = {"shaft": "shafts", "coupling": "couplings", "mesh": "gears", "epicyclic": "gears", "tie": "ties"}
-ELASTIC = ("spring", "tie", "torque")
+TABLE = {
+    "shaft": "shafts",
+    "coupling": "couplings",
+    "mesh": "gears",
+    "epicyclic": "gears",
+    "belt": "belts",
+    "tie": "ties",
+    "damper": "dampers",
+}
+ELASTIC = ("spring", "tie", "torque", "cut")
 
 
 @dataclass(frozen=True)
@@ -82,7 +91,10 @@ def element_groups(train: Train) -> dict[str, str]:
     named += [(f"shafts.{item.name}", item.group) for item in train.shafts]
     named += [(f"couplings.{item.name}", item.group) for item in train.couplings]
     named += [(f"gears.{item.name}", item.group) for item in train.gears]
+    named += [(f"gears.{ring_mesh_name(item)}", item.group) for item in train.gears if isinstance(item, Epicyclic)]
+    named += [(f"belts.{item.name}", item.group) for item in train.belts]
     named += [(f"ties.{item.name}", item.group) for item in train.ties]
+    named += [(f"dampers.{item.name}", item.group) for item in train.dampers]
     return {element: group for element, group in named if group is not None}
 
 
@@ -98,19 +110,33 @@ def vary(graph: TorsionalGraph, network: Network) -> VariedNetwork:
     def followed(slot: str, count: int) -> Ints:
         return np.array([places[slot].get(index, -1) for index in range(count)], dtype=np.intp)
 
+    spring = followed("spring", len(network.spring_ends))
+    for number, link in enumerate(links):
+        spring[list(link.cut.springs if link.cut else ())] = number
     parts = [part for part in graph.parts if part.inertia_kgm2 > 0]
     stations = np.array([part.station for part in parts], dtype=np.intp)
     brought = np.zeros((len(parts), network.nodes))
     own = np.array([part.inertia_kgm2 for part in parts]) * graph.scale[stations] ** 2
     brought[np.arange(len(parts)), graph.node[stations]] = own
+    _add_inside_of_shafts(graph, parts, brought)
     return VariedNetwork(
         network,
-        followed("spring", len(network.spring_ends)),
+        spring,
         followed("tie", len(network.tie_node)),
         followed("torque", len(network.torque_links)),
         np.arange(len(links), len(links) + len(parts)),
         brought,
     )
+
+
+def _add_inside_of_shafts(graph: TorsionalGraph, parts: list[InertiaPart], brought: Floats) -> None:
+    """What lies inside a shaft of distributed inertia deviates with the part at its first end."""
+    for link in graph.links:
+        if link.cut is None:
+            continue
+        own = (f"shafts.{link.name}", link.stations[0])
+        row = next(index for index, part in enumerate(parts) if (part.element, part.station) == own)
+        brought[row, list(link.cut.nodes)] += link.cut.referred_kgm2
 
 
 def sensitivities(varied: VariedNetwork, modes: Modes, count: int) -> Floats:
@@ -124,7 +150,7 @@ def sensitivities(varied: VariedNetwork, modes: Modes, count: int) -> Floats:
     strain = ((varied.spring_input, modes.spring_share), (varied.tie_input, modes.tie_share))
     for follows, shares in (*strain, (varied.link_input, modes.link_share)):
         elastic = follows >= 0
-        out[:, follows[elastic]] = 0.5 * shares[:, elastic]
+        np.add.at(out.T, follows[elastic], 0.5 * shares[:, elastic].T)
     whole = varied.part_inertia.sum(axis=0)
     part = np.divide(varied.part_inertia, whole, out=np.zeros_like(varied.part_inertia), where=whole > 0)
     out[:, varied.part_input] = -0.5 * modes.node_share @ part.T

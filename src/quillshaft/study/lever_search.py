@@ -7,6 +7,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from quillshaft.assess.mode_results import part_energy
 from quillshaft.assess.results import Interference, Screening, Verdict, graver
 from quillshaft.assess.separation import highest_frequency, required_separation
 from quillshaft.graph.network import Floats, Network
@@ -76,9 +77,7 @@ def sensitivity(screening: Screening, datum: Datum, mode: int) -> float:
     if datum.link is not None:
         return 0.5 * result.strain_energy[datum.link.name]
     assert datum.part is not None
-    station = datum.part.station
-    share = datum.part.inertia_kgm2 / screening.graph.inertia_kgm2[station]
-    return float(-0.5 * result.kinetic_energy[screening.graph.stations[station]] * share)
+    return -0.5 * part_energy(screening.graph, result, datum.part)
 
 
 def candidates_for(study: Search, pair: Interference) -> list[tuple[Datum, float]]:

@@ -7,8 +7,8 @@ from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from typing import Literal
 
+from quillshaft.assess.dismissals import MATCH
 from quillshaft.assess.results import Interference, Screening, Verdict, graver
-from quillshaft.assess.screening import MATCH
 from quillshaft.assess.separation import judged_ranges, separate
 from quillshaft.graph.network import Floats
 from quillshaft.solve.modes import natural_frequencies

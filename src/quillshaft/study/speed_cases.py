@@ -12,11 +12,11 @@ from itertools import pairwise
 
 import numpy as np
 
-from quillshaft.assess.along import graph_at, settle
+from quillshaft.assess.along import follows_speed, graph_at, settle
 from quillshaft.assess.results import Screening
 from quillshaft.elements.coupling import table_value
 from quillshaft.graph.network import Network
-from quillshaft.graph.states import coupling_temperature, follows_temperature, follows_torque, with_stiffness
+from quillshaft.graph.states import coupling_temperature, follows_temperature, with_stiffness
 from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.train.model import Coupling, Range
 
@@ -73,7 +73,7 @@ def _heated(screening: Screening, graph: TorsionalGraph, side: int) -> Torsional
 def speed_cases(screening: Screening) -> tuple[SpeedCase, ...]:
     """The networks to use and the speeds they hold for; one set for the whole range where none depends on speed."""
     train, graph = screening.train, screening.graph
-    if follows_torque(train):
+    if follows_speed(train):
         return tuple(case for span in train.operation.ranges_rad_s for case in _cells(screening, span))
     soft, stiff = graph, graph
     if follows_temperature(train):
@@ -88,6 +88,7 @@ def _cells(screening: Screening, span: Range) -> list[SpeedCase]:
     speeds = np.linspace(span[0], span[1], CELLS + 1).tolist()
     graphs = [graph_at(train, settled, speed, temperature) for speed in speeds]
     names = [coupling.name for coupling in train.couplings if coupling.stiffness_points]
+    names += [damper.name for damper in train.dampers if damper.kind == "pendulum" and damper.swings]
     cases = []
     for (low, first), (high, second) in pairwise(zip(speeds, graphs, strict=True)):
         ends = [{name: _share(settled.graph, graph, name) for name in names} for graph in (first, second)]

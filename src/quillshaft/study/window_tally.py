@@ -9,8 +9,8 @@ from typing import NamedTuple
 
 import numpy as np
 
+from quillshaft.assess.dismissals import MATCH
 from quillshaft.assess.results import EQUAL, Screening
-from quillshaft.assess.screening import MATCH
 from quillshaft.graph.network import Floats, Network
 from quillshaft.graph.torsional import GraphLink
 from quillshaft.solve.link_counts import LinkCounts, OpenLink, link_counts, open_link
@@ -77,6 +77,11 @@ def find_spring(screening: Screening, name: str) -> GraphLink:
         if link.stiffness_nm_rad is None:
             word = {"mesh": "gear mesh", "epicyclic": "epicyclic stage"}.get(link.kind, link.kind)
             raise AskError(f"link {name}: this {word} is rigid, not a spring; give it mesh-stiffness to ask about it")
+        if link.slot == "cut":
+            raise AskError(
+                f"link {name}: its inertia is distributed, so that its stiffness cannot change by itself; "
+                'ask with own-inertia = "ends"'
+            )
         if link.slot == "slack":
             raise AskError(f"link {name}: rigid gears hold both its ends together, so that it never twists")
         return link

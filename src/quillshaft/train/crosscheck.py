@@ -5,14 +5,18 @@ from __future__ import annotations
 from itertools import pairwise
 from typing import Any
 
+from quillshaft.train.damper_checks import check_dampers
+from quillshaft.train.electrical_resolve import tie_problem
+from quillshaft.train.gear_checks import check_gears, check_joints
 from quillshaft.train.materials import BUILT_IN
 from quillshaft.train.model import BALANCE, FIXED
 from quillshaft.train.overlay import PathParts, added_by
 from quillshaft.train.problems import did_you_mean
 from quillshaft.train.quantity import QuantityError, read_quantity
+from quillshaft.train.shaft_checks import check_shaft_temperatures
 from quillshaft.train.validate import Findings, Rows
 
-LINK_TABLES = ("shafts", "couplings", "gears", "ties")
+LINK_TABLES = ("shafts", "couplings", "gears", "belts", "ties", "dampers")
 DEGREES = 57.29577951308232
 LEAST_POWER_W = 1e-9
 LAWS = ("square", "constant-torque", "constant-power")
@@ -56,7 +60,7 @@ def _station(findings: Findings, rows: Rows, path: PathParts, name: str, seen: s
 
 
 def _links(findings: Findings, rows: Rows) -> None:
-    for table in ("shafts", "couplings", "gears"):
+    for table in ("shafts", "couplings", "gears", "belts"):
         for name, row in rows.keyed[table].items():
             if not hasattr(row, "between"):
                 continue
@@ -69,8 +73,12 @@ def _links(findings: Findings, rows: Rows) -> None:
     for name, row in rows.keyed["stations"].items():
         if row.referred_to is not None:
             _station(findings, rows, ("stations", name, "referred-to"), row.referred_to, row.referred_to)
+    for table in ("ties", "dampers"):
+        for name, row in rows.keyed[table].items():
+            _station(findings, rows, (table, name, "at"), row.at, row.at)
     for name, row in rows.keyed["ties"].items():
-        _station(findings, rows, ("ties", name, "at"), row.at, row.at)
+        if lacking := tie_problem(row, rows.keyed["machines"]):
+            findings.add(("ties", name), lacking, None, 'poles = 10 and supply = "50 Hz", in the tie or its machine')
 
 
 def _gears(findings: Findings, rows: Rows) -> None:
@@ -81,20 +89,8 @@ def _gears(findings: Findings, rows: Rows) -> None:
                 member = getattr(row, key)
                 if member != FIXED:
                     _station(findings, rows, (*path, key), member, member)
-            continue
-        measure = row.mesh_stiffness[0] if row.mesh_stiffness else None
-        if measure == "mesh_stiffness_per_face" and row.face is None:
-            findings.add(path, "mesh-stiffness per unit face needs the face width", None, 'face = "200 mm"')
-        if measure in ("mesh_stiffness_per_face", "linear_stiffness") and row.module is None:
-            findings.add(path, "this mesh-stiffness needs the base radius", None, 'module = "6 mm" (normal module)')
-        if row.internal and row.teeth[0] == row.teeth[1]:
-            findings.add((*path, "teeth"), "an internal mesh has unequal tooth numbers", row.teeth)
-        for key, most, limit in (("helix", 1.05, "0 to 60 degrees"), ("pressure_angle", 0.7, "10 to 40 degrees")):
-            value = getattr(row, key)
-            if value is not None and value >= most:
-                findings.add(
-                    (*path, key.replace("_", "-")), f"an angle of {value * DEGREES:.0f}° is no gear's", None, limit
-                )
+    check_gears(findings, rows)
+    check_joints(findings, rows)
 
 
 def _machines(findings: Findings, rows: Rows) -> None:
@@ -107,6 +103,13 @@ def _machines(findings: Findings, rows: Rows) -> None:
                     message = f"{cylinder.fires_at * DEGREES:.6g} degrees lie beyond the working cycle"
                     allowed = f"0 to below {turns * 360} degrees of a {row.strokes}-stroke engine"
                     findings.add(("machines", name, "cylinders", index, "fires-at"), message, None, allowed)
+        elif row.kind == "reciprocating-compressor":
+            for index, cylinder in enumerate(row.cylinders):
+                _station(findings, rows, ("machines", name, "cylinders", index, "at"), cylinder.at, cylinder.at)
+                if cylinder.dead_centre >= 6.283185308:
+                    message = f"{cylinder.dead_centre * DEGREES:.6g} degrees lie beyond a turn"
+                    place = ("machines", name, "cylinders", index, "dead-centre")
+                    findings.add(place, message, None, "0 to below 360 degrees")
         else:
             _station(findings, rows, ("machines", name, "at"), row.at, row.at)
     places = set(rows.declared["stations"]).union(*(rows.declared[table] for table in LINK_TABLES))
@@ -187,7 +190,9 @@ def crosscheck(findings: Findings, rows: Rows, cases: tuple[str, ...]) -> None:
     _machines(findings, rows)
     _operation(findings, rows)
     _materials(findings, rows)
+    check_shaft_temperatures(findings, rows)
     _dismissals(findings, rows, cases)
+    check_dampers(findings, rows)
     _added_rows(findings, rows)
 
 

@@ -6,11 +6,12 @@ import hashlib
 import re
 import tomllib
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import lru_cache
 from pathlib import Path
 from typing import Any
 
+from quillshaft.train.named_files import NamedFile, digest_with, read_named
 from quillshaft.train.problems import Problem, TrainFileError
 
 MOST_LEVELS = 20
@@ -20,15 +21,17 @@ KeyPath = tuple[str | int, ...]
 
 @dataclass(frozen=True)
 class Document:
-    """One parsed file: base name, text without a byte order mark, tables, and the SHA-256 of the text.
+    """One parsed file: base name, text without a byte order mark, tables, SHA-256, and the files it names.
 
-    The digest is that of the text as UTF-8, the same whether the document came from a file or from a text.
+    The digest is that of the text as UTF-8, the same whether the document came from a file or from a text; it
+    covers the files that the text names as well, where there are any.
     """
 
     name: str
     text: str
     data: dict[str, Any]
     sha256: str
+    files: tuple[NamedFile, ...] = ()
 
 
 def read_document(path: str | Path) -> Document:
@@ -52,11 +55,11 @@ def read_document(path: str | Path) -> Document:
         line = raw.count(b"\n", 0, error.start) + 1
         message = f"byte 0x{raw[error.start]:02x} is not UTF-8: the file is binary, or saved in another encoding"
         raise _failure(name, line, message, "UTF-8 text") from None
-    return parse_document(text, name)
+    return parse_document(text, name, Path(path).parent)
 
 
-def parse_document(text: str, name: str) -> Document:
-    """Parse the text of a TOML file; `name` is what messages call it.
+def parse_document(text: str, name: str, folder: Path | None = None) -> Document:
+    """Parse the text of a TOML file; `name` is what messages call it, `folder` holds the files that it names.
 
     Raises TrainFileError when the text is empty or not TOML, with the line and plain advice.
     """
@@ -81,7 +84,8 @@ def parse_document(text: str, name: str) -> Document:
     if len(deep) > MOST_LEVELS:
         message = "tables nested too deeply"
         raise _failure(name, line_of(document, deep[:MOST_LEVELS]), message, f"at most {MOST_LEVELS} levels")
-    return document
+    files = read_named(data, folder)
+    return replace(document, sha256=digest_with(digest, files), files=files) if files else document
 
 
 def _deepest(data: dict[str, Any]) -> KeyPath:

@@ -4,8 +4,10 @@ from typing import Annotated, Literal, Self
 
 from pydantic import Field, StrictBool, model_validator
 
-from quillshaft.train.fields import Angle, Count, Frequency, Name, Poles, SignedFrequency, complain
-from quillshaft.train.rows import ElementRow, Row
+from quillshaft.train.electrical_rows import BreakdownKeys, ConverterKeys, GridKeys, LoadKeys, check_resonance
+from quillshaft.train.fields import Count, Frequency, Name, Poles, SignedFrequency, complain
+from quillshaft.train.reciprocating_rows import ReciprocatingCompressorRow, ReciprocatingEngineRow
+from quillshaft.train.rows import ElementRow
 
 
 class MachineRow(ElementRow):
@@ -15,7 +17,7 @@ class MachineRow(ElementRow):
     at: Name
 
 
-class InductionMotorRow(MachineRow):
+class InductionMotorRow(BreakdownKeys, MachineRow):
     """An induction motor on a fixed supply."""
 
     kind: Literal["induction-motor"]
@@ -23,15 +25,21 @@ class InductionMotorRow(MachineRow):
     supply: Frequency
 
 
-class SynchronousMotorRow(MachineRow):
+class SynchronousMotorRow(GridKeys, MachineRow):
     """A synchronous motor on a fixed supply."""
 
     kind: Literal["synchronous-motor"]
     poles: Poles
     supply: Frequency
+    start: Literal["asynchronous", "converter"] | None = None
+
+    @model_validator(mode="after")
+    def _grid(self) -> Self:
+        check_resonance(self.grid_resonance, self.supply)
+        return self
 
 
-class ConverterFedMotorRow(MachineRow):
+class ConverterFedMotorRow(ConverterKeys, MachineRow):
     """A motor fed by a frequency converter: its output frequency follows the speed."""
 
     kind: Literal["converter-fed-motor"]
@@ -44,21 +52,28 @@ class ConverterFedMotorRow(MachineRow):
     def _line(self) -> Self:
         if self.line_side and self.supply is None:
             raise complain("needs the supply frequency", 'supply = "50 Hz"', "line-side")
-        if self.supply is not None and not self.line_side:
+        if self.interharmonics and self.supply is None:
+            raise complain("needs the supply frequency", 'supply = "50 Hz"', "interharmonics")
+        if self.supply is not None and not self.line_side and not self.interharmonics:
             why = "is used only with line-side = true: the shaft sees the converter's output"
             raise complain(why, "line-side = true, or no supply", "supply")
         return self
 
 
-class GeneratorRow(MachineRow):
+class GeneratorRow(GridKeys, MachineRow):
     """A generator; without `supply` its frequency follows its speed (island operation)."""
 
     kind: Literal["generator"]
     poles: Poles
     supply: Frequency | None = None
 
+    @model_validator(mode="after")
+    def _grid(self) -> Self:
+        check_resonance(self.grid_resonance, self.supply)
+        return self
 
-class CentrifugalPumpRow(MachineRow):
+
+class CentrifugalPumpRow(LoadKeys, MachineRow):
     """A centrifugal pump."""
 
     kind: Literal["centrifugal-pump"]
@@ -66,7 +81,7 @@ class CentrifugalPumpRow(MachineRow):
     diffuser_vanes: Count | None = None
 
 
-class CompressorRow(MachineRow):
+class CompressorRow(LoadKeys, MachineRow):
     """A turbo compressor or blower."""
 
     kind: Literal["compressor"]
@@ -74,40 +89,25 @@ class CompressorRow(MachineRow):
     diffuser_vanes: Count | None = None
 
 
-class FanRow(MachineRow):
+class FanRow(LoadKeys, MachineRow):
     """A fan."""
 
     kind: Literal["fan"]
     blades: Count | None = None
 
 
-class PropellerRow(MachineRow):
+class PropellerRow(LoadKeys, MachineRow):
     """A propeller."""
 
     kind: Literal["propeller"]
     blades: Count | None = None
 
 
-class OtherRow(MachineRow):
+class OtherRow(LoadKeys, MachineRow):
     """Any other machine: `passes` lists its orders per turn."""
 
     kind: Literal["other"]
     passes: Annotated[list[Count], Field(max_length=50, default_factory=list)]
-
-
-class CylinderRow(Row):
-    """One cylinder of an engine."""
-
-    at: Name
-    fires_at: Angle
-
-
-class ReciprocatingEngineRow(ElementRow):
-    """A reciprocating engine given by its cylinders, strokes and firing angles."""
-
-    kind: Literal["reciprocating-engine"]
-    strokes: Literal[2, 4]
-    cylinders: Annotated[list[CylinderRow], Field(min_length=1, max_length=64)]
 
 
 MACHINE_ROWS: dict[str, type[ElementRow]] = {
@@ -120,5 +120,6 @@ MACHINE_ROWS: dict[str, type[ElementRow]] = {
     "fan": FanRow,
     "propeller": PropellerRow,
     "reciprocating-engine": ReciprocatingEngineRow,
+    "reciprocating-compressor": ReciprocatingCompressorRow,
     "other": OtherRow,
 }

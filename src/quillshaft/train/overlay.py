@@ -10,13 +10,29 @@ from quillshaft.train.problems import Problem, TrainFileError, did_you_mean, sho
 
 PLAIN_TABLES = frozenset(("train", "operation", "power", "excitations-off", "criteria", "assumptions", "sign-off"))
 KEYED_TABLES = frozenset(
-    ("stations", "shafts", "couplings", "gears", "ties", "machines", "excitations", "dismissals", "materials")
+    (
+        "stations",
+        "shafts",
+        "couplings",
+        "gears",
+        "belts",
+        "joints",
+        "ties",
+        "dampers",
+        "machines",
+        "excitations",
+        "dismissals",
+        "materials",
+    )
 )
 ALTERNATIVES = (
     frozenset(("inertia", "wr2", "gd2")),
-    frozenset(("stiffness", "flexibility", "equivalent", "pieces")),
+    frozenset(("stiffness", "flexibility", "equivalent", "pieces", "throw")),
     frozenset(("order", "frequency")),
-    frozenset(("psi", "loss-factor")),
+    frozenset(("stiffness", "tuned-frequency")),
+    frozenset(("stiffness", "span-stiffness")),
+    frozenset(("stiffness", "synchronizing")),
+    frozenset(("psi", "loss-factor", "viscous")),
 )
 
 Data = dict[str, Any]

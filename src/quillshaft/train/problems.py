@@ -8,7 +8,7 @@ from dataclasses import dataclass
 
 NAMED_TABLES = frozenset(
     {
-        "stations", "shafts", "couplings", "gears", "belts", "ties", "dampers", "machines",
+        "stations", "shafts", "couplings", "gears", "belts", "joints", "ties", "dampers", "machines",
         "excitations", "dismissals", "materials", "events", "cases",
     }
 )  # fmt: skip

@@ -67,6 +67,7 @@ stiffness        | N m/rad     | N m/rad     | lbf in/rad     | yes | 1e-6 | 1e1
 flexibility      | rad/(N m)   | rad/(N m)   | rad/(lbf in)   | yes | 1e-18 | 1e6 | 0.23e-6 rad/(N m) | 26e-9 rad/(lbf in)
 torque           | N m         | N m         | lbf in         | yes | -1e12 | 1e12 | 10 kN m | 88000 lbf in
 power            | W           | kW          | hp             | yes | -1e12 | 1e12 | 1120 kW | 1500 hp
+heat             | W           | W           | W              | yes | 0 | 1e12 | 620 W | 620 W
 speed            | rad/s       | rpm         | rpm            | no | 0 | 104719.75511965978 | 1487 rpm | 1780 rpm
 signed_speed     | rad/s       | rpm         | rpm            | no | -104719.75511965978 | 104719.75511965978 | -310 rpm | -310 rpm
 frequency        | Hz          | Hz          | Hz             | no | 0 | 1e6 | 50 Hz | 60 Hz
@@ -83,6 +84,7 @@ linear_stiffness | N/m         |             |                | yes | 1e-3 | 1e1
 temperature      | K           | degC        | degF           | no | 0 | 5000 | 30 degC | 86 degF
 temperature_rise | K           | K           | degF           | no | -5000 | 5000 | 70 K | 126 degF
 viscous          | N m s/rad   | N m s/rad   | lbf in s/rad   | yes | 0 | 1e12 | 310 N m s/rad | 2740 lbf in s/rad
+signed_viscous   | N m s/rad   | N m s/rad   | lbf in s/rad   | yes | -1e12 | 1e12 | -12 N m s/rad | -106 lbf in s/rad
 synchronizing    | W/rad       |             |                | no | 0 | 1e15 | 45 kW/deg | 60 hp/deg
 time             | s           | s           | s              | no | 0 | 1e9 | 0.8 s | 0.8 s
 share            | unity       | unity       | unity          | no | 0 | 10 | 15 % | 15 %
@@ -384,8 +386,12 @@ def _bare(spec: Measure, system: str) -> str | None:
     return {"SI": spec.bare_si, "US": spec.bare_us}[system]
 
 
+LABELS = {"wr2": "WR²", "gd2": "GD²"} | dict.fromkeys(("viscous", "signed_viscous"), "viscous coefficient")
+"""What a measure is called where its own name does not do."""
+
+
 def _label(spec: Measure) -> str:
-    return {"wr2": "WR²", "gd2": "GD²"}.get(spec.name, spec.name.replace("_", " "))
+    return LABELS.get(spec.name, spec.name.replace("_", " "))
 
 
 def _with_article(spec: Measure) -> str:

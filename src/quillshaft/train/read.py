@@ -5,12 +5,15 @@ from __future__ import annotations
 from pathlib import Path
 from typing import Any
 
-from quillshaft.train import resolve
+from quillshaft.train import coupling_resolve, damper_resolve, gear_resolve, resolve, shaft_resolve
 from quillshaft.train.crosscheck import crosscheck, read_off, read_power
+from quillshaft.train.damper_cases import with_damper_cases
 from quillshaft.train.document import Document, read_document
 from quillshaft.train.model import Criteria, Operation, Power, Revision, SignOff, Train
 from quillshaft.train.overlay import case_names, lay_cases
 from quillshaft.train.problems import TrainFileError
+from quillshaft.train.reciprocating_resolve import Read, read_files
+from quillshaft.train.repeat import expand_repeats
 from quillshaft.train.resolve import Assumptions
 from quillshaft.train.validate import Findings, Rows, validate
 
@@ -28,19 +31,21 @@ def load(path: str | Path, cases: tuple[str, ...] | list[str] = ()) -> Train:
 
 def train_of(document: Document, cases: tuple[str, ...] = ()) -> Train:
     """The Train of a document that is already read. Raises TrainFileError with every problem found."""
+    document = with_damper_cases(document, cases)
     data = lay_cases(document, cases)
     findings = Findings(document, cases)
     if "cases" in data and not isinstance(data["cases"], dict):
         findings.add(("cases",), "is not a table of cases", data["cases"], "[cases.NAME] with the changes")
-    rows = validate(data, findings)
+    rows = expand_repeats(findings, validate(data, findings))
     crosscheck(findings, rows, case_names(document.data))
     train = rows.plain.get("train")
     system = train.units if train is not None else "SI"
     power = read_power(data.get("power"), rows, system, findings)
     off = read_off(data.get("excitations-off"), findings)
+    files = read_files(rows, findings)
     if findings.problems:
         raise TrainFileError(tuple(findings.problems))
-    return _resolve(document, cases, data, rows, power, off)
+    return _resolve(document, cases, data, rows, power, off, files)
 
 
 def _resolve(
@@ -50,6 +55,7 @@ def _resolve(
     rows: Rows,
     power: Any,
     off: dict[str, str],
+    files: Read,
 ) -> Train:
     settings = rows.plain["assumptions"]
     said = Assumptions(settings.tolerances != "none")
@@ -57,13 +63,20 @@ def _resolve(
     criteria = _criteria(rows, said)
     parts: dict[str, Any] = {
         "stations": resolve.stations(rows, said),
-        "shafts": resolve.shafts(rows, said),
+        "shafts": shaft_resolve.shafts(rows, said),
         "couplings": resolve.couplings(rows, said),
-        "gears": resolve.gears(rows, said),
+        "gears": gear_resolve.gears(rows, said),
         "ties": resolve.ties(rows, said),
-        "machines": resolve.machines(rows, said),
+        "dampers": damper_resolve.dampers(rows, said),
+        "fluid_couplings": coupling_resolve.fluid_couplings(rows, said),
+        "machines": resolve.machines(rows, said, files),
         "excitations": resolve.excitations(rows, said),
     }
+    parts["belts"] = gear_resolve.belts(rows, said)
+    parts["joints"] = gear_resolve.joints(rows, said)
+    parts["stations"] += gear_resolve.stations_brought(parts["gears"])
+    parts["ties"] += gear_resolve.ties_brought(rows, parts["gears"], said)
+    operation = gear_resolve.with_held_members(operation, parts["gears"])
     for element, key, note in rows.notes:
         said.add(element, key, note, "how the unit was read")
     zeta = settings.zeta

@@ -4,26 +4,22 @@ from __future__ import annotations
 
 from typing import Any
 
-from quillshaft.train.materials import BUILT_IN
+from quillshaft.train.coupling_resolve import coupling_ratings
+from quillshaft.train.electrical_resolve import electrical, synchronizing
 from quillshaft.train.model import (
     Assumed,
     Coupling,
-    Cylinder,
     Dismissal,
-    Epicyclic,
-    EquivalentLength,
     Excitation,
-    GearGeometry,
-    GearMesh,
     Machine,
-    Material,
-    Piece,
     Provenance,
-    Shaft,
+    RunningGear,
     Station,
     Tie,
     Tolerance,
 )
+from quillshaft.train.reciprocating_resolve import KINDS as RECIPROCATING
+from quillshaft.train.reciprocating_resolve import Read, machine_parts
 from quillshaft.train.validate import Rows
 
 TWO_PI = 6.283185307179586
@@ -32,6 +28,7 @@ DEFAULT_TOLERANCE = {
     "station": 0.05,
     "impeller": 0.10,
     "shaft": 0.05,
+    "throw": 0.10,
     "metallic": 0.10,
     "gear": 0.25,
     "elastomer": 0.15,
@@ -71,7 +68,8 @@ def provenance(row: Any, element: str, said: Assumptions) -> Provenance:
     return Provenance(row.source, row.document, row.date, row.status, row.note)
 
 
-def _damping(row: Any) -> float | None:
+def damping(row: Any) -> float | None:
+    """Loss factor of a row that states it, or psi = 2π times it; None where neither is given."""
     if row.psi is not None:
         return float(row.psi) / TWO_PI
     return None if row.loss_factor is None else float(row.loss_factor)
@@ -93,7 +91,7 @@ def _station(name: str, row: Any, wetted: bool, said: Assumptions) -> Station:
         said.add(element, "entrained", "0 %", why)
     kind = "an impeller or propeller, plus half the entrained part" if wetted else "a station"
     share = DEFAULT_TOLERANCE["impeller"] + entrained / 2 if wetted else DEFAULT_TOLERANCE["station"]
-    tolerance = said.tolerance(row.tolerance, element, kind, share) if dry > 0 else (0.0, 0.0)
+    tolerance = said.tolerance(row.tolerance, element, kind, share) if dry > 0 or row.running_gear else (0.0, 0.0)
     return Station(
         name,
         dry * (1 + entrained),
@@ -106,86 +104,18 @@ def _station(name: str, row: Any, wetted: bool, said: Assumptions) -> Station:
         spelling,  # type: ignore[arg-type]
         provenance(row, element, said),
         row.group,
+        viscous_nms_rad=row.viscous,
+        viscous_because=row.viscous_because,
+        running_gear=_running_gear(row.running_gear, element, said),
     )
 
 
-def materials(rows: Rows) -> dict[str, Material]:
-    """Built-in and own materials by name; the file's own win."""
-    own = {
-        name: Material(name, row.shear_modulus, row.density, row.tensile)
-        for name, row in rows.keyed["materials"].items()
-    }
-    return {**BUILT_IN, **own}
-
-
-def shafts(rows: Rows, said: Assumptions) -> tuple[Shaft, ...]:
-    """[shafts]; geometry takes a material, a hub rule and what becomes of its own inertia."""
-    known, own = materials(rows), rows.keyed["materials"]
-    settings = rows.plain["assumptions"]
-    out = []
-    for name, row in rows.keyed["shafts"].items():
-        element = f"shafts.{name}"
-        geometric = row.pieces is not None or row.equivalent is not None
-        material = known[row.material or "steel"] if geometric else None
-        if material is not None:
-            _say_material(material, row.material is None, material.name in own, element, said)
-        own_inertia = row.own_inertia or settings.own_inertia
-        if row.pieces is not None and own_inertia is None:
-            own_inertia = "ends"
-            said.add(element, "own-inertia", "ends", "default for shafts given by pieces: lumped at both ends")
-        if own_inertia == "ends" and row.pieces is not None and row.inertia_tolerance is None:
-            said.add(element, "inertia-tolerance", "0 %", "default for a shaft's own inertia")
-        out.append(
-            Shaft(
-                name,
-                (row.between[0], row.between[1]),
-                said.tolerance(row.tolerance, element, "a shaft's stiffness", DEFAULT_TOLERANCE["shaft"]),
-                _stiffness(row),
-                EquivalentLength(row.equivalent.length, row.equivalent.diameter) if row.equivalent else None,
-                _pieces(row, settings.hub_rule, element, said),
-                material,
-                (own_inertia or "none") if row.pieces is not None else "none",
-                row.inertia_tolerance or (0.0, 0.0),
-                row.referred_to,
-                _damping(row),
-                provenance(row, element, said),
-                row.group,
-            )
-        )
-    return tuple(out)
-
-
-def _say_material(material: Material, unnamed: bool, own: bool, element: str, said: Assumptions) -> None:
-    if unnamed:
-        said.add(element, "material", material.name, "no material is given")
-    entry = f"materials.{material.name}"
-    if not own and all(item.element != entry for item in said.items):
-        value = f"{material.shear_modulus_pa / 1e9:.4g} GPa, {material.density_kgm3:.4g} kg/m³"
-        said.add(entry, "shear-modulus, density", value, "built-in material")
-
-
-def _stiffness(row: Any) -> float | None:
-    if row.stiffness is not None:
-        return float(row.stiffness)
-    return None if row.flexibility is None else 1.0 / float(row.flexibility)
-
-
-def _pieces(row: Any, hub_rule: float | None, element: str, said: Assumptions) -> tuple[Piece, ...]:
-    pieces = row.pieces or []
-    if hub_rule is None and any(piece.hub is not None and piece.hub_rule is None for piece in pieces):
-        said.add(element, "hub-rule", "1/3", "of the engagement counts as free length (common practice)")
-    third = 1.0 / 3.0 if hub_rule is None else hub_rule
-    return tuple(
-        Piece(
-            piece.length,
-            piece.od,
-            piece.id or (0.0, 0.0),
-            piece.hub or (),
-            third if piece.hub_rule is None else piece.hub_rule,
-            piece.fillet,
-        )
-        for piece in pieces
-    )
+def _running_gear(row: Any, element: str, said: Assumptions) -> RunningGear | None:
+    if row is None:
+        return None
+    if row.rotating_mass is None:
+        said.add(element, "rotating-mass", "0 kg", "not given: the rod's big end is taken to stand in the inertia")
+    return RunningGear(row.reciprocating_mass, row.rotating_mass or 0.0, row.radius, row.rod, row.cylinders)
 
 
 def coupling_kind(kind: str | None) -> tuple[str, str]:
@@ -201,6 +131,8 @@ def couplings(rows: Rows, said: Assumptions) -> tuple[Coupling, ...]:
     """[couplings]; whether the stiffness holds the shaft ends is an assumption where not said."""
     out = []
     for name, row in rows.keyed["couplings"].items():
+        if row.kind == "fluid":
+            continue
         element = f"couplings.{name}"
         key, words = coupling_kind(row.kind)
         tolerance = said.tolerance(row.tolerance, element, words, DEFAULT_TOLERANCE[key])
@@ -229,7 +161,7 @@ def couplings(rows: Rows, said: Assumptions) -> tuple[Coupling, ...]:
                 row.half_inertias or (0.0, 0.0),
                 half or (0.0, 0.0),
                 row.shaft_in_hub,
-                _damping(row),
+                damping(row),
                 row.rated_torque,
                 row.referred_to,
                 provenance(row, element, said),
@@ -238,71 +170,11 @@ def couplings(rows: Rows, said: Assumptions) -> tuple[Coupling, ...]:
                 row.damping_temperature or (),
                 operating,
                 row.group,
+                viscous_nms_rad=row.viscous,
+                ratings=coupling_ratings(name, row, said),
             )
         )
     return tuple(out)
-
-
-def gears(rows: Rows, said: Assumptions) -> tuple[GearMesh | Epicyclic, ...]:
-    """[gears]: rigid meshes have no tolerance; an elastic one takes the mesh default."""
-    return tuple(
-        _epicyclic(name, row, said) if row.kind == "epicyclic" else _mesh(name, row, said)
-        for name, row in rows.keyed["gears"].items()
-    )
-
-
-def _mesh_tolerance(row: Any, element: str, said: Assumptions) -> Tolerance:
-    if row.kind == "epicyclic":
-        said.add(element, "planet inertia", "0", "planets turn and travel without inertia of their own")
-    if row.mesh_stiffness is None:
-        said.add(element, "mesh-stiffness", "rigid", "not given")
-        return (0.0, 0.0)
-    return said.tolerance(row.tolerance, element, "a gear mesh", DEFAULT_TOLERANCE["mesh"])
-
-
-def _mesh(name: str, row: Any, said: Assumptions) -> GearMesh:
-    element = f"gears.{name}"
-    measure, value = row.mesh_stiffness or (None, 0.0)
-    linear = {"linear_stiffness": 1.0, "mesh_stiffness_per_face": row.face}.get(measure or "")
-    geometry = None
-    if row.module is not None:
-        helix, angle = row.helix, row.pressure_angle
-        if linear is not None and helix is None:
-            said.add(element, "helix", "0 deg", "not given: spur teeth")
-        if linear is not None and angle is None:
-            said.add(element, "pressure-angle", "20 deg", "not given")
-        geometry = GearGeometry(row.module, helix or 0.0, angle or TWO_PI / 18, row.face)
-    return GearMesh(
-        name,
-        (row.between[0], row.between[1]),
-        (row.teeth[0], row.teeth[1]),
-        row.internal,
-        geometry,
-        None if linear is None else value * linear,
-        value if measure == "stiffness" else None,
-        _damping(row),
-        _mesh_tolerance(row, element, said),
-        provenance(row, element, said),
-        row.group,
-    )
-
-
-def _epicyclic(name: str, row: Any, said: Assumptions) -> Epicyclic:
-    element = f"gears.{name}"
-    return Epicyclic(
-        name,
-        row.sun,
-        row.ring,
-        row.carrier,
-        row.teeth.sun,
-        row.teeth.ring,
-        row.planets,
-        row.mesh_stiffness,
-        _damping(row),
-        _mesh_tolerance(row, element, said),
-        provenance(row, element, said),
-        row.group,
-    )
 
 
 def ties(rows: Rows, said: Assumptions) -> tuple[Tie, ...]:
@@ -313,17 +185,34 @@ def ties(rows: Rows, said: Assumptions) -> tuple[Tie, ...]:
             row.at,
             row.stiffness,
             said.tolerance(row.tolerance, f"ties.{name}", "a tie", DEFAULT_TOLERANCE["tie"]),
-            _damping(row),
+            damping(row),
             provenance(row, f"ties.{name}", said),
             row.group,
+            viscous_nms_rad=row.viscous,
+            synchronizing=synchronizing(row, f"ties.{name}", rows.keyed["machines"], said),
         )
         for name, row in rows.keyed["ties"].items()
     )
 
 
-def machines(rows: Rows, said: Assumptions) -> tuple[Machine, ...]:
-    """[machines]; a missing vane or blade number is listed, since its passing is then not screened."""
-    return tuple(_machine(name, row, said) for name, row in rows.keyed["machines"].items())
+def machines(rows: Rows, said: Assumptions, files: Read | None = None) -> tuple[Machine, ...]:
+    """[machines]; a missing vane or blade number is listed, since its passing is then not screened.
+
+    `files` holds what the cards that reciprocating machines name say.
+    """
+    return tuple(
+        _reciprocating(name, row, said, files or {}) if row.kind in RECIPROCATING else _machine(name, row, said)
+        for name, row in rows.keyed["machines"].items()
+    )
+
+
+def _reciprocating(name: str, row: Any, said: Assumptions, files: Read) -> Machine:
+    element = f"machines.{name}"
+    low = "0.5" if getattr(row, "strokes", 2) == 4 else "1"
+    said.add(element, "orders", f"{low} to 12", "the orders screened; higher ones are not")
+    fields, assumed = machine_parts(name, row, files)
+    said.items += assumed
+    return Machine(name, row.kind, None, provenance=provenance(row, element, said), **fields)
 
 
 def _machine(name: str, row: Any, said: Assumptions) -> Machine:
@@ -335,12 +224,7 @@ def _machine(name: str, row: Any, said: Assumptions) -> Machine:
     slip = getattr(row, "slip", None)
     if hasattr(row, "slip") and slip is None:
         said.add(element, "slip", "0 Hz", "not given: output frequency = pole pairs · speed")
-    if row.kind == "converter-fed-motor":
-        said.add(element, "harmonics", "1, 2, 6 and 12", "of the output frequency: the set screened")
-    if row.kind == "reciprocating-engine":
-        low = "0.5" if row.strokes == 4 else "1"
-        said.add(element, "orders", f"{low} to 12", "the orders screened; higher ones are not")
-    cylinders = tuple(Cylinder(item.at, item.fires_at) for item in getattr(row, "cylinders", ()))
+    electrical_side = electrical(row, element, said)
     return Machine(
         name,
         row.kind,
@@ -352,9 +236,9 @@ def _machine(name: str, row: Any, said: Assumptions) -> Machine:
         blades,
         getattr(row, "diffuser_vanes", None),
         tuple(getattr(row, "passes", ())),
-        getattr(row, "strokes", None),
-        cylinders,
-        provenance(row, element, said),
+        provenance=provenance(row, element, said),
+        electrical=electrical_side,
+        load_slope_nms_rad=getattr(row, "load_slope", None),
     )
 
 

@@ -7,40 +7,44 @@ from pydantic import BaseModel, ConfigDict, Field, StrictBool, StrictInt, model_
 from quillshaft.train.fields import (
     Angle,
     Between,
-    Bores,
     Count,
     Date,
     Density,
-    Diameters,
     ExcitationTorque,
     FactorTable,
     Flexibility,
     Frequency,
     Gd2,
     HalfInertias,
-    HubLengths,
+    Heat,
+    HeatRise,
     Inertia,
     Length,
-    LengthOrZero,
     Mass,
-    MeshStiffness,
-    Modulus,
+    ModulusTable,
     Name,
+    Poles,
     Ratio,
     Share,
     SignedFrequency,
+    SignedViscous,
+    Speed,
     Stiffness,
     StiffnessTable,
     Stress,
+    Synchronizing,
     Teeth,
     TemperaturePair,
     Text,
     ToleranceField,
     Torque,
+    Viscous,
     Wr2,
     complain,
     kebab,
 )
+from quillshaft.train.gear_fields import Backlash, ContactRatio, GearStiffness, Shifts, StageStiffness
+from quillshaft.train.model import FIXED
 
 
 class Row(BaseModel):
@@ -66,7 +70,8 @@ class ToleratedRow(ElementRow):
     group: Name | None = None
 
 
-def _exactly_one(row: Row, keys: tuple[str, ...], help_text: str = "") -> None:
+def exactly_one(row: Row, keys: tuple[str, ...], help_text: str = "") -> None:
+    """Refuse a row that gives none of the keys, or several. Raises PydanticCustomError."""
     given = [key for key in keys if getattr(row, key) is not None]
     if len(given) != 1:
         names = " | ".join(kebab(key) for key in keys)
@@ -74,9 +79,35 @@ def _exactly_one(row: Row, keys: tuple[str, ...], help_text: str = "") -> None:
         raise complain(f"give exactly one of {names}; this has {seen}{help_text}")
 
 
-def _loss_factor(row: Any) -> None:
+def one_loss_factor(row: Any) -> None:
+    """Refuse psi beside loss-factor. Raises PydanticCustomError where both are given."""
     if row.psi is not None and row.loss_factor is not None:
         raise complain("give psi or loss-factor, not both (loss-factor = psi / 2π)")
+    if row.viscous is not None and (row.psi is not None or row.loss_factor is not None):
+        raise complain("give viscous, or psi, or loss-factor: one statement of the damping")
+
+
+def _viscous_needs_twist(row: Any) -> None:
+    if row.viscous is not None and row.mesh_stiffness is None:
+        allowed = "mesh-stiffness beside it, or leave this key out"
+        raise complain("a rigid mesh has no twist to damp", allowed, "viscous")
+
+
+class RunningGearRow(Row):
+    """What runs on a crankpin: masses that add their mean inertia to the throw's station."""
+
+    reciprocating_mass: Mass
+    rotating_mass: Mass | None = None
+    radius: Length
+    rod: Length
+    cylinders: Annotated[StrictInt, Field(ge=1, le=8)] = 1
+
+    @model_validator(mode="after")
+    def _sizes(self) -> Self:
+        if self.rod <= 1.5 * self.radius:
+            allowed = f"more than 1.5 · radius = {1.5e3 * self.radius:.4g} mm; ordinary is 3 to 6 times"
+            raise complain("is too short for its crank", allowed, "rod")
+        return self
 
 
 class StationRow(ToleratedRow):
@@ -90,10 +121,19 @@ class StationRow(ToleratedRow):
     wet: StrictBool | None = None
     mass: Mass | None = None
     diameter: Length | None = None
+    running_gear: RunningGearRow | None = None
+    repeat: Count | None = None
+    viscous: SignedViscous | None = None
+    viscous_because: Annotated[Text, Field(min_length=3)] | None = None
 
     @model_validator(mode="after")
     def _spelling(self) -> Self:
-        _exactly_one(self, ("inertia", "wr2", "gd2"), " (inertia = 0 for a massless station)")
+        exactly_one(self, ("inertia", "wr2", "gd2"), " (inertia = 0 for a massless station)")
+        if self.viscous is not None and self.viscous < 0 and self.viscous_because is None:
+            reason = 'viscous-because = "falling torque–speed curve" beside it'
+            raise complain("negative damping feeds energy in: say why", reason, "viscous")
+        if self.viscous is None and self.viscous_because is not None:
+            raise complain("gives a reason for viscous, which is not there", "viscous beside it", "viscous-because")
         if self.wet and self.entrained:
             raise complain("wet = true says that the inertia holds its water already", "one of the two", "entrained")
         return self
@@ -106,57 +146,13 @@ class SpringRow(ToleratedRow):
     referred_to: Name | None = None
     psi: Ratio | None = None
     loss_factor: Ratio | None = None
+    viscous: Viscous | None = None
     inertia_tolerance: ToleranceField | None = None
 
 
-class PieceRow(Row):
-    """One length of a shaft given by its geometry."""
-
-    od: Diameters
-    id: Bores | None = None
-    length: LengthOrZero
-    hub: HubLengths | None = None
-    hub_rule: Share | None = None
-    fillet: Length | None = None
-
-    @model_validator(mode="after")
-    def _sizes(self) -> Self:
-        if min(self.od) <= 0:
-            raise complain("must be above zero at both ends", None, "od")
-        if self.id is not None and any(bore >= outer for bore, outer in zip(self.id, self.od, strict=True)):
-            raise complain("must stay below od at both ends", None, "id")
-        if self.length <= 0 and self.hub is None:
-            raise complain("must be above zero, unless the piece is all in a hub", None, "length")
-        return self
-
-
-class EquivalentRow(Row):
-    """A plain round bar of the same stiffness."""
-
-    length: Length
-    diameter: Length
-
-
-class ShaftRow(SpringRow):
-    """[shafts]: stiffness | flexibility | equivalent | pieces."""
-
-    stiffness: Stiffness | None = None
-    flexibility: Flexibility | None = None
-    equivalent: EquivalentRow | None = None
-    pieces: Annotated[list[PieceRow], Field(min_length=1, max_length=200)] | None = None
-    material: Name | None = None
-    own_inertia: Literal["ends", "none"] | None = None
-
-    @model_validator(mode="after")
-    def _spelling(self) -> Self:
-        _exactly_one(self, ("stiffness", "flexibility", "equivalent", "pieces"))
-        _loss_factor(self)
-        if self.pieces is None and self.own_inertia == "ends":
-            raise complain("needs the geometry", "pieces, or leave this key out", "own-inertia")
-        return self
-
-
-CouplingKind = Literal["elastomer", "disc", "diaphragm", "gear", "steel-spring", "grid"]
+CouplingKind = Literal[
+    "elastomer", "elastomer-shear", "elastomer-blocks", "disc", "diaphragm", "gear", "steel-spring", "grid", "fluid"
+]
 
 
 class CouplingRow(SpringRow):
@@ -168,22 +164,41 @@ class CouplingRow(SpringRow):
     half_inertias: HalfInertias | None = None
     shaft_in_hub: Literal["included", "excluded"] | None = None
     rated_torque: Torque | None = None
+    peak_torque: Torque | None = None
+    vibratory_torque: Torque | None = None
+    reference_frequency: Frequency | None = None
+    permitted_heat: Heat | None = None
+    heat_rise: HeatRise | None = None
+    max_speed: Speed | None = None
     temperature: FactorTable | None = None
     damping_temperature: FactorTable | None = None
     operating_temperature: TemperaturePair | None = None
 
     @model_validator(mode="after")
     def _spelling(self) -> Self:
-        _exactly_one(self, ("stiffness", "flexibility"))
-        _loss_factor(self)
-        if self.damping_temperature is not None and self.psi is None and self.loss_factor is None:
-            raise complain("damping-temperature needs psi or loss-factor to multiply")
+        exactly_one(self, ("stiffness", "flexibility"))
+        one_loss_factor(self)
+        if self.damping_temperature is not None and self.psi is self.loss_factor is self.viscous is None:
+            raise complain("damping-temperature needs psi, loss-factor or viscous to multiply")
         if self.operating_temperature is not None:
             if self.temperature is None:
                 raise complain("operating-temperature needs the temperature table that it is read in")
             if self.operating_temperature[0] >= self.operating_temperature[1]:
                 raise complain("operating-temperature wants the cold value first, then the hot one")
+        self._ratings()
         return self
+
+    def _ratings(self) -> None:
+        if self.reference_frequency is not None and self.vibratory_torque is None:
+            raise complain("is the frequency of vibratory-torque, which is not given", None, "reference-frequency")
+        if self.heat_rise is not None and self.permitted_heat is None:
+            raise complain("is the rise at permitted-heat, which is not given", None, "heat-rise")
+        rated, peak = self.rated_torque, self.peak_torque
+        if rated is not None and peak is not None and peak < rated:
+            raise complain("lies below rated-torque", "the largest torque allowed for a short time", "peak-torque")
+        if rated is not None and self.vibratory_torque is not None and self.vibratory_torque > rated:
+            text = "lies above rated-torque: makers permit 0.2 to 0.5 of it, as an amplitude"
+            raise complain(text, "half the peak-to-peak torque", "vibratory-torque")
 
 
 class GearRow(ToleratedRow):
@@ -197,13 +212,18 @@ class GearRow(ToleratedRow):
     helix: Angle | None = None
     pressure_angle: Angle | None = None
     face: Length | None = None
-    mesh_stiffness: MeshStiffness | None = None
+    profile_shift: Shifts | None = None
+    contact_ratio: ContactRatio | None = None
+    backlash: Backlash | None = None
+    mesh_stiffness: GearStiffness | None = None
     psi: Ratio | None = None
     loss_factor: Ratio | None = None
+    viscous: Viscous | None = None
 
     @model_validator(mode="after")
     def _damping(self) -> Self:
-        _loss_factor(self)
+        one_loss_factor(self)
+        _viscous_needs_twist(self)
         return self
 
 
@@ -232,13 +252,27 @@ class EpicyclicRow(ToleratedRow):
     carrier: Name
     teeth: EpicyclicTeethRow
     planets: Annotated[StrictInt, Field(ge=1, le=20)]
-    mesh_stiffness: Stiffness | None = None
+    module: Length | None = None
+    helix: Angle | None = None
+    pressure_angle: Angle | None = None
+    face: Length | None = None
+    backlash: Backlash | None = None
+    planet_inertia: Inertia | None = None
+    planet_mass: Mass | None = None
+    planet_radius: Length | None = None
+    inertia_tolerance: ToleranceField | None = None
+    fixed_through: Stiffness | None = None
+    fixed_inertia: Inertia | None = None
+    fixed_tolerance: ToleranceField | None = None
+    mesh_stiffness: StageStiffness | None = None
     psi: Ratio | None = None
     loss_factor: Ratio | None = None
+    viscous: Viscous | None = None
 
     @model_validator(mode="after")
     def _members(self) -> Self:
-        _loss_factor(self)
+        one_loss_factor(self)
+        _viscous_needs_twist(self)
         names = [self.sun, self.ring, self.carrier]
         if names.count("fixed") > 1:
             raise complain("at most one of sun, ring and carrier can be fixed")
@@ -246,25 +280,46 @@ class EpicyclicRow(ToleratedRow):
             raise complain("sun, ring and carrier must be three different members")
         return self
 
+    @model_validator(mode="after")
+    def _planets(self) -> Self:
+        """What the inertia of planets and a sprung fixed member need beside them."""
+        if self.planet_mass is not None and self.planet_inertia is None:
+            raise complain("needs the inertia of one planet about its own axis", 'planet-inertia = "0.2 kg m^2"')
+        if self.planet_mass is not None and self.planet_radius is None and self.module is None:
+            raise complain("planet-mass needs the radius it travels on", 'planet-radius = "300 mm", or the module')
+        held = (self.fixed_through, self.fixed_inertia, self.fixed_tolerance)
+        if self.fixed_through is None and held != (None, None, None):
+            raise complain("is used only with fixed-through", 'fixed-through = "5 MN m/rad"')
+        if self.fixed_through is not None and FIXED not in (self.sun, self.ring, self.carrier):
+            raise complain("needs a member to hold", 'ring = "fixed" (or the sun, or the carrier)', "fixed-through")
+        return self
+
 
 class TieRow(ToleratedRow):
     """[ties]: a spring to ground."""
 
     at: Name
-    stiffness: Stiffness
+    stiffness: Stiffness | None = None
+    synchronizing: Synchronizing | None = None
+    poles: Poles | None = None
+    supply: Frequency | None = None
     psi: Ratio | None = None
     loss_factor: Ratio | None = None
+    viscous: Viscous | None = None
 
     @model_validator(mode="after")
-    def _damping(self) -> Self:
-        _loss_factor(self)
+    def _spelling(self) -> Self:
+        exactly_one(self, ("stiffness", "synchronizing"))
+        one_loss_factor(self)
+        if self.synchronizing is None and (self.poles is not None or self.supply is not None):
+            raise complain("poles and supply go with synchronizing power; a stiffness needs neither")
         return self
 
 
 class MaterialRow(ElementRow):
     """[materials]: a material of the user's own."""
 
-    shear_modulus: Modulus
+    shear_modulus: ModulusTable
     density: Density
     tensile: Stress | None = None
 

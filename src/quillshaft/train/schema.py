@@ -8,6 +8,8 @@ from typing import Any
 from pydantic import BaseModel
 from pydantic.json_schema import models_json_schema
 
+from quillshaft.train.coupling_rows import FluidCouplingRow
+from quillshaft.train.damper_rows import DAMPER_ROWS
 from quillshaft.train.fields import NUMBER_OR_TEXT
 from quillshaft.train.machine_rows import MACHINE_ROWS
 from quillshaft.train.overlay import KEYED_TABLES
@@ -21,7 +23,12 @@ def _reference(row: type[BaseModel]) -> Schema:
 
 
 def _keyed(table: str) -> Schema:
-    kinds: dict[str, list[type[BaseModel]]] = {"machines": [*MACHINE_ROWS.values()], "gears": [*GEAR_ROWS.values()]}
+    kinds: dict[str, list[type[BaseModel]]] = {
+        "machines": [*MACHINE_ROWS.values()],
+        "gears": [*GEAR_ROWS.values()],
+        "couplings": [ROWS["couplings"], FluidCouplingRow],
+        "dampers": [*DAMPER_ROWS.values()],
+    }
     row = {"anyOf": [_reference(item) for item in kinds[table]]} if table in kinds else _reference(ROWS[table])
     return {"type": "object", "additionalProperties": row}
 
@@ -62,7 +69,8 @@ def _for_cases(node: Any) -> Any:
 
 def build_schema() -> Schema:
     """The schema as data: every table and key, cases as partial tables."""
-    elements = [*ROWS.values(), *MACHINE_ROWS.values(), *GEAR_ROWS.values()]
+    elements: list[type[BaseModel]] = [*ROWS.values(), *MACHINE_ROWS.values(), *GEAR_ROWS.values()]
+    elements += [*DAMPER_ROWS.values(), FluidCouplingRow]
     _, made = models_json_schema([(row, "validation") for row in [*PLAIN.values(), *elements]], by_alias=True)
     definitions: Schema = made["$defs"]
     partial = {

@@ -61,7 +61,7 @@ class AssumptionsTable(Row):
     """[assumptions]: where a default of the tool may be set for the whole train."""
 
     tolerances: Literal["default", "none"] | None = None
-    own_inertia: Literal["ends", "none"] | None = None
+    own_inertia: Literal["ends", "none", "distributed"] | None = None
     hub_rule: Share | None = None
     zeta: Annotated[list[Share], Field(min_length=2, max_length=2)] | None = None
 

@@ -7,7 +7,10 @@ from typing import Any
 
 from pydantic import BaseModel, ValidationError
 
+from quillshaft.train.coupling_rows import FluidCouplingRow
+from quillshaft.train.damper_rows import DAMPER_ROWS
 from quillshaft.train.document import Document, line_of
+from quillshaft.train.gear_rows import BeltRow, BevelRow, JointRow
 from quillshaft.train.machine_rows import MACHINE_ROWS
 from quillshaft.train.messages import refusal
 from quillshaft.train.overlay import KEYED_TABLES, PLAIN_TABLES, PathParts, written_at
@@ -19,10 +22,10 @@ from quillshaft.train.rows import (
     ExcitationRow,
     GearRow,
     MaterialRow,
-    ShaftRow,
     StationRow,
     TieRow,
 )
+from quillshaft.train.shaft_rows import ShaftRow
 from quillshaft.train.tables import AssumptionsTable, CriteriaTable, OperationTable, SignOffTable, TrainTable
 
 ROWS: dict[str, type[BaseModel]] = {
@@ -33,6 +36,8 @@ ROWS: dict[str, type[BaseModel]] = {
     "excitations": ExcitationRow,
     "dismissals": DismissalRow,
     "materials": MaterialRow,
+    "belts": BeltRow,
+    "joints": JointRow,
 }
 PLAIN: dict[str, type[BaseModel]] = {
     "train": TrainTable,
@@ -41,7 +46,7 @@ PLAIN: dict[str, type[BaseModel]] = {
     "assumptions": AssumptionsTable,
     "sign-off": SignOffTable,
 }
-GEAR_ROWS: dict[str, type[BaseModel]] = {"mesh": GearRow, "epicyclic": EpicyclicRow}
+GEAR_ROWS: dict[str, type[BaseModel]] = {"mesh": GearRow, "epicyclic": EpicyclicRow, "bevel": BevelRow}
 TOP_LEVEL = sorted(PLAIN_TABLES | KEYED_TABLES | {"schema", "cases"})
 MOST_PROBLEMS = 200
 
@@ -103,9 +108,11 @@ def _bad_name(name: str) -> str | None:
 
 
 def _row_class(table: str, name: str, data: Any, findings: Findings) -> type[BaseModel] | None:
-    if table not in ("machines", "gears"):
+    if table == "couplings" and data.get("kind") == "fluid":
+        return FluidCouplingRow
+    classes: Any = {"machines": MACHINE_ROWS, "gears": GEAR_ROWS, "dampers": DAMPER_ROWS}.get(table)
+    if classes is None:
         return ROWS[table]
-    classes: dict[str, Any] = MACHINE_ROWS if table == "machines" else GEAR_ROWS
     kind = data.get("kind", "mesh" if table == "gears" else None)
     found = classes.get(kind) if isinstance(kind, str) else None
     if found is None:

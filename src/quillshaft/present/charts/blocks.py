@@ -178,7 +178,7 @@ def joint_text(screening: Screening, joint: Joint, joints: tuple[Joint, ...]) ->
     if link.ratio_text:
         words.append(link.ratio_text + _fixed_member(screening, link.name))
     speeds = sorted(abs(float(graph.speed_ratio[station])) for station in _joint_stations(screening, joint))
-    if link.kind in ("mesh", "epicyclic") and speeds and speeds[0] > 0:
+    if link.kind in ("mesh", "epicyclic", "belt") and speeds and speeds[0] > 0:
         words.append(f"ratio {speeds[-1] / speeds[0]:.4g}")
     if link.stiffness_nm_rad is not None:
         words.append(stiffness(link.stiffness_nm_rad, screening.train.units))

@@ -108,7 +108,7 @@ def link_between(around: dict[int, list[tuple[int, int]]], first: int, second: i
 
 def take_apart(graph: TorsionalGraph, longest: int) -> Lanes:
     """Lanes of at most `longest` beads, and their joints; the lane of the lowest station first."""
-    shafts = [(i, link) for i, link in enumerate(graph.links) if link.kind in ("shaft", "coupling")]
+    shafts = [(i, link) for i, link in enumerate(graph.links) if link.kind in ("shaft", "coupling", "damper")]
     around = pair_neighbours(shafts)
     lanes = []
     for path in paths_over(len(graph.stations), around):

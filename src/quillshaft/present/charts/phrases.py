@@ -68,7 +68,7 @@ def softest(graph: TorsionalGraph) -> GraphLink | None:
         link
         for link in graph.links
         if link.referred_nm_rad is not None
-        and link.kind != "tie"
+        and link.kind not in ("tie", "damper")
         and all(graph.speed_ratio[station] for station in link.stations)
     ]
     return min(elastic, key=lambda link: link.referred_nm_rad or 0.0, default=None)
@@ -79,14 +79,14 @@ def link_words(screening: Screening, link: GraphLink) -> str:
     if link.kind == "coupling":
         kind = next(item.kind for item in screening.train.couplings if item.name == link.name)
         return f"{kind + ' ' if kind else ''}coupling {link.name}"
-    word = {"shaft": "shaft", "mesh": "gear", "epicyclic": "epicyclic stage", "tie": "tie"}[link.kind]
+    word = {"mesh": "gear", "epicyclic": "epicyclic stage"}.get(link.kind, link.kind)
     return f"{word} {link.name}"
 
 
 def train_title(screening: Screening) -> str:
     """What the train is, in one sentence."""
     graph = screening.graph
-    shafts = [(i, link) for i, link in enumerate(graph.links) if link.kind in ("shaft", "coupling")]
+    shafts = [(i, link) for i, link in enumerate(graph.links) if link.kind in ("shaft", "coupling", "damper")]
     around = pair_neighbours(shafts)
     ends = {a for a, _ in shafts}
     lines = _connected(len(graph.stations), around)
@@ -94,7 +94,8 @@ def train_title(screening: Screening) -> str:
     soft = softest(graph)
     if soft is None or not ends:
         return text
-    only = sum(1 for link in graph.links if link.stiffness_nm_rad is not None and link.kind != "tie") == 1
+    aside = ("tie", "damper")
+    only = sum(1 for link in graph.links if link.stiffness_nm_rad is not None and link.kind not in aside) == 1
     return f"{text}; {link_words(screening, soft)} is the {'only elastic' if only else 'softest'} link"
 
 
@@ -141,12 +142,12 @@ def leading_links(mode: ModeResult) -> tuple[list[str], float]:
 
 def swing_words(mode: ModeResult) -> str:
     """ "impeller swings against wheel": the largest kinetic energy on either side."""
-    lead = max(mode.kinetic_energy, key=lambda name: mode.kinetic_energy[name])
+    lead = max(mode.referred_shape, key=lambda name: mode.kinetic_energy[name])
     sign = 1.0 if mode.referred_shape[lead] >= 0 else -1.0
     against = {
         name: energy
         for name, energy in mode.kinetic_energy.items()
-        if mode.referred_shape[name] * sign < 0 and energy > 1e-6
+        if mode.referred_shape.get(name, 0.0) * sign < 0 and energy > 1e-6
     }
     if against:
         return f"{lead} swings against {max(against, key=lambda name: against[name])}"

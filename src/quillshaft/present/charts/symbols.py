@@ -111,6 +111,12 @@ def planets(axes: Axes, start: Point, end: Point) -> None:
         )
 
 
+def belt(axes: Axes, start: Point, end: Point) -> None:
+    """A belt or chain: two thin strands between two discs."""
+    for side in (-1.1, 1.1):
+        line(axes, [(start[0] + side, start[1]), (end[0] + side, end[1])], look.THIN_PT, look.ACCENT)
+
+
 def letter(axes: Axes, at: Point, text: str) -> None:
     """A letter in a ring: the same letter stands at the other end of the joint."""
     axes.plot(*at, marker="o", ms=8.5, mfc=look.PAPER, mec=look.INK, mew=look.THIN_PT, zorder=6)

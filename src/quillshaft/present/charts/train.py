@@ -133,7 +133,8 @@ def _draw_lane(axes: Axes, screening: Screening, sheet: Sheet, number: int) -> N
     y = sheet.rows[placed.row].shaft_y
     spots = [(sheet.x(column), y) for column in placed.columns]
     for k, link in enumerate(lane.links):
-        draw = {"coupling": symbols.coupling, "tie": symbols.spring}.get(graph.links[link].kind, symbols.shaft)
+        kinds = {"coupling": symbols.coupling, "tie": symbols.spring, "damper": symbols.spring}
+        draw = kinds.get(graph.links[link].kind, symbols.shaft)
         draw(axes, spots[k], spots[k + 1])
     largest = float(max(graph.inertia_kgm2))
     geared = {s for link in graph.links if link.kind in ("mesh", "epicyclic") for s in link.stations}
@@ -186,7 +187,9 @@ def _draw_joint(axes: Axes, screening: Screening, sheet: Sheet, joint: Joint) ->
     kinds = {
         "mesh": symbols.teeth,
         "epicyclic": symbols.planets,
+        "belt": symbols.belt,
         "tie": symbols.spring,
+        "damper": symbols.spring,
         "coupling": symbols.coupling,
         "shaft": symbols.shaft,
     }
@@ -265,6 +268,12 @@ def _note_lines(screening: Screening, sheet: Sheet) -> list[str]:
         text += " Ladder: gear mesh" + (", with rings: epicyclic." if "epicyclic" in kinds else ".")
     if "tie" in kinds:
         text += " Zigzag: tie to ground."
+    if "belt" in kinds:
+        text += " Two thin strands: belt or chain."
+    if "damper" in kinds:
+        text += " Zigzag to a disc: damper."
+    for fluid in screening.train.fluid_couplings:
+        text += f" {fluid.name}: a fluid coupling from {fluid.between[0]} to {fluid.between[1]}, which no spring joins."
     text += f" Speeds at rated; softest link (bold) as referred to {screening.train.operation.speed_at}."
     text += " Inertia and stiffness are actual." if sheet.numbers else " Values stand in the data tables."
     all_joints = sheet.plan.straight + sheet.plan.lettered

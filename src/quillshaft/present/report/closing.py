@@ -55,10 +55,20 @@ def closing_parts(screening: Screening) -> list[Any]:
         *margin_matrix(screening),
         heading("Appendix B: the input file as read"),
         note(f"{screening.train.file.name}, SHA-256 {screening.train.file.sha256}"),
+        *_named_files(screening),
         verbatim(screening.train.file.text),
         *_cautions(),
         *_sign_off(screening),
     ]
+
+
+def _named_files(screening: Screening) -> list[Any]:
+    """The files that the input names, with their own digests: the digest of the input covers them too."""
+    files = screening.train.file.files
+    if not files:
+        return []
+    listed = "; ".join(f"{item.name}, SHA-256 {item.sha256 or 'not found'}" for item in files)
+    return [note(f"It names these files, and its digest covers them: {listed}.")]
 
 
 def _dismissals(screening: Screening) -> list[Any]:

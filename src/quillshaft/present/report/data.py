@@ -5,11 +5,19 @@ from __future__ import annotations
 from collections.abc import Iterator
 from typing import Any
 
+from quillshaft.elements.electrical import tie_stiffness
+from quillshaft.present.electrical_words import electrical_words, synchronizing_words
+from quillshaft.present.gear_words import belt_text, gear_text, joint_text
 from quillshaft.present.pdf.document import data_table, heading, note, paragraph
+from quillshaft.present.report.damper_data import damper_text, fluid_text, ratings_text
+from quillshaft.present.report.derived import derived_parts
+from quillshaft.present.report.reciprocating_data import reciprocating_words
+from quillshaft.present.report.shaft_data import material_rows, running_gear_words, shaft_words
 from quillshaft.present.rows import link_heads, link_rows, station_heads, station_rows, tolerance_words
 from quillshaft.present.units import SHOWN, ShownUnits
+from quillshaft.present.viscous_words import viscous_words
 from quillshaft.present.words import number, plain
-from quillshaft.train.model import Coupling, Epicyclic, GearMesh, Machine, Provenance, Shaft, Tolerance, Train
+from quillshaft.train.model import Coupling, Machine, Provenance, Tolerance, Train
 
 Row = tuple[str, str, str, str, str]
 
@@ -27,7 +35,10 @@ def data_parts(screening: Any) -> list[Any]:
         ),
         data_table(head, rows, column_widths=(25, 42, 17, 30, 16)),
         heading("Materials and machines", 2),
-        data_table(("Machine", "kind", "at", "data", "source"), [_machine(item) for item in train.machines])
+        data_table(
+            ("Machine", "kind", "at", "data", "source"),
+            [_machine(item, SHOWN[train.units]) for item in train.machines],
+        )
         if train.machines
         else paragraph("The file names no machines."),
         *_materials(train),
@@ -49,6 +60,7 @@ def data_parts(screening: Any) -> list[Any]:
             "Stiffness, mean torque and wind-up of a link are those at its first-named station. Rigid: no "
             "stiffness is given, the two sides move as one. Wind-up follows from the mean torque at rated power."
         ),
+        *derived_parts(screening),
     ]
 
 
@@ -83,44 +95,39 @@ def _elements(train: Train, units: Any) -> Iterator[Row]:
         if station.referred_to:
             text += f", referred to {station.referred_to}"
         if station.inertia_kgm2 == 0:
-            text = "massless"
+            text = "massless" if station.made_by is None else f"see {station.made_by.split('.', 1)[1]}"
+        if station.running_gear is not None:
+            text += "; " + running_gear_words(station.running_gear, units)
+        text += viscous_words(station, units)
         yield _row(train, f"stations.{station.name}", text, station.tolerance, station.provenance)
     for shaft in train.shafts:
-        text = _shaft(shaft, units)
+        text = shaft_words(shaft, units) + viscous_words(shaft, units)
         yield _row(train, f"shafts.{shaft.name}", text, shaft.tolerance, shaft.provenance)
     for coupling in train.couplings:
         text = f"{coupling.kind or 'coupling'}, {_coupling_stiffness(coupling, units)}"
         if coupling.rated_torque_nm is not None:
             text += f", rated {number(coupling.rated_torque_nm * units.per_nm)} {units.torque}"
+        text += viscous_words(coupling, units) + ratings_text(coupling.ratings, units)
         if coupling.shaft_in_hub is not None:
             text += f", shaft ends in hubs {coupling.shaft_in_hub}"
         yield _row(train, f"couplings.{coupling.name}", text, coupling.tolerance, coupling.provenance)
     for gear in train.gears:
-        yield _row(train, f"gears.{gear.name}", _gear(gear, units), gear.tolerance, gear.provenance)
+        text = gear_text(gear, units) + viscous_words(gear, units)
+        yield _row(train, f"gears.{gear.name}", text, gear.tolerance, gear.provenance)
+    for belt in train.belts:
+        text = belt_text(belt, units) + viscous_words(belt, units)
+        yield _row(train, f"belts.{belt.name}", text, belt.tolerance, belt.provenance)
+    for joint in train.joints:
+        yield _row(train, f"joints.{joint.name}", joint_text(joint), (0.0, 0.0), joint.provenance)
     for tie in train.ties:
-        text = f"tie of {tie.at}, {number(tie.stiffness_nm_rad * units.per_nm_rad, 5)} {units.stiffness}"
+        text = f"tie of {tie.at}, {number(tie_stiffness(tie) * units.per_nm_rad, 5)} {units.stiffness}"
+        text += synchronizing_words(tie) + viscous_words(tie, units)
         yield _row(train, f"ties.{tie.name}", text, tie.tolerance, tie.provenance)
-
-
-def _shaft(shaft: Shaft, units: Any) -> str:
-    if shaft.stiffness_nm_rad is not None:
-        text = f"{number(shaft.stiffness_nm_rad * units.per_nm_rad, 5)} {units.stiffness}"
-        return text + (f", referred to {shaft.referred_to}" if shaft.referred_to else "")
-    material = shaft.material.name if shaft.material else ""
-    if shaft.equivalent is not None:
-        length, diameter = shaft.equivalent.length_m * units.per_m, shaft.equivalent.diameter_m * units.per_m
-        size = f"{length:.5g} × ⌀{diameter:.5g} {units.length}"
-        return f"equal to a plain bar {size}, {material}"
-    pieces = []
-    for piece in shaft.pieces:
-        outer = "/".join(f"{value * units.per_m:.4g}" for value in dict.fromkeys(piece.od_m))
-        inner = "/".join(f"{value * units.per_m:.4g}" for value in dict.fromkeys(piece.id_m) if value)
-        text = f"⌀{outer}" + (f" bore {inner}" if inner else "") + f" × {piece.length_m * units.per_m:.5g}"
-        if piece.hub_m:
-            text += f" + {piece.hub_rule:.3g} · {sum(piece.hub_m) * units.per_m:.4g} in hub"
-        pieces.append(text)
-    own = "own inertia lumped at both ends" if shaft.own_inertia == "ends" else "own inertia left out"
-    return f"{material}, {units.length}: " + "; ".join(pieces) + f"; {own}"
+    for fluid in train.fluid_couplings:
+        yield _row(train, f"couplings.{fluid.name}", fluid_text(fluid, units), (0.0, 0.0), fluid.provenance)
+    for damper in train.dampers:
+        text = damper_text(damper, units)
+        yield _row(train, f"dampers.{damper.name}", text, damper.tolerance, damper.provenance)
 
 
 def _coupling_stiffness(coupling: Coupling, units: ShownUnits) -> str:
@@ -139,24 +146,7 @@ def _coupling_stiffness(coupling: Coupling, units: ShownUnits) -> str:
     return text
 
 
-def _gear(gear: GearMesh | Epicyclic, units: Any) -> str:
-    if isinstance(gear, Epicyclic):
-        members = f"sun {gear.sun}, ring {gear.ring}, carrier {gear.carrier}"
-        teeth = f"{gear.sun_teeth} / {gear.ring_teeth} teeth, {gear.planets} planets"
-        text = f"epicyclic: {members}; {teeth}"
-        stiffness = gear.mesh_nm_rad
-    else:
-        text = f"{gear.between[0]} : {gear.between[1]} = {gear.teeth[0]} : {gear.teeth[1]} teeth"
-        text += " (internal)" if gear.internal else ""
-        stiffness = gear.mesh_nm_rad
-        if gear.mesh_n_m is not None:
-            return f"{text}, mesh {number(gear.mesh_n_m / 1e6)} N/µm"
-    if stiffness is None:
-        return f"{text}, rigid"
-    return f"{text}, mesh {number(stiffness * units.per_nm_rad)} {units.stiffness}"
-
-
-def _machine(machine: Machine) -> tuple[str, ...]:
+def _machine(machine: Machine, units: ShownUnits) -> tuple[str, ...]:
     data = []
     if machine.poles is not None:
         data.append(f"{machine.poles} poles")
@@ -167,11 +157,10 @@ def _machine(machine: Machine) -> tuple[str, ...]:
     if machine.blades is not None:
         word = "blades" if machine.kind in ("fan", "propeller") else "vanes"
         data.append(f"{machine.blades} {word}")
+    data += electrical_words(machine, units)
     if machine.diffuser_vanes is not None:
         data.append(f"{machine.diffuser_vanes} diffuser vanes")
-    if machine.cylinders:
-        angles = ", ".join(f"{item.at} {item.fires_at_rad * 57.29577951308232:.4g}°" for item in machine.cylinders)
-        data.append(f"{machine.strokes}-stroke, {len(machine.cylinders)} cylinders firing at {angles}")
+    data += reciprocating_words(machine, units)
     if machine.passes:
         data.append("passes " + ", ".join(str(count) for count in machine.passes))
     at = machine.at or machine.cylinders[0].at
@@ -179,16 +168,7 @@ def _machine(machine: Machine) -> tuple[str, ...]:
 
 
 def _materials(train: Train) -> list[Any]:
-    units = SHOWN[train.units]
-    used = {shaft.material.name: shaft.material for shaft in train.shafts if shaft.material}
-    if not used:
+    rows = material_rows(train, SHOWN[train.units])
+    if not rows:
         return []
-    rows = [
-        (
-            name,
-            f"{item.shear_modulus_pa * units.per_pa:.4g} {units.modulus}",
-            f"{item.density_kgm3 * units.per_kgm3:.5g} {units.density}",
-        )
-        for name, item in used.items()
-    ]
     return [data_table(("Material", "shear modulus", "density"), rows, align="lrr")]

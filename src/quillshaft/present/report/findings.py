@@ -6,6 +6,7 @@ import math
 from typing import Any
 
 from quillshaft.assess.results import Interference, ModeResult, Screening
+from quillshaft.present.listed_modes import listed_modes, unlisted_sentence
 from quillshaft.present.pdf.document import (
     FigureFlowable,
     bullets,
@@ -16,6 +17,7 @@ from quillshaft.present.pdf.document import (
 )
 from quillshaft.present.pdf.style import FIGURE_HEIGHT_LIMIT_PT
 from quillshaft.present.rows import pair_row, source_rows
+from quillshaft.present.viscous_words import viscous_rows
 from quillshaft.present.words import attention_sentences, hertz, mode_words, plain
 
 RPM = 30.0 / math.pi
@@ -45,10 +47,10 @@ def _modes(screening: Screening) -> list[Any]:
             f"{mode.damping_ratio:.4f}",
             mode_words(mode) + _cluster_words(mode),
         )
-        for mode in screening.modes
+        for mode in listed_modes(screening)
     ]
     head = ("Mode", "Hz", "cycles/min", "over tolerances, Hz", "damping ratio", "what it does")
-    beyond = len(screening.modes) - len(screening.judged_modes)
+    beyond = len(listed_modes(screening)) - len(screening.judged_modes)
     text = (
         "Undamped natural frequencies. The range is the exact lowest and highest value over all stiffness and "
         "inertia tolerances together: frequencies rise with every stiffness and fall with every inertia. Where "
@@ -58,6 +60,7 @@ def _modes(screening: Screening) -> list[Any]:
         text += " The highest lies above every source and is listed without being judged."
     elif beyond:
         text += f" The {beyond} highest lie above every source and are listed without being judged."
+    text += unlisted_sentence(screening)
     table = data_table(head, rows, align="rrrrrl")
     return [heading("Natural frequencies and modes"), paragraph(text), table]
 
@@ -100,7 +103,7 @@ def _shape_tables(screening: Screening, shown: tuple[int, ...]) -> list[Any]:
     ]
     kinetic = [
         (name, *(f"{screening.mode(number).kinetic_energy[name] * 100:.1f}" for number in columns))
-        for name in screening.graph.stations
+        for name in screening.mode(columns[0]).kinetic_energy
     ]
     align = "l" + "r" * len(columns)
     widths = (30, *([18] * len(columns)))
@@ -195,13 +198,21 @@ def _excitations(screening: Screening) -> list[Any]:
     ]
 
 
+VISCOUS_COUNTS = (
+    "A viscous link counts in that ratio as η = c ω / k, damping of a station to ground as c θ² / (2 ω Σ J θ²); the "
+    "fluid of untuned dampers does not count in it. The damped modes hold all of them."
+)
+
+
 def _damping(screening: Screening) -> list[Any]:
     train = screening.train
     stated = [
         (link.name, f"{link.loss_factor:.4f}", f"{link.loss_factor * 2 * math.pi:.3f}", "stated")
         for link in screening.graph.links
-        if link.loss_factor is not None
+        if link.loss_factor is not None and not link.viscous_nms_rad
     ]
+    viscous = viscous_rows(screening)
+    stated += [(row[0], "viscous", "–", f"stated: {row[1]}") for row in viscous]
     low, high = train.zeta
     rows = [
         *stated,
@@ -214,6 +225,7 @@ def _damping(screening: Screening) -> list[Any]:
             "value is used. The damping ratio of a mode is half its links' loss factors weighted by their shares "
             "of strain energy. Damping does not enter the verdicts of this screening."
         ),
+        *([paragraph(VISCOUS_COUNTS)] if viscous else ()),
         data_table(("Link", "loss factor η", "ψ = 2π η", "where from"), rows, align="lrrl"),
     ]
 

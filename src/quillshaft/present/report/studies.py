@@ -6,10 +6,14 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Any
 
+from quillshaft.assess.damped_results import DampedResult
+from quillshaft.assess.orders import OrderStudy
 from quillshaft.assess.results import Screening
 from quillshaft.present.lever_rows import LEVER_HEADS, lever_notes, lever_rows, ways_title
 from quillshaft.present.pdf.document import FigureFlowable, bullets, data_table, heading, note, paragraph
 from quillshaft.present.question_rows import questions_by_supplier
+from quillshaft.present.report.damped import damped_parts
+from quillshaft.present.report.orders import order_parts
 from quillshaft.present.temperature_rows import coupling_rows, temperature_heads, temperature_lines, temperature_rows
 from quillshaft.present.tolerance_words import driven_modes, driver_rows, mode_rows, pair_rows, study_sentences
 from quillshaft.present.units import SHOWN
@@ -32,6 +36,8 @@ class Studies:
     temperatures: dict[str, Screening] | None = None
     levers: tuple[WaysOut, ...] | None = None
     questions: bool = False
+    damped: DampedResult | None = None
+    orders: tuple[OrderStudy, ...] = ()
 
 
 def study_parts(screening: Screening, studies: Studies) -> list[Any]:
@@ -43,6 +49,8 @@ def study_parts(screening: Screening, studies: Studies) -> list[Any]:
         *_tolerance(studies.tolerance),
         *(part for drift in studies.drifts for part in _drift(drift)),
         *_levers(screening, studies.levers),
+        *damped_parts(studies.damped),
+        *order_parts(studies.orders),
         *_questions(screening, studies.questions),
     ]
 
