@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable
-from dataclasses import dataclass
 
 import numpy as np
 
@@ -15,6 +14,7 @@ from quillshaft.graph.dampers import follows_pendulums, with_pendulums
 from quillshaft.graph.network import Floats, Ints, Network
 from quillshaft.graph.states import Temperature, follows_torque, with_mean_torques
 from quillshaft.graph.torsional import TorsionalGraph
+from quillshaft.records import dataclass
 from quillshaft.solve.modes import Modes, natural_modes
 from quillshaft.solve.plan import plan_elimination
 from quillshaft.train.model import Operation, Power, Train

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 import numpy as np
 
@@ -13,6 +13,7 @@ from quillshaft.elements.shaft import cut_shaft
 from quillshaft.graph.build import build_graph
 from quillshaft.graph.network import Floats
 from quillshaft.graph.states import Temperature
+from quillshaft.records import dataclass
 from quillshaft.solve.modes import natural_modes
 from quillshaft.solve.plan import plan_elimination
 from quillshaft.sources.collect import collect_sources

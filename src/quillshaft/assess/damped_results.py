@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
 
 import numpy as np
 
@@ -11,6 +10,7 @@ from quillshaft.assess.damped_network import damped_network, link_place
 from quillshaft.assess.results import Screening
 from quillshaft.graph.network import Floats
 from quillshaft.graph.torsional import TorsionalGraph, ViscousRing
+from quillshaft.records import dataclass
 from quillshaft.solve.damped import DampedModes, damped_modes
 
 GROWS = 1e-11  # σ over |s| above which a motion grows

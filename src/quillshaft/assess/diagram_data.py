@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
 from typing import Literal
 
 import numpy as np
 
 from quillshaft.assess.results import Interference, ModeResult, Screening, Verdict, graver
+from quillshaft.records import dataclass
 from quillshaft.sources.line import Source, frequencies_over, slope
 
 RPM = 30.0 / math.pi

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator
-from dataclasses import dataclass
 from typing import Literal
 
 from quillshaft.assess.results import DerivedValue, Flag, ModeResult
@@ -17,6 +16,7 @@ from quillshaft.elements.electrical import (
     tie_stiffness,
 )
 from quillshaft.graph.torsional import TorsionalGraph
+from quillshaft.records import dataclass
 from quillshaft.sources.electrical import start_speed_rad_s
 from quillshaft.train.model import Machine, Train
 

@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
 from quillshaft.assess.fluid_torque import fluid_columns
@@ -11,6 +9,7 @@ from quillshaft.assess.link_torques import link_torques
 from quillshaft.assess.results import LinkDuty
 from quillshaft.graph.network import Floats
 from quillshaft.graph.torsional import TorsionalGraph
+from quillshaft.records import dataclass
 from quillshaft.solve.motions import rigid_motions
 from quillshaft.solve.plan import plan_elimination
 from quillshaft.solve.statics import static_torques

@@ -4,12 +4,12 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass
 
 import numpy as np
 
 from quillshaft.assess.results import Screening
 from quillshaft.graph.network import Floats
+from quillshaft.records import dataclass
 from quillshaft.sources.gas import Complexes
 from quillshaft.sources.reciprocating import (
     CylinderTorque,

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
 
 from quillshaft.assess.along import Track
 from quillshaft.assess.results import Interference, ModeResult
@@ -17,6 +16,7 @@ from quillshaft.assess.separation import (
     separate,
 )
 from quillshaft.assess.separation_along import critical_speeds_along, separate_along
+from quillshaft.records import dataclass
 from quillshaft.sources.line import Source
 from quillshaft.train.model import Dismissal, Operation, Train
 

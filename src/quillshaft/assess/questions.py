@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 from typing import Literal
 
 from quillshaft.assess.mode_results import part_energy
 from quillshaft.assess.results import Interference, ModeResult, Screening
 from quillshaft.elements.coupling import is_rubber
 from quillshaft.elements.epicyclic import ring_mesh_name
+from quillshaft.records import dataclass
 from quillshaft.train.model import Assumed, Epicyclic, Provenance, Tolerance, Train
 
 DECISIVE = 0.25

@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import Literal
 
 from quillshaft.graph.states import Temperature
 from quillshaft.graph.torsional import TorsionalGraph
+from quillshaft.records import dataclass
 from quillshaft.solve.modes import Modes
 from quillshaft.sources.line import Source
 from quillshaft.train.model import Assumed, Dismissal, Train

@@ -4,9 +4,9 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass
 
 from quillshaft.assess.results import EQUAL, Verdict
+from quillshaft.records import dataclass
 from quillshaft.sources.line import Source, frequencies_over, meeting_speeds, slope
 from quillshaft.train.model import Criteria, Operation, Range
 

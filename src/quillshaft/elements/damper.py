@@ -8,10 +8,11 @@ Two definitions of the damping ratio of a damper are in use; here it is always t
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
 from typing import TYPE_CHECKING, TypeAlias
 
 import numpy as np
+
+from quillshaft.records import dataclass
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray

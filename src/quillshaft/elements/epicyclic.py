@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from fractions import Fraction
 
 from quillshaft.elements.gear import base_radius, mesh_torsional_stiffness
 from quillshaft.elements.mesh_stiffness import PER_MM_UM, MeshRuleResult, rule_stiffness
+from quillshaft.records import dataclass
 from quillshaft.train.model import FIXED, Epicyclic, Planets
 
 

@@ -6,8 +6,8 @@ All constants of the rule are recalled from memory: confirm them against your ed
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
 
+from quillshaft.records import dataclass
 from quillshaft.train.model import GearGeometry
 
 CORRECTION = 0.8

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from itertools import pairwise
 
 import numpy as np
@@ -16,6 +16,7 @@ from quillshaft.elements.shaft_sections import (
     rectangle_inertia,
     spline_diameter,
 )
+from quillshaft.records import dataclass
 from quillshaft.train.model import EquivalentLength, Keyway, Material, Piece, Shaft
 
 PANELS = 16

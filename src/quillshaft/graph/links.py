@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from fractions import Fraction
 from typing import Literal
 
@@ -15,6 +14,7 @@ from quillshaft.elements.shaft import shaft_stiffness
 from quillshaft.graph.network import Ints
 from quillshaft.graph.states import Temperature, coupling_temperature
 from quillshaft.graph.torsional import Slot
+from quillshaft.records import dataclass
 from quillshaft.train.model import Belt, Coupling, Epicyclic, GearMesh, Shaft, Tolerance, Train
 
 

@@ -6,10 +6,11 @@ multiplied by the square of it. Stations that a rigid gear mesh holds together s
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import TYPE_CHECKING, TypeAlias
 
 import numpy as np
+
+from quillshaft.records import dataclass
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray

@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 from collections import deque
-from dataclasses import dataclass
 from fractions import Fraction
 
 from quillshaft.elements.belt import belt_ratio
 from quillshaft.elements.epicyclic import stage_meshes
 from quillshaft.elements.gear import mesh_ratio
+from quillshaft.records import dataclass
 from quillshaft.train.model import Epicyclic, GearMesh, Train
 from quillshaft.train.validate import Findings
 

@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from fractions import Fraction
 from typing import Literal
 
 from quillshaft.graph.network import Bools, Floats, Ints, Network
+from quillshaft.records import dataclass
 from quillshaft.train.model import Tolerance
 
 Slot = Literal["spring", "tie", "torque", "rigid", "slack", "cut"]

@@ -13,11 +13,12 @@ oscillate with viscous damping alone, those of the smallest |σ|/|s|.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 import numpy as np
 
 from quillshaft.graph.network import Bools, Floats, Network
+from quillshaft.records import dataclass
 from quillshaft.solve.damped_shapes import EQUAL, choose, cluster_basis, first_solution, real_shapes, scaled
 from quillshaft.solve.damped_state import Damping, Elements, Numbers, damped_state, elements_of, undamped
 from quillshaft.solve.elimination import ElementValues, eliminate

@@ -10,12 +10,13 @@ and Techniques of Vibrations, sec. 4.8, from memory; these coordinates: own deri
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from typing import Any, TypeAlias
 
 import numpy as np
 
 from quillshaft.graph.network import Floats, Network
+from quillshaft.records import dataclass
 from quillshaft.solve.factor import incidence
 from quillshaft.solve.modes import Modes
 from quillshaft.solve.motions import rigid_motions

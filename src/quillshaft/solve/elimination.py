@@ -15,13 +15,13 @@ unknown with the diagonal −compliance. (Excess form: own derivation.)
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 from decimal import Decimal
 from typing import Any, TypeAlias
 
 import numpy as np
 
 from quillshaft.graph.network import Floats, Ints, Network
+from quillshaft.records import dataclass
 from quillshaft.solve.plan import NO_PAIR, CoreStep, Plan
 
 Numbers: TypeAlias = np.ndarray[Any, Any]  # float64 or complex128

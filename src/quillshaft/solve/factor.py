@@ -10,12 +10,12 @@ they have one. (Star-mesh: A. Rosen, "A new network theorem", Journal IEE 62, 19
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 from itertools import permutations
 
 import numpy as np
 
 from quillshaft.graph.network import Floats, Network
+from quillshaft.records import dataclass
 
 ZERO_COEFFICIENT = 1e-12  # of a link's largest coefficient: what is left where exact fractions cancel
 

@@ -16,13 +16,14 @@ link is all that holds two parts together, taking it out would add a motion; the
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from decimal import Decimal, localcontext
 from typing import Literal
 
 import numpy as np
 
 from quillshaft.graph.network import Bools, Floats, Ints, Network, TorqueLink
+from quillshaft.records import dataclass
 from quillshaft.solve.elimination import CHUNK_POINTS, ElementValues, Elimination, eliminate
 from quillshaft.solve.plan import Plan, plan_elimination
 from quillshaft.solve.precise import GROWTH_LIMIT, LONG, NUDGE

@@ -7,11 +7,12 @@ of inertia) proves it bracketed, with none missed.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 import numpy as np
 
 from quillshaft.graph.network import Bools, Floats, Ints, Network
+from quillshaft.records import dataclass
 from quillshaft.solve.factor import factorise
 from quillshaft.solve.plan import Plan, plan_elimination
 from quillshaft.solve.precise import count_below, put

@@ -2,11 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
 from quillshaft.graph.network import Floats, Network
+from quillshaft.records import dataclass
 from quillshaft.solve.plan import spring_parts
 
 

@@ -9,9 +9,10 @@ what loops and torque links leave is the core, ordered by minimum degree (W. F. 
 from __future__ import annotations
 
 import heapq
-from dataclasses import dataclass, field
+from dataclasses import field
 
 from quillshaft.graph.network import Network
+from quillshaft.records import dataclass
 
 NO_PAIR = -1
 

@@ -7,11 +7,12 @@ On a tree every spring torque is then a plain sum of the torques beyond it.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 import numpy as np
 
 from quillshaft.graph.network import Floats, Network
+from quillshaft.records import dataclass
 from quillshaft.solve.elimination import eliminate
 from quillshaft.solve.motions import RigidParts, rigid_basis, rigid_motions, rigid_parts
 from quillshaft.solve.plan import Plan, plan_elimination

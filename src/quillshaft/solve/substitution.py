@@ -11,11 +11,10 @@ Differences on the right are twists found before.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
 from quillshaft.graph.network import Floats, Ints, Network
+from quillshaft.records import dataclass
 from quillshaft.solve.elimination import (
     CHUNK_POINTS,
     CoreRecord,

@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 from quillshaft.graph.torsional import TorsionalGraph
+from quillshaft.records import dataclass
 from quillshaft.sources.implied import gear_sources, machine_sources, shaft_sources
 from quillshaft.sources.joints import joint_sources
 from quillshaft.sources.line import Action, Source

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
 from typing import Literal
+
+from quillshaft.records import dataclass
 
 TWO_PI = 2.0 * math.pi
 When = Literal["continuous", "start", "fault"]

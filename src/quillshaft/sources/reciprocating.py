@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
 from functools import lru_cache
 
 import numpy as np
 
 from quillshaft.elements.slider_crank import equivalent_inertia, inertia_harmonics
 from quillshaft.graph.network import Floats
+from quillshaft.records import dataclass
 from quillshaft.sources.engine import orders_of
 from quillshaft.sources.gas import (
     AMBIENT_PA,

@@ -4,10 +4,11 @@ from __future__ import annotations
 
 import math
 import re
-from dataclasses import dataclass, field
+from dataclasses import field
 from itertools import pairwise
 from typing import Any
 
+from quillshaft.records import dataclass
 from quillshaft.train.named_files import NamedFile
 from quillshaft.train.problems import Problem, shown
 from quillshaft.train.quantity import QuantityError, read_quantity

@@ -6,11 +6,12 @@ import hashlib
 import re
 import tomllib
 from collections.abc import Iterator
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from functools import lru_cache
 from pathlib import Path
 from typing import Any
 
+from quillshaft.records import dataclass
 from quillshaft.train.named_files import NamedFile, digest_with, read_named
 from quillshaft.train.problems import Problem, TrainFileError
 

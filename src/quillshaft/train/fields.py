@@ -6,13 +6,13 @@ The validation context is `{"system": "SI" | "US", "notes": list[tuple[str, str]
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from itertools import pairwise
 from typing import Annotated, Any
 
 from pydantic import AfterValidator, BeforeValidator, Field, StrictInt, ValidationInfo
 from pydantic_core import CoreSchema, PydanticCustomError, core_schema
 
+from quillshaft.records import dataclass
 from quillshaft.train.problems import shown
 from quillshaft.train.quantity import (
     MEASURES,

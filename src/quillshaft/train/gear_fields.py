@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import Annotated, Any, Literal
 
 from pydantic import Field, ValidationInfo
 
+from quillshaft.records import dataclass
 from quillshaft.train.fields import NUMBER_OR_TEXT, AnyMeasure, Measured, MeasuredPair
 
 ISO_RULE: Literal["iso-6336"] = "iso-6336"

@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from types import UnionType
 from typing import Annotated, Any, Literal, Union, get_args, get_origin
 
 from pydantic import BaseModel
 
+from quillshaft.records import dataclass
 from quillshaft.train.fields import Measured, MeasuredPair
 from quillshaft.train.problems import did_you_mean
 from quillshaft.train.quantity import measure_help

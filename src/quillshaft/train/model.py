@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import field
 from fractions import Fraction
 from typing import Literal
 
+from quillshaft.records import dataclass
 from quillshaft.train.document import Document
 from quillshaft.train.electrical_model import Electrical, Synchronizing
 from quillshaft.train.reciprocating_model import Cylinder, EngineGas

@@ -4,9 +4,10 @@ from __future__ import annotations
 
 import hashlib
 from collections.abc import Iterator
-from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
+
+from quillshaft.records import dataclass
 
 FILE_KEYS = frozenset(("indicator", "dead-indicator", "harmonics"))
 WITHIN = frozenset(("gas", "head-end", "crank-end"))

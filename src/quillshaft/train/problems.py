@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import re
 from collections.abc import Iterable
-from dataclasses import dataclass
+
+from quillshaft.records import dataclass
 
 NAMED_TABLES = frozenset(
     {

@@ -9,12 +9,12 @@ from __future__ import annotations
 
 import re
 import unicodedata
-from dataclasses import dataclass
 from fractions import Fraction
 from functools import lru_cache
 from math import isfinite
 from typing import Any
 
+from quillshaft.records import dataclass
 from quillshaft.train.problems import did_you_mean, shown
 
 Units = tuple[tuple[str, int], ...]

@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import field
+
+from quillshaft.records import dataclass
 
 
 @dataclass(frozen=True)

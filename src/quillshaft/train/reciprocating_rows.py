@@ -1,10 +1,10 @@
 """[machines] rows of reciprocating engines and compressors: cylinders, slider-crank, gas."""
 
-from dataclasses import dataclass
 from typing import Annotated, Any, Literal, Self
 
 from pydantic import AfterValidator, Field, StrictBool, ValidationInfo, model_validator
 
+from quillshaft.records import dataclass
 from quillshaft.train.fields import Angle, Count, Measured, Name, complain, one_line, quantity_of
 from quillshaft.train.rows import ElementRow, Row
 

@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import field
 from typing import Any
 
 from pydantic import BaseModel, ValidationError
 
+from quillshaft.records import dataclass
 from quillshaft.train.coupling_rows import FluidCouplingRow
 from quillshaft.train.damper_rows import DAMPER_ROWS
 from quillshaft.train.document import Document, line_of

@@ -5,9 +5,10 @@ from __future__ import annotations
 import csv
 import io
 import re
-from dataclasses import dataclass
 from itertools import islice
 from pathlib import Path
+
+from quillshaft.records import dataclass
 
 SEPARATORS = {";": "semicolon", "\t": "tab", ",": "comma", "|": "bar"}
 MOST_ROWS = 5000

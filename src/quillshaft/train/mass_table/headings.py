@@ -4,9 +4,9 @@ from __future__ import annotations
 
 import re
 import unicodedata
-from dataclasses import dataclass
 from typing import Literal, cast
 
+from quillshaft.records import dataclass
 from quillshaft.train.quantity import QuantityError, read_quantity
 
 Role = Literal[

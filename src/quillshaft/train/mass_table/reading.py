@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass, field
+from dataclasses import field
 
+from quillshaft.records import dataclass
 from quillshaft.train.mass_table.cells import Grid, MassTableError
 from quillshaft.train.mass_table.columns import INERTIAS, SPRINGS, columns_of, is_heading
 from quillshaft.train.mass_table.headings import MEASURE, Column, Role

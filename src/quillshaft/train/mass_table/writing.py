@@ -4,11 +4,12 @@ from __future__ import annotations
 
 import json
 import math
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from fractions import Fraction
 from itertools import pairwise
 from typing import Any
 
+from quillshaft.records import dataclass
 from quillshaft.train.mass_table.cells import MassTableError
 from quillshaft.train.mass_table.reading import Entry, MassTable
 
