@@ -80,6 +80,8 @@ def show_check(screening: Screening, out: Console) -> None:
     for table in (tables.stations_table, tables.links_table, tables.sources_table, tables.assumed_table):
         out.print()
         out.print(table(screening))
+    out.print()
+    out.print(tables.written_table(screening))
     if screening.derived:
         out.print()
         out.print(tables.derived_table(screening))

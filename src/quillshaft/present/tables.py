@@ -20,6 +20,7 @@ from quillshaft.present.rows import (
 )
 from quillshaft.present.viscous_words import VISCOUS_HEADS, viscous_rows
 from quillshaft.present.words import attention_sentences, hertz, mode_words
+from quillshaft.present.written_rows import written_rows
 
 
 def make_table(title: str, columns: str, rows: Iterable[Iterable[str]]) -> Table:
@@ -99,6 +100,11 @@ def viscous_table(screening: Screening) -> Table:
     """Viscous damping of links and stations."""
     heads = f"{VISCOUS_HEADS[0]}|{VISCOUS_HEADS[1]}>|{VISCOUS_HEADS[2]}>|{VISCOUS_HEADS[3]}"
     return make_table("Viscous damping", heads, viscous_rows(screening))
+
+
+def written_table(screening: Screening) -> Table:
+    """Every element with every key as the file writes it."""
+    return make_table("As the file writes it", "Element|keys and values", written_rows(screening.train))
 
 
 def assumed_table(screening: Screening) -> Table:

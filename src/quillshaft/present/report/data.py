@@ -17,6 +17,7 @@ from quillshaft.present.rows import link_heads, link_rows, station_heads, statio
 from quillshaft.present.units import SHOWN, ShownUnits
 from quillshaft.present.viscous_words import viscous_words
 from quillshaft.present.words import number, plain
+from quillshaft.present.written_rows import written_rows
 from quillshaft.train.model import Coupling, Machine, Provenance, Tolerance, Train
 
 Row = tuple[str, str, str, str, str]
@@ -42,6 +43,8 @@ def data_parts(screening: Any) -> list[Any]:
         if train.machines
         else paragraph("The file names no machines."),
         *_materials(train),
+        heading("Every key as the file writes it", 2),
+        data_table(("Element", "keys and values"), written_rows(train), column_widths=(30, 100)),
         heading("Equivalent system"),
         paragraph(
             f"Referred values stand for the speed of {train.operation.speed_at}: inertia and stiffness times "
