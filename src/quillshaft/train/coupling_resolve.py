@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING, Any
 from quillshaft.train.model import CouplingRatings, FluidCoupling, Provenance
 
 if TYPE_CHECKING:
-    from quillshaft.train.resolve import Assumptions
+    from quillshaft.train.assumptions import Assumptions
     from quillshaft.train.validate import Rows
 
 SLIP = 0.03

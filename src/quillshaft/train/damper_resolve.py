@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Any
 from quillshaft.train.model import Damper, Pendulums, Provenance, Tolerance
 
 if TYPE_CHECKING:
-    from quillshaft.train.resolve import Assumptions
+    from quillshaft.train.assumptions import Assumptions
     from quillshaft.train.validate import Rows
 
 SPRING_TOLERANCE = 0.15

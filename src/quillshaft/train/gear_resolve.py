@@ -7,6 +7,7 @@ from dataclasses import replace
 from fractions import Fraction
 from typing import Any
 
+from quillshaft.train.assumptions import DEFAULT_TOLERANCE, Assumptions, damping, provenance
 from quillshaft.train.gear_fields import ISO_RULE
 from quillshaft.train.model import (
     FIXED,
@@ -22,7 +23,6 @@ from quillshaft.train.model import (
     Tolerance,
     UniversalJoint,
 )
-from quillshaft.train.resolve import DEFAULT_TOLERANCE, Assumptions, damping, provenance
 from quillshaft.train.validate import Rows
 
 DEFAULT_PRESSURE_ANGLE = math.pi / 9.0

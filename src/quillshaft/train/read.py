@@ -6,6 +6,7 @@ from pathlib import Path
 from typing import Any
 
 from quillshaft.train import coupling_resolve, damper_resolve, gear_resolve, resolve, shaft_resolve
+from quillshaft.train.assumptions import Assumptions
 from quillshaft.train.crosscheck import crosscheck, read_off, read_power
 from quillshaft.train.damper_cases import with_damper_cases
 from quillshaft.train.document import Document, read_document
@@ -14,7 +15,6 @@ from quillshaft.train.overlay import case_names, lay_cases
 from quillshaft.train.problems import TrainFileError
 from quillshaft.train.reciprocating_resolve import Read, read_files
 from quillshaft.train.repeat import expand_repeats
-from quillshaft.train.resolve import Assumptions
 from quillshaft.train.validate import Findings, Rows, validate
 
 DEFAULT_BAND = 0.02

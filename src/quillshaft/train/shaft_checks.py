@@ -5,8 +5,8 @@ from __future__ import annotations
 from collections.abc import Iterator
 from typing import Any
 
+from quillshaft.train.assumptions import ICE_K
 from quillshaft.train.overlay import PathParts
-from quillshaft.train.resolve import ICE_K
 from quillshaft.train.shaft_resolve import ROOM_K
 from quillshaft.train.validate import Findings, Rows
 

@@ -6,9 +6,9 @@ from dataclasses import replace
 from itertools import pairwise
 from typing import Any, Literal
 
+from quillshaft.train.assumptions import DEFAULT_TOLERANCE, ICE_K, Assumptions, damping, provenance
 from quillshaft.train.materials import BUILT_IN
 from quillshaft.train.model import EquivalentLength, Keyway, Material, Piece, Shaft, Throw
-from quillshaft.train.resolve import DEFAULT_TOLERANCE, ICE_K, Assumptions, damping, provenance
 from quillshaft.train.validate import Rows
 
 ROOM_K = ICE_K + 20.0
