@@ -7,7 +7,6 @@ from pydantic import Field, StrictBool, StrictInt, model_validator
 from quillshaft.train.fields import (
     Angle,
     Between,
-    Length,
     Name,
     Ratio,
     Stiffness,
@@ -15,13 +14,13 @@ from quillshaft.train.fields import (
     Viscous,
     complain,
 )
-from quillshaft.train.gear_fields import Backlash, GearStiffness, PitchDiameters, SpanStiffness
-from quillshaft.train.rows import ElementRow, ToleratedRow, _viscous_needs_twist, one_loss_factor
+from quillshaft.train.gear_fields import GearStiffness, PitchDiameters, SpanStiffness
+from quillshaft.train.rows import ElementRow, MeshRow, ToleratedRow, one_loss_factor
 
 STEEPEST_JOINT_RAD = 0.7853981633974484
 
 
-class BevelRow(ToleratedRow):
+class BevelRow(MeshRow):
     """[gears] kind = "bevel": two wheels on shafts that are not parallel; sizes are those at mid-face."""
 
     kind: Literal["bevel"]
@@ -29,20 +28,10 @@ class BevelRow(ToleratedRow):
     teeth: Annotated[list[Teeth], Field(min_length=2, max_length=2)]
     shaft_angle: Angle | None = None
     reverses: StrictBool = False
-    module: Length | None = None
-    helix: Angle | None = None
-    pressure_angle: Angle | None = None
-    face: Length | None = None
-    backlash: Backlash | None = None
     mesh_stiffness: GearStiffness | None = None
-    psi: Ratio | None = None
-    loss_factor: Ratio | None = None
-    viscous: Viscous | None = None
 
     @model_validator(mode="after")
     def _fits(self) -> Self:
-        one_loss_factor(self)
-        _viscous_needs_twist(self)
         if self.shaft_angle is not None and not 0 < self.shaft_angle < 3.14159:
             raise complain("lies outside what two shafts can make", "above 0 and below 180 degrees", "shaft-angle")
         if self.mesh_stiffness is not None and self.mesh_stiffness[0] == "iso-6336":

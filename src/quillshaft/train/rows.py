@@ -87,12 +87,6 @@ def one_loss_factor(row: Any) -> None:
         raise complain("give viscous, or psi, or loss-factor: one statement of the damping")
 
 
-def _viscous_needs_twist(row: Any) -> None:
-    if row.viscous is not None and row.mesh_stiffness is None:
-        allowed = "mesh-stiffness beside it, or leave this key out"
-        raise complain("a rigid mesh has no twist to damp", allowed, "viscous")
-
-
 class RunningGearRow(Row):
     """What runs on a crankpin: masses that add their mean inertia to the throw's station."""
 
@@ -201,21 +195,15 @@ class CouplingRow(SpringRow):
             raise complain(text, "half the peak-to-peak torque", "vibratory-torque")
 
 
-class GearRow(ToleratedRow):
-    """[gears]: two wheels in mesh."""
+class MeshRow(ToleratedRow):
+    """What every gear says of its teeth and of the damping of its mesh."""
 
-    kind: Literal["mesh"] = "mesh"
-    between: Between
-    teeth: Annotated[list[Teeth], Field(min_length=2, max_length=2)]
-    internal: StrictBool = False
     module: Length | None = None
     helix: Angle | None = None
     pressure_angle: Angle | None = None
     face: Length | None = None
-    profile_shift: Shifts | None = None
-    contact_ratio: ContactRatio | None = None
     backlash: Backlash | None = None
-    mesh_stiffness: GearStiffness | None = None
+    mesh_stiffness: Any = None
     psi: Ratio | None = None
     loss_factor: Ratio | None = None
     viscous: Viscous | None = None
@@ -223,8 +211,22 @@ class GearRow(ToleratedRow):
     @model_validator(mode="after")
     def _damping(self) -> Self:
         one_loss_factor(self)
-        _viscous_needs_twist(self)
+        if self.viscous is not None and self.mesh_stiffness is None:
+            allowed = "mesh-stiffness beside it, or leave this key out"
+            raise complain("a rigid mesh has no twist to damp", allowed, "viscous")
         return self
+
+
+class GearRow(MeshRow):
+    """[gears]: two wheels in mesh."""
+
+    kind: Literal["mesh"] = "mesh"
+    between: Between
+    teeth: Annotated[list[Teeth], Field(min_length=2, max_length=2)]
+    internal: StrictBool = False
+    profile_shift: Shifts | None = None
+    contact_ratio: ContactRatio | None = None
+    mesh_stiffness: GearStiffness | None = None
 
 
 class EpicyclicTeethRow(Row):
@@ -243,7 +245,7 @@ class EpicyclicTeethRow(Row):
         return self
 
 
-class EpicyclicRow(ToleratedRow):
+class EpicyclicRow(MeshRow):
     """[gears] kind = "epicyclic": each member is a station or "fixed"."""
 
     kind: Literal["epicyclic"]
@@ -252,11 +254,6 @@ class EpicyclicRow(ToleratedRow):
     carrier: Name
     teeth: EpicyclicTeethRow
     planets: Annotated[StrictInt, Field(ge=1, le=20)]
-    module: Length | None = None
-    helix: Angle | None = None
-    pressure_angle: Angle | None = None
-    face: Length | None = None
-    backlash: Backlash | None = None
     planet_inertia: Inertia | None = None
     planet_mass: Mass | None = None
     planet_radius: Length | None = None
@@ -265,14 +262,9 @@ class EpicyclicRow(ToleratedRow):
     fixed_inertia: Inertia | None = None
     fixed_tolerance: ToleranceField | None = None
     mesh_stiffness: StageStiffness | None = None
-    psi: Ratio | None = None
-    loss_factor: Ratio | None = None
-    viscous: Viscous | None = None
 
     @model_validator(mode="after")
     def _members(self) -> Self:
-        one_loss_factor(self)
-        _viscous_needs_twist(self)
         names = [self.sun, self.ring, self.carrier]
         if names.count("fixed") > 1:
             raise complain("at most one of sun, ring and carrier can be fixed")
