@@ -10,7 +10,7 @@ from __future__ import annotations
 import math
 from itertools import pairwise
 
-from quillshaft.elements.coupling import table_value
+from quillshaft.elements.coupling import is_rubber, table_value
 from quillshaft.train.model import Coupling, Table
 
 FLAT_HZ = 10.0
@@ -66,6 +66,14 @@ def frequency_factor(frequency_hz: float) -> float:
     Source: DIN 740-2, recalled, confirm against your edition.
     """
     return 1.0 if frequency_hz <= FLAT_HZ else math.sqrt(frequency_hz / FLAT_HZ)
+
+
+def weighs_by_frequency(kind: str | None) -> bool:
+    """True of couplings whose vibratory torque weighs more at a higher frequency: rubber, and those of no stated kind.
+
+    Metal has no loss to heat it; its fatigue counts cycles, not frequency (common practice).
+    """
+    return kind is None or is_rubber(kind)
 
 
 def permitted_vibratory_torque(rated_nm: float, reference_hz: float, frequency_hz: float) -> float:
