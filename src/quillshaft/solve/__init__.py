@@ -1,6 +1,7 @@
 """Numbers only: elimination on the graph, statics, natural modes and response of a `Network`."""
 
-from quillshaft.solve.elimination import ElementValues, Elimination, eliminate
+from quillshaft.solve.elimination import Elimination, eliminate
+from quillshaft.solve.first_values import ElementValues
 from quillshaft.solve.modes import Modes, natural_frequencies, natural_modes
 from quillshaft.solve.plan import Plan, plan_elimination
 from quillshaft.solve.precise import count_below, solve_at

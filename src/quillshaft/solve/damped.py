@@ -21,7 +21,8 @@ from quillshaft.graph.network import Bools, Floats, Network
 from quillshaft.records import dataclass
 from quillshaft.solve.damped_shapes import EQUAL, choose, cluster_basis, first_solution, real_shapes, scaled
 from quillshaft.solve.damped_state import Damping, Elements, Numbers, damped_state, elements_of, undamped
-from quillshaft.solve.elimination import ElementValues, eliminate
+from quillshaft.solve.dynamic_values import dynamic_values
+from quillshaft.solve.elimination import eliminate
 from quillshaft.solve.modes import Modes, natural_modes
 from quillshaft.solve.plan import Plan, plan_elimination
 from quillshaft.solve.substitution import Solution, solve
@@ -140,27 +141,8 @@ class _Work:
         return solution
 
     def _solved(self, roots: Numbers, torque: Numbers) -> Solution:
-        own, network = self.damping, self.network
-
-        def dynamic(stiffness: Floats, loss: Floats, viscous: Floats) -> list[Numbers]:
-            complex_stiffness = stiffness * (1 + 1j * loss) if np.iscomplexobj(roots) else stiffness
-            return [k + roots * c for k, c in zip(complex_stiffness, viscous, strict=True)]
-
-        elastic = [link.compliance_rad_per_nm for link in network.torque_links]
-        inverse = np.array([1.0 / value if value else 0.0 for value in elastic])
-        links = dynamic(inverse, own.link_loss, own.link_viscous)
-        values = ElementValues(
-            springs=dynamic(network.spring_nm_rad, own.spring_loss, own.spring_viscous),
-            ties=dynamic(network.tie_nm_rad, own.tie_loss, own.tie_viscous),
-            inertia=[
-                inertia + viscous / roots
-                for inertia, viscous in zip(network.inertia_kgm2, own.node_viscous, strict=True)
-            ],
-            compliances=[
-                1.0 / link if value else np.zeros_like(link) for link, value in zip(links, elastic, strict=True)
-            ],
-        )
-        return solve(eliminate(network, self.plan, -(roots**2), values), torque)
+        values = dynamic_values(self.network, self.damping, roots)
+        return solve(eliminate(self.network, self.plan, -(roots**2), values), torque)
 
     def _twists(self, elements: Elements, at: Solution, roots: Numbers) -> Numbers:
         """(elements, m) twists of springs, ties, elastic torque links and angles of the nodes."""

@@ -33,6 +33,8 @@ class Damping:
     spring_loss, tie_loss, link_loss            loss factors η of springs, ties and torque links: k (1 + jη)
     spring_viscous, tie_viscous, link_viscous   viscous coefficients [N·m·s/rad] beside their stiffness
     node_viscous                                (nodes,) damping to ground [N·m·s/rad]; negative feeds energy in
+    node_lost_kgm2                              (nodes,) J/M [kg·m²] of cylinders whose own damping is stated by a
+                                                magnifier M: torque −ω² (−j J/M) θ in steady vibration; None without
     """
 
     spring_loss: Floats
@@ -42,6 +44,7 @@ class Damping:
     tie_viscous: Floats
     link_viscous: Floats
     node_viscous: Floats
+    node_lost_kgm2: Floats | None = None
 
     @property
     def hysteretic(self) -> bool:

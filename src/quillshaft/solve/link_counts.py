@@ -24,7 +24,8 @@ import numpy as np
 
 from quillshaft.graph.network import Bools, Floats, Ints, Network, TorqueLink
 from quillshaft.records import dataclass
-from quillshaft.solve.elimination import CHUNK_POINTS, ElementValues, Elimination, eliminate
+from quillshaft.solve.elimination import CHUNK_POINTS, Elimination, eliminate
+from quillshaft.solve.first_values import ElementValues
 from quillshaft.solve.plan import Plan, plan_elimination
 from quillshaft.solve.precise import GROWTH_LIMIT, LONG, NUDGE
 

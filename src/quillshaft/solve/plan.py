@@ -39,7 +39,7 @@ class Plan:
 
     nodes, links   numbers of nodes and torque links
     leaf           nodes peeled as leaves, in order; `parent` and `leaf_pair` are the node each hangs on and
-                   the number of the pair they make
+                   the number of the pair they make; `leaf_first` is True where their (last) spring begins at it
     core           steps for all other unknowns, in order
     pair_count     number of pairs of unknowns, fill included
     spring_pair    (springs,) pair of each spring; -1 where both ends are one node
@@ -56,6 +56,7 @@ class Plan:
     leaf: tuple[int, ...]
     parent: tuple[int, ...]
     leaf_pair: tuple[int, ...]
+    leaf_first: tuple[bool, ...]
     core: tuple[CoreStep, ...]
     pair_count: int
     spring_pair: tuple[int, ...]
@@ -97,16 +98,19 @@ def plan_elimination(network: Network, last: tuple[int, ...] = ()) -> Plan:
     rank = _ranks(size, leaf, core)
     steps = tuple(_core_step(u, neighbours, rank, pairs) for u, neighbours in core)
     group, resting_group, groups = _groups(network)
+    spring_sign = tuple([1 if rank[a] <= rank[b] else -1 for a, b in ends])
+    sign = dict(zip(spring_pair, spring_sign, strict=True))
     return Plan(
         nodes=network.nodes,
         links=size - network.nodes,
         leaf=tuple(leaf),
         parent=tuple(parent),
         leaf_pair=tuple(leaf_pair),
+        leaf_first=tuple([sign[pair] > 0 for pair in leaf_pair]),
         core=steps,
         pair_count=len(pairs.number),
         spring_pair=tuple(spring_pair),
-        spring_sign=tuple([1 if rank[a] <= rank[b] else -1 for a, b in ends]),
+        spring_sign=spring_sign,
         link_pairs=tuple(
             tuple(pairs.of(network.nodes + number, node) for node in link.nodes)
             for number, link in enumerate(network.torque_links)

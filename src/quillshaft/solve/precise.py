@@ -12,7 +12,9 @@ from decimal import MAX_EMAX, MIN_EMIN, Context, Decimal, localcontext
 import numpy as np
 
 from quillshaft.graph.network import Bools, Floats, Ints, Network
-from quillshaft.solve.elimination import CHUNK_POINTS, ElementValues, Elimination, Numbers, eliminate
+from quillshaft.solve.elimination import CHUNK_POINTS, Elimination, eliminate
+from quillshaft.solve.first_values import ElementValues
+from quillshaft.solve.memory import Numbers
 from quillshaft.solve.plan import Plan
 from quillshaft.solve.substitution import Solution, solve
 

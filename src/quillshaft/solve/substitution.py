@@ -13,18 +13,16 @@ from __future__ import annotations
 
 import numpy as np
 
-from quillshaft.graph.network import Floats, Ints, Network
+from quillshaft.graph.network import Floats, Network
 from quillshaft.records import dataclass
+from quillshaft.solve.core import Motion, carry_core, solve_core
 from quillshaft.solve.elimination import (
     CHUNK_POINTS,
-    CoreRecord,
-    ElementValues,
     Elimination,
-    Numbers,
-    Value,
-    Values,
     eliminate,
 )
+from quillshaft.solve.first_values import ElementValues, Value, Values
+from quillshaft.solve.memory import Memory, Numbers
 from quillshaft.solve.plan import NO_PAIR, Plan
 
 
@@ -50,62 +48,94 @@ def solve(elimination: Elimination, torque: Numbers, link_error: Numbers | None 
     link_error (torque links, F) [rad] is a given right-hand side of the links' equations
     Σ coefficient · angle − compliance · T = link_error (a transmission error); left out, it is zero.
     """
-    plan, points = elimination.plan, elimination.pivot.shape[1]
-    f = np.zeros((plan.nodes + plan.links, points), dtype=np.result_type(elimination.pivot, torque))
-    f[: plan.nodes] = torque
-    loaded = [True] * plan.nodes if torque.shape[1] > 1 else (torque[:, 0] != 0).tolist()
-    if link_error is not None:
-        f[plan.nodes :] = link_error
-    x, twist = np.empty_like(f), np.empty((plan.pair_count, points), dtype=f.dtype)
+    plan, memory = elimination.plan, Memory()
+    memory.begin(elimination.ratio.shape[1], np.result_type(elimination.ratio, torque))
+    motion = Motion(memory.table("x", plan.nodes + plan.links), memory.table("between", plan.pair_count))
+    errors: list[Value | None] = [None] * plan.links if link_error is None else list(link_error)
+    move(elimination, [*loads_of(torque), *errors], motion, memory)
+    return _solution(elimination, motion)
+
+
+def loads_of(torque: Numbers) -> list[Value | None]:
+    """The load of each node from torques (nodes, F) or (nodes, 1): a row, a number, or None where there is none."""
+    if torque.shape[1] > 1:
+        return list(torque)
+    return [value or None for value in torque[:, 0].tolist()]
+
+
+def move(elimination: Elimination, load: list[Value | None], motion: Motion, memory: Memory) -> None:
+    """Put into `motion` what a load on every unknown (a row, a number, or None) does; `load` is used up.
+
+    The motion may be made of `ratio` and `passed` of the elimination, which are then used up too.
+    """
+    scratch = memory.row()
+    carried, summed = memory.table("carried", len(load)), memory.table("summed", len(load))
     with np.errstate(all="ignore"):
-        _forward_leaves(elimination, f, loaded)
-        _solve_core(elimination, f, x, twist)
-        _back_leaves(elimination, (f, loaded), x, twist)
-    return _solution(plan, elimination.tie_node, x, twist)
+        _forward_leaves(elimination, load, carried, summed)
+        for record in elimination.core:
+            carry_core(record, load, summed, scratch)
+        for record in reversed(elimination.core):
+            solve_core(elimination.plan, record, load, motion, memory)
+        _back_leaves(elimination, (load, carried), motion, scratch)
+    memory.give(scratch)
 
 
-def _forward_leaves(elimination: Elimination, f: Numbers, loaded: list[bool]) -> None:
-    """Carry the torques of the leaves to their parents; `loaded` says which nodes have any, and grows."""
+def _forward_leaves(elimination: Elimination, load: list[Value | None], carried: Numbers, summed: Numbers) -> None:
+    """Carry the torques of the leaves to their parents; what a leaf carries stays in its row of `carried`."""
     plan = elimination.plan
-    rows, scratch = list(f), np.empty(f.shape[1], dtype=f.dtype)
+    ratios, carries, sums = list(elimination.ratio), list(carried), list(summed)
     multiply, add = np.multiply, np.add
-    for node, parent, ratio in zip(plan.leaf, plan.parent, elimination.leaf_ratio, strict=True):
-        if loaded[node]:
-            above = rows[parent]
-            multiply(ratio, rows[node], scratch)
-            add(above, scratch, above)
-            loaded[parent] = True
+    for node, parent in zip(plan.leaf, plan.parent, strict=True):
+        own, before = load[node], load[parent]
+        if own is not None:
+            more = multiply(ratios[node], own, carries[node])
+            load[parent] = more if before is None else add(before, more, sums[parent])
 
 
-def _solve_core(elimination: Elimination, f: Numbers, x: Numbers, twist: Numbers) -> None:
-    for record in elimination.core:
-        carried = f[record.step.unknown] / record.pivot
-        for other, weight in zip(record.step.neighbours, record.weights, strict=True):
-            f[other] += weight * carried
-    for record in reversed(elimination.core):
-        _back_core(elimination.plan, record, f, x, twist)
+def _back_leaves(
+    elimination: Elimination,
+    loads: tuple[list[Value | None], Numbers],
+    motion: Motion,
+    scratch: Numbers,
+) -> None:
+    """Angles of the leaves, and torques to their parents.
 
-
-def _back_leaves(elimination: Elimination, load: tuple[Numbers, list[bool]], x: Numbers, twist: Numbers) -> None:
-    """Angles and twists of the leaves: x = ratio (x_parent + f/weight), twist = ratio (f − excess x_parent)/weight."""
+    x = ratio · x_parent + f/d, torque = ratio · f − passed · x_parent: the twist (f − excess · x_parent)/d times
+    the weight.
+    """
     plan = elimination.plan
-    f, loaded = load
-    torques, angles, twists, excesses = list(f), list(x), list(twist), list(elimination.excess)
-    scratch = np.empty(f.shape[1], dtype=f.dtype)
-    multiply, add, subtract = np.multiply, np.add, np.subtract
-    leaves = zip(plan.leaf, plan.parent, plan.leaf_pair, elimination.leaf_ratio, elimination.leaf_weight, strict=True)
-    for node, parent, pair, ratio, weight in reversed(list(leaves)):
-        here, above, inverse = angles[node], angles[parent], 1 / weight
-        multiply(excesses[node], above, scratch)
-        subtract(torques[node], scratch, scratch)
-        multiply(scratch, ratio, scratch)
-        multiply(scratch, inverse, twists[pair])
-        if loaded[node]:
-            multiply(torques[node], inverse, here)
-            add(here, above, here)
-            multiply(here, ratio, here)
+    load, carries = loads[0], list(loads[1])
+    ratios, passes, pivots = list(elimination.ratio), list(elimination.passed), list(elimination.pivot)
+    angles, torques = list(motion.x), list(motion.between)
+    multiply, divide, add, subtract, negative = np.multiply, np.divide, np.add, np.subtract, np.negative
+    leaves = zip(
+        plan.leaf,
+        plan.parent,
+        plan.leaf_pair,
+        plan.leaf_first,
+        elimination.leaf_weight,
+        elimination.leaf_inverse,
+        strict=True,
+    )
+    for node, parent, pair, first, weight, inverse in reversed(list(leaves)):
+        here, above, torque, own, more = angles[node], angles[parent], torques[pair], load[node], carries[node]
+        multiply(passes[pair], above, torque)
+        multiply(ratios[node], above, here)
+        if own is None:
+            if first:
+                negative(torque, torque)
+            continue
+        if first:
+            subtract(more, torque, torque)
         else:
-            multiply(above, ratio, here)
+            subtract(torque, more, torque)
+        if pivots:
+            divide(own, pivots[node], scratch)
+        elif inverse is None:
+            multiply(more, np.asarray(1 / weight), scratch)
+        else:
+            multiply(own, inverse, scratch)
+        add(here, scratch, here)
 
 
 def respond(
@@ -148,53 +178,23 @@ def _cut(values: ElementValues, cut: slice) -> ElementValues:
     return ElementValues(part(values.springs), part(values.ties), part(values.inertia), part(values.compliances))
 
 
-def _solution(plan: Plan, tie_node: Ints, x: Numbers, twist: Numbers) -> Solution:
-    signs = np.array(plan.spring_sign, dtype=np.intp)[:, None]
+def _solution(elimination: Elimination, motion: Motion) -> Solution:
+    """Twists of the springs, from the torques of leaves and the twists of the core."""
+    plan, x, between = elimination.plan, motion.x, motion.between
+    if all(weight.ndim == 0 for weight in elimination.leaf_weight):
+        leaves = list(plan.leaf_pair)
+        between[leaves] = between[leaves] / np.array(elimination.leaf_weight)[:, None]
+    else:
+        for pair, weight in zip(plan.leaf_pair, elimination.leaf_weight, strict=True):
+            np.divide(between[pair], weight, between[pair])
     joined = plan.spring_pair
     if joined == tuple(range(len(joined))):
-        spring_twist = twist[: len(joined)]
+        spring_twist = between[: len(joined)]
     else:
-        spring_twist = twist[list(joined)] if len(twist) else np.zeros((len(joined), x.shape[1]), x.dtype)
+        spring_twist = between[list(joined)] if len(between) else np.zeros((len(joined), x.shape[1]), x.dtype)
         spring_twist[[pair == NO_PAIR for pair in joined]] = 0
-    np.multiply(spring_twist, signs, spring_twist)
-    return Solution(x[: plan.nodes], spring_twist, x[tie_node], x[plan.nodes :])
-
-
-def _back_core(plan: Plan, record: CoreRecord, f: Numbers, x: Numbers, twist: Numbers) -> None:
-    """Angle (or torque) of one core unknown and its twists against the neighbours of its own group."""
-    step, weights = record.step, record.weights
-    groups = [plan.group[other] for other in step.neighbours]
-    own = plan.group[step.unknown]
-    base = f[step.unknown]
-    for group in sorted(set(groups) - {own} if own >= 0 else set(groups)):
-        base = base + _from_group(groups, group, record, x, twist)
-    mine = [position for position, group in enumerate(groups) if group == own >= 0]
-    total = base
-    excess = record.excess[own] if own >= 0 else None
-    parts: dict[int, Value] = {}
-    for position in mine:
-        at = x[step.neighbours[position]]
-        total = total + weights[position] * at
-        parts[position] = base if excess is None else base - excess * at
-    x[step.unknown] = total / record.pivot
-    for a, b, pair in step.fill:
-        if a in parts and b in parts:
-            parts[a] = parts[a] - weights[b] * twist[pair]
-            parts[b] = parts[b] + weights[a] * twist[pair]
-    for position, part in parts.items():
-        twist[step.pairs[position]] = part / record.pivot
-
-
-def _from_group(groups: list[int], group: int, record: CoreRecord, x: Numbers, twist: Numbers) -> Value:
-    """Σ weight · x over the neighbours of another group, by their twists against the first of them."""
-    step, weights = record.step, record.weights
-    members = [position for position, other in enumerate(groups) if other == group]
-    if group < 0 or len(members) == 1:
-        return sum(weights[position] * x[step.neighbours[position]] for position in members)
-    first = members[0]
-    excess = record.excess[group]
-    total: Value = 0 if excess is None else -excess * x[step.neighbours[first]]
-    for a, b, pair in step.fill:
-        if a == first and groups[b] == group:
-            total = total - weights[b] * twist[pair]
-    return total
+    first = dict(zip(plan.leaf_pair, plan.leaf_first, strict=True))
+    signs = zip(joined, plan.spring_sign, strict=True)
+    for number in [number for number, (pair, sign) in enumerate(signs) if (sign > 0) != first.get(pair, True)]:
+        np.negative(spring_twist[number], spring_twist[number])
+    return Solution(x[: plan.nodes], spring_twist, x[elimination.tie_node], x[plan.nodes :])
