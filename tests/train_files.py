@@ -77,7 +77,7 @@ MORE = """\
 [ties]
 grid = { at = "motor-core", stiffness = 5000, psi = 0.1 }
 [materials]
-own = { shear-modulus = 80, density = 7800, tensile = 500 }
+own = { shear-modulus = 80, density = 7800, tensile = 500, yield = 300, endurance = 140 }
 [dismissals]
 v = { source = "pump vane-pass", mode = 1, frequency = 3.0, because = "far", by = "A. N.", cases = ["new-coupling"] }
 [stations.sun]
@@ -91,6 +91,35 @@ ring = "fixed"
 teeth = { sun = 21, ring = 87, planet = 33 }
 planets = 3
 mesh-stiffness = "3 MN m/rad"
+rated-torque = "7 kN m"
+[shafts.stub]
+between = ["impeller", "end"]
+stiffness = "4 MN m/rad"
+material = "own"
+permitted-stress = 28
+passing-stress = 40
+strength-rule = "endurance"
+weakest = { od = 95, id = 20, fillet = 4, shoulder = 120, keyway = true, cross-hole = 12, stress-factor = 1.6 }
+[stations.end]
+inertia = 0.4
+[excitations.locked]
+at = "end"
+order = 3
+torque = "40 N m"
+phase = "30 deg"
+locked-with = "process-pulse"
+[amplitudes]
+"pump vane-pass" = "1.5 %"
+"motor line-2x" = { torque = "40 N m", source = "maker" }
+[criteria.strength]
+mean-stress = "gerber"
+safety = 1.5
+[criteria.duty]
+gear-share = "33 %"
+electrical-angle = "3.5 deg"
+[cases.louder]
+amplitudes."pump vane-pass" = "3 %"
+criteria.duty = { gear-share = "20 %" }
 """
 """Rows of the kinds that TEXT does not have, to be put after it."""
 

@@ -10,6 +10,7 @@ from typing import Any
 import pytest
 from jsonschema import Draft202012Validator
 
+from quillshaft.train.duty_rows import DutyTable, StrengthTable, WeakestRow
 from quillshaft.train.machine_rows import MACHINE_ROWS
 from quillshaft.train.messages import keys_of
 from quillshaft.train.overlay import KEYED_TABLES, PLAIN_TABLES
@@ -32,6 +33,7 @@ EXAMPLES = sorted((Path(__file__).parents[2] / "examples").glob("*.toml"))
 CLASSES = [*ROWS.values(), *PLAIN.values(), *MACHINE_ROWS.values(), *GEAR_ROWS.values()]
 INNER = [PieceRow, KeywayRow, SplineRow, SectionRow, ThrowRow, EquivalentRow, RunningGearRow]
 INNER += [EpicyclicTeethRow, CylinderRow, RevisionRow]
+INNER += [WeakestRow, StrengthTable, DutyTable]
 INNER += [GasRow, SimpleCycleRow, CompressorCylinderRow, CompressorEndRow]
 SOUND = [TEXT, TEXT + MORE, *(starter_text(kind) for kind in KINDS), *(path.read_text("utf-8") for path in EXAMPLES)]
 

@@ -22,6 +22,9 @@ def gear_text(gear: GearMesh | Epicyclic, units: ShownUnits) -> str:
     text = _stage(gear, units) if isinstance(gear, Epicyclic) else _mesh(gear, units)
     if gear.backlash_m is not None:
         text += f", backlash {gear.backlash_m * units.per_m:.3g} {units.length} (stored, not used)"
+    if gear.rated_torque_nm is not None:
+        where = "the sun" if isinstance(gear, Epicyclic) else gear.between[0]
+        text += f", rated {number(gear.rated_torque_nm * units.per_nm)} {units.torque} at {where}"
     return text
 
 

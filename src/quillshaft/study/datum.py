@@ -15,7 +15,7 @@ from quillshaft.train.quantity import MEASURES, QuantityError, read_quantity, wh
 from quillshaft.train.read import train_of
 
 Path = tuple[str | int, ...]
-CLOSED = frozenset(("schema", "train", "cases", "sign-off", "dismissals", "excitations-off"))
+CLOSED = frozenset(("schema", "train", "cases", "sign-off", "dismissals", "excitations-off", "amplitudes"))
 """Tables in which no number moves a frequency or a source."""
 
 _PART = re.compile(r'(?:^|\.)(?:"([^"]*)"|\'([^\']*)\'|([^.\[\]"\']+))|\[([0-9]+)\]')

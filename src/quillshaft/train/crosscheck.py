@@ -6,6 +6,7 @@ from itertools import pairwise
 from typing import Any
 
 from quillshaft.train.damper_checks import check_dampers
+from quillshaft.train.duty_checks import check_duty
 from quillshaft.train.electrical_resolve import tie_problem
 from quillshaft.train.gear_checks import check_gears, check_joints
 from quillshaft.train.materials import BUILT_IN
@@ -158,8 +159,10 @@ def _materials(findings: Findings, rows: Rows) -> None:
             hint = did_you_mean(row.material, known)
             path = ("shafts", name, "material")
             findings.add(path, f"there is no material of this name{hint}", row.material, ", ".join(known))
-        if row.material is not None and (row.stiffness is not None or row.flexibility is not None):
-            findings.add(("shafts", name, "material"), "a stiffness as given does not use a material", row.material)
+        as_given = row.stiffness is not None or row.flexibility is not None
+        if row.material is not None and as_given and row.weakest is None:
+            message = "a stiffness as given does not use a material; only the strength of weakest does"
+            findings.add(("shafts", name, "material"), message, row.material)
 
 
 def _dismissals(findings: Findings, rows: Rows, cases: tuple[str, ...]) -> None:
@@ -173,7 +176,7 @@ def _dismissals(findings: Findings, rows: Rows, cases: tuple[str, ...]) -> None:
 def _added_rows(findings: Findings, rows: Rows) -> None:
     """A broken row that a case adds is most often a misspelt element of the base."""
     for table, names in rows.declared.items():
-        for name in names:
+        for name in names if table != "amplitudes" else ():
             case = added_by(findings.document, findings.cases, table, name)
             if case is not None and name not in rows.keyed[table]:
                 base = findings.document.data.get(table)
@@ -193,6 +196,7 @@ def crosscheck(findings: Findings, rows: Rows, cases: tuple[str, ...]) -> None:
     check_shaft_temperatures(findings, rows)
     _dismissals(findings, rows, cases)
     check_dampers(findings, rows)
+    check_duty(findings, rows)
     _added_rows(findings, rows)
 
 

@@ -69,6 +69,8 @@ def _viscous(name: str, row: Any, said: Assumptions) -> Damper:
         viscous_nms_rad=viscous,
         provenance=_provenance(row, element, said),
         group=row.group,
+        permitted_heat_w=row.permitted_heat,
+        permitted_torque_nm=row.permitted_torque,
     )
 
 
@@ -95,6 +97,8 @@ def _tuned(name: str, row: Any, said: Assumptions) -> Damper:
         loss_factor=loss,
         provenance=_provenance(row, element, said),
         group=row.group,
+        permitted_heat_w=row.permitted_heat,
+        permitted_torque_nm=row.permitted_torque,
     )
 
 
@@ -122,4 +126,6 @@ def _pendulum(name: str, row: Any, said: Assumptions) -> Damper:
         pendulums=made,
         provenance=_provenance(row, element, said),
         group=row.group,
+        permitted_heat_w=row.permitted_heat,
+        permitted_torque_nm=row.permitted_torque,
     )

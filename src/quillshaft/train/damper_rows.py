@@ -7,6 +7,7 @@ from pydantic import Field, model_validator
 from quillshaft.train.fields import (
     Count,
     Frequency,
+    Heat,
     Inertia,
     Length,
     Mass,
@@ -14,6 +15,7 @@ from quillshaft.train.fields import (
     Ratio,
     Stiffness,
     ToleranceField,
+    Torque,
     Viscous,
     complain,
 )
@@ -30,6 +32,8 @@ class DamperRow(ToleratedRow):
     state: DamperState = "healthy"
     inertia_tolerance: ToleranceField | None = None
     viscous: Viscous | None = None
+    permitted_heat: Heat | None = None
+    permitted_torque: Torque | None = None
 
     @model_validator(mode="after")
     def _something_to_halve(self) -> Self:

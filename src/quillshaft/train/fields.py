@@ -48,8 +48,8 @@ def one_line(text: str) -> str:
 
 
 def kebab(name: str) -> str:
-    """A field's name as the file spells it."""
-    return name.replace("_", "-")
+    """A field's name as the file spells it; an underscore at its end only keeps it apart from Python's words."""
+    return name.rstrip("_").replace("_", "-")
 
 
 def quantity_of(value: object, measure: str, info: ValidationInfo) -> float:
@@ -122,9 +122,10 @@ class MeasuredPair:
 
 @dataclass(frozen=True)
 class AnyMeasure:
-    """A quantity with its unit, of whichever of several measures the unit belongs to."""
+    """A quantity with its unit, of whichever of several measures the unit belongs to: above 0, or 0 where `closed`."""
 
     measures: tuple[str, ...]
+    closed: bool = False
 
     def read(self, value: object, info: ValidationInfo) -> tuple[str, float]:
         """(measure, SI value). Raises PydanticCustomError when it is of none of them, or bare."""
@@ -134,8 +135,8 @@ class AnyMeasure:
         if measure is None:
             raise complain(self._why(value), self.help)
         number = quantity_of(value, measure, info)
-        if number <= 0:
-            raise complain("must be above 0")
+        if number < 0 or (number == 0 and not self.closed):
+            raise complain(f"must be {'at least' if self.closed else 'above'} 0")
         return measure, number
 
     @property
@@ -305,6 +306,8 @@ Torque = Annotated[float, Measured("torque")]
 Length = Annotated[float, Measured("length", least=LEAST_LENGTH_M)]
 LengthOrZero = Annotated[float, Measured("length", closed=True, least=LEAST_LENGTH_M)]
 Angle = Annotated[float, Measured("angle", closed=True)]
+SignedAngle = Annotated[float, Measured("angle", low=-1e9)]
+SpeedRate = Annotated[float, Measured("speed_rate")]
 SeparationField = Annotated[dict[str, float], Separation()]
 SignedSpeed = Annotated[float, Measured("signed_speed", low=-1e9)]
 Speed = Annotated[float, Measured("speed", closed=True)]
@@ -327,6 +330,7 @@ FactorTable = Annotated[Points, MeasuredTable("temperature", Measured("number"))
 ModulusTable = Annotated[Points, MeasuredTable("temperature", Measured("modulus"), alone=True)]
 TemperaturePair = Annotated[tuple[float, float], MeasuredPair(Measured("temperature"), alone=False)]
 ExcitationTorque = Annotated[tuple[str, float], AnyMeasure(("share", "torque"))]
+Amplitude = Annotated[tuple[str, float], AnyMeasure(("share", "torque"), closed=True)]
 Ratio = Annotated[float, Field(gt=0, le=50, strict=True, allow_inf_nan=False)]
 Diameters = Annotated[tuple[float, float], MeasuredPair(Measured("length", least=LEAST_LENGTH_M))]
 Bores = Annotated[tuple[float, float], MeasuredPair(Measured("length", closed=True, least=LEAST_LENGTH_M))]

@@ -93,6 +93,7 @@ def _mesh(name: str, row: Any, said: Assumptions) -> GearMesh:
         backlash_m=row.backlash,
         reverses=getattr(row, "reverses", False),
         shaft_angle_rad=getattr(row, "shaft_angle", None),
+        rated_torque_nm=row.rated_torque,
     )
 
 
@@ -127,6 +128,7 @@ def _epicyclic(name: str, row: Any, said: Assumptions) -> Epicyclic:
         wheels=wheels,
         planet_teeth=row.teeth.planet,
         held=held,
+        rated_torque_nm=row.rated_torque,
     )
 
 

@@ -5,7 +5,7 @@ from typing import Annotated, Literal, Self
 from pydantic import Field, StrictBool, model_validator
 
 from quillshaft.train.electrical_rows import BreakdownKeys, ConverterKeys, GridKeys, LoadKeys, check_resonance
-from quillshaft.train.fields import Count, Frequency, Name, Poles, SignedFrequency, complain
+from quillshaft.train.fields import Count, Frequency, Name, Poles, SignedFrequency, Torque, complain
 from quillshaft.train.reciprocating_rows import ReciprocatingCompressorRow, ReciprocatingEngineRow
 from quillshaft.train.rows import ElementRow
 
@@ -66,6 +66,7 @@ class GeneratorRow(GridKeys, MachineRow):
     kind: Literal["generator"]
     poles: Poles
     supply: Frequency | None = None
+    rated_torque: Torque | None = None
 
     @model_validator(mode="after")
     def _grid(self) -> Self:

@@ -8,7 +8,8 @@ from typing import Annotated, Any, Literal, Union, get_args, get_origin
 from pydantic import BaseModel
 
 from quillshaft.records import dataclass
-from quillshaft.train.fields import Measured, MeasuredPair
+from quillshaft.train.duty_rows import WeakestRow
+from quillshaft.train.fields import AnyMeasure, Measured, MeasuredPair
 from quillshaft.train.problems import did_you_mean
 from quillshaft.train.quantity import measure_help
 from quillshaft.train.rows import EpicyclicRow
@@ -26,6 +27,13 @@ EXAMPLES = {
     "section": '{ rectangle = ["80 mm", "50 mm"] } or { square = "60 mm" }',
     "spline": '{ major = "80 mm", minor = "70 mm" }',
     "throw": "{ journal, journal-length, pin, pin-length, web-thickness, web-width, radius }, each with its unit",
+    "magnifier": "a number from 2 to 1000 without quotes, such as 40",
+    "stress-factor": "a number from 1 without quotes or unit, such as 1.6",
+    "safety": "a number from 1 to 10 without quotes or unit, such as 1.5",
+    "inertia-torque": "a number above 0 without quotes or unit, such as 2",
+    "strength": '{ rule = "endurance", safety = 1.5 }',
+    "duty": '{ gear-share = "33 %", gear-reversal = "refused" }',
+    "weakest": '{ od = "95 mm", fillet = "4 mm", shoulder = "120 mm" }',
     "running-gear": '{ reciprocating-mass = "9.4 kg", rotating-mass = "6 kg", radius = "95 mm", rod = "350 mm" }',
     "repeat": "a whole number without quotes, such as 6",
     "cuts": "a whole number from 2 to 512 without quotes, such as 16",
@@ -56,6 +64,11 @@ EPICYCLIC = {
     "carrier": 'a name from [stations], or "fixed", in quotes',
 }
 """The same for a row of [gears] with kind = "epicyclic"."""
+
+OF_ROW: dict[Any, dict[str, str]] = {
+    EpicyclicRow: EPICYCLIC,
+    WeakestRow: dict.fromkeys(("keyway", "spline"), "true or false, without quotes"),
+}
 
 PROVENANCE = ("source", "document", "date", "status", "note")
 
@@ -158,14 +171,16 @@ def _allowed(row: type[BaseModel], loc: tuple[str | int, ...], system: str) -> s
         return ", ".join(keys_of(row))
     parent, key = _row_at(row, loc[: loc.index(keys[-1])]), keys[-1]
     field = _field(parent, key)
-    if parent is EpicyclicRow and key in EPICYCLIC:
-        return EPICYCLIC[key]
+    if key in OF_ROW.get(parent, {}):
+        return OF_ROW[parent][key]
     for item in field[1]:
         if isinstance(item, Measured):
             return measure_help(item.measure, system)
         if isinstance(item, MeasuredPair):
             help_text = measure_help(item.item.measure, system)
             return f"{help_text}; or a list of two" if item.alone else f"a list of two, each {help_text}"
+        if isinstance(item, AnyMeasure):
+            return item.help
     if key in EXAMPLES:
         return EXAMPLES[key]
     if options := _options(row, loc):

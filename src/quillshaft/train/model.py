@@ -8,6 +8,7 @@ from typing import Literal
 
 from quillshaft.records import dataclass
 from quillshaft.train.document import Document
+from quillshaft.train.duty_model import Amplitude, DutyCriteria, ShaftStrength, StrengthCriteria, Surface
 from quillshaft.train.electrical_model import Electrical, Synchronizing
 from quillshaft.train.reciprocating_model import Cylinder, EngineGas
 
@@ -22,6 +23,10 @@ Range = tuple[float, float]
 
 FIXED = "fixed"
 BALANCE = "balance"
+
+ORDINARY_STRENGTH = StrengthCriteria()
+ORDINARY_DUTY = DutyCriteria()
+"""Criteria of a file that states none."""
 
 
 @dataclass(frozen=True)
@@ -47,8 +52,10 @@ class Provenance:
 
 @dataclass(frozen=True)
 class Material:
-    """Shear modulus [Pa], density [kg/m³] and tensile strength [Pa], the last only where given.
+    """Shear modulus [Pa], density [kg/m³] and strengths [Pa], the latter only where given.
 
+    yield_pa         in tension
+    endurance_pa     in fully reversed shear, of a plain polished bar
     modulus_points   (temperature [K], shear modulus [Pa]) where it is stated against temperature
     temperature_k    temperature [K] that shear_modulus_pa then stands for
     """
@@ -59,6 +66,8 @@ class Material:
     tensile_pa: float | None = None
     temperature_k: float | None = None
     modulus_points: Table = ()
+    yield_pa: float | None = None
+    endurance_pa: float | None = None
 
 
 @dataclass(frozen=True)
@@ -115,6 +124,9 @@ class Piece:
     spline_share     share of the tooth height that carries torque: 0 is the root circle
     flange           True of a disc that does not twist
     modulus_factor   shear modulus at the piece's temperature over that of the shaft
+    cross_hole_m     diameter of a radial hole through the piece
+    stress_factor    theoretical stress concentration in torsion, given in place of all stress raisers
+    surface          finish; None takes that of [criteria.strength]
     """
 
     length_m: float
@@ -129,6 +141,9 @@ class Piece:
     spline_share: float = 0.0
     flange: bool = False
     modulus_factor: float = 1.0
+    cross_hole_m: float | None = None
+    stress_factor: float | None = None
+    surface: Surface | None = None
 
 
 @dataclass(frozen=True)
@@ -164,7 +179,9 @@ class EquivalentLength:
 class Shaft:
     """A shaft between two stations: a stiffness [N·m/rad] as given, or the geometry to get it from.
 
-    cuts   about how many lengths a shaft of distributed inertia is cut into; 0 of any other
+    material   of geometry; of a stiffness as given, that of the weakest section, where the file names it
+    cuts       about how many lengths a shaft of distributed inertia is cut into; 0 of any other
+    strength   limits of its own; None where the file states none
     """
 
     name: str
@@ -185,6 +202,7 @@ class Shaft:
     shoulder: Literal["none", "fillet", "sharp"] = "none"
     cuts: int = 0
     cuts_given: bool = False
+    strength: ShaftStrength | None = None
 
 
 @dataclass(frozen=True)
@@ -213,6 +231,7 @@ class Coupling:
     stiffness_points     (mean torque [N·m], stiffness [N·m/rad]); empty where the stiffness is one number
     temperature_points   (temperature [K], factor on the stiffness); damping_points likewise on the damping
     operating_k          coldest and hottest temperature [K] of the coupling in service
+    ambient_k            temperature [K] of the air about it, from which its losses heat it
     """
 
     name: str
@@ -234,6 +253,7 @@ class Coupling:
     group: str | None = None
     viscous_nms_rad: float | None = None
     ratings: CouplingRatings | None = None
+    ambient_k: float | None = None
 
 
 @dataclass(frozen=True)
@@ -259,6 +279,7 @@ class GearMesh:
     by_rule         the stiffness follows from teeth, module and face by ISO 6336-1, simplified
     backlash_m      circumferential at the pitch circles; stored, without effect on linear results
     reverses        of a bevel stage: its ratio counts as negative in a closed loop
+    rated_torque_nm at the first-named station
     """
 
     name: str
@@ -278,6 +299,7 @@ class GearMesh:
     backlash_m: float | None = None
     reverses: bool = False
     shaft_angle_rad: float | None = None
+    rated_torque_nm: float | None = None
 
 
 @dataclass(frozen=True)
@@ -310,6 +332,7 @@ class Epicyclic:
     wheels              the planets with inertia of their own; None where that is left out
     planet_teeth        of one planet, where given
     held                the member that is fixed through a stiffness, if one is
+    rated_torque_nm     at the sun
     """
 
     name: str
@@ -331,6 +354,7 @@ class Epicyclic:
     wheels: Planets | None = None
     planet_teeth: int | None = None
     held: HeldMember | None = None
+    rated_torque_nm: float | None = None
 
     @property
     def members(self) -> tuple[tuple[str, int], ...]:
@@ -413,6 +437,7 @@ class Damper:
     order              that the pendulums are tuned to, per turn of their station; None of the others
     moving_share       part of a viscous damper's ring that counts with its station in undamped modes
     state              seized: the ring turns with its station; lost: it is not there
+    permitted_heat_w, permitted_torque_nm   loss and torque amplitude that its maker permits
     """
 
     name: str
@@ -430,6 +455,8 @@ class Damper:
     pendulums: Pendulums | None = None
     provenance: Provenance = Provenance()
     group: str | None = None
+    permitted_heat_w: float | None = None
+    permitted_torque_nm: float | None = None
 
     @property
     def swings(self) -> bool:
@@ -461,7 +488,10 @@ NO_ELECTRICAL = Electrical()
 
 @dataclass(frozen=True)
 class Machine:
-    """What sits at a station. Fields that a kind does not use stay None or empty."""
+    """What sits at a station. Fields that a kind does not use stay None or empty.
+
+    magnifier   dynamic magnifier of each cylinder's own damping, of engines and reciprocating compressors
+    """
 
     name: str
     kind: str
@@ -481,11 +511,16 @@ class Machine:
     gas: EngineGas | None = None
     electrical: Electrical = NO_ELECTRICAL
     load_slope_nms_rad: float | None = None
+    magnifier: float | None = None
 
 
 @dataclass(frozen=True)
 class Excitation:
-    """A source of the user's own: |order · speed + frequency_hz| at a station or inside a link."""
+    """A source of the user's own: |order · speed + frequency_hz| at a station or inside a link.
+
+    locked_with   reciprocating machine or other excitation that it keeps its phase to; None: to nothing
+    phase_rad     that phase, None where the file is silent
+    """
 
     name: str
     at: str
@@ -495,6 +530,8 @@ class Excitation:
     torque_share: float | None = None
     when: Literal["continuous", "start", "fault"] = "continuous"
     provenance: Provenance = Provenance()
+    phase_rad: float | None = None
+    locked_with: str | None = None
 
 
 @dataclass(frozen=True)
@@ -512,7 +549,12 @@ class Dismissal:
 
 @dataclass(frozen=True)
 class Operation:
-    """The operating map; speeds are those of `speed_at` [rad/s]."""
+    """The operating map; speeds are those of `speed_at` [rad/s].
+
+    tachometer    relative error of the speed shown to the operator
+    ramp_rad_s2   rate at which speeds are passed
+    light_load    share of full load that stands for running at light load
+    """
 
     speed_at: str
     rated_rad_s: float
@@ -525,6 +567,11 @@ class Operation:
     barred_rad_s: tuple[Range, ...] = ()
     barred_because: str | None = None
     speeds_rad_s: dict[str, float] = field(default_factory=dict)
+    tachometer: float = 0.02
+    tachometer_given: bool = False
+    ramp_rad_s2: float | None = None
+    light_load: float = 0.25
+    light_load_given: bool = False
 
 
 @dataclass(frozen=True)
@@ -571,7 +618,10 @@ class SignOff:
 
 @dataclass(frozen=True)
 class Train:
-    """A drivetrain as its file states it, in file order throughout."""
+    """A drivetrain as its file states it, in file order throughout.
+
+    ordinary_amplitudes   sources without an amplitude of their own take an ordinary one
+    """
 
     title: str
     tag: str | None
@@ -598,3 +648,7 @@ class Train:
     belts: tuple[Belt, ...] = ()
     joints: tuple[UniversalJoint, ...] = ()
     fluid_couplings: tuple[FluidCoupling, ...] = ()
+    amplitudes: tuple[Amplitude, ...] = ()
+    ordinary_amplitudes: bool = False
+    strength: StrengthCriteria = ORDINARY_STRENGTH
+    duty: DutyCriteria = ORDINARY_DUTY

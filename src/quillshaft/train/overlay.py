@@ -23,6 +23,7 @@ KEYED_TABLES = frozenset(
         "excitations",
         "dismissals",
         "materials",
+        "amplitudes",
     )
 )
 ALTERNATIVES = (
@@ -34,7 +35,16 @@ ALTERNATIVES = (
     frozenset(("stiffness", "synchronizing")),
     frozenset(("psi", "loss-factor", "viscous")),
 )
+RIVALS = (
+    frozenset(("permitted-stress", "passing-stress")),
+    frozenset(("permitted-torque", "passing-torque")),
+)
+"""Keys that stand together, and give way to those of the other group."""
+PROPULSION = frozenset(("propulsion-kind", "propulsion-form"))
+PARTS = {"criteria": ("strength", "duty")}
+"""Tables within tables that a case changes key by key."""
 
+OMIT = {"omit": True}
 Data = dict[str, Any]
 PathParts = tuple[str | int, ...]
 
@@ -47,16 +57,38 @@ def case_names(data: Data) -> tuple[str, ...]:
 
 def _merge_element(base: Data, over: Data) -> Data:
     replaced = {key for group in ALTERNATIVES if group & set(over) for key in group}
+    for group, other in (RIVALS, RIVALS[::-1]):
+        replaced |= other if group & set(over) else set()
+    if over.get("strength-rule", "propulsion") != "propulsion":
+        replaced |= PROPULSION
     kept = {key: value for key, value in base.items() if key not in replaced}
     return {**kept, **over}
+
+
+def _merge_parts(name: str, base: Data, over: Data) -> Data:
+    """What a case says of a plain table, with the parts that it changes laid over those of the base."""
+    out = dict(over)
+    for key in PARTS.get(name, ()):
+        below, above = base.get(key), over.get(key)
+        if isinstance(below, dict) and isinstance(above, dict) and above != OMIT:
+            out[key] = {**below, **above}
+    return out
+
+
+def _spelled_out(table: str, rows: Any) -> Any:
+    """The rows of [amplitudes] as tables: a text alone stands for its torque. Other tables as they are."""
+    if table != "amplitudes" or not isinstance(rows, dict):
+        return rows
+    alone = {name for name, row in rows.items() if isinstance(row, str | int | float) and not isinstance(row, bool)}
+    return {name: {"torque": row} if name in alone else row for name, row in rows.items()}
 
 
 def _merge_table(name: str, base: Any, over: Any) -> Any:
     if not isinstance(base, dict) or not isinstance(over, dict):
         return over
     if name in PLAIN_TABLES:
-        laid = {**base, **over}
-        return {key: value for key, value in laid.items() if value != {"omit": True}}
+        laid = {**base, **_merge_parts(name, base, over)}
+        return {key: value for key, value in laid.items() if value != OMIT}
     merged = dict(base)
     for element, row in over.items():
         if isinstance(row, dict) and row.get("omit") is True:
@@ -115,9 +147,12 @@ def _omit_problems(document: Document, path: PathParts, row: Data, known: list[s
 def lay_cases(document: Document, names: tuple[str, ...]) -> Data:
     """The file's data with the named cases laid over it in the given order; `cases` itself is kept.
 
+    A text alone in [amplitudes] becomes a row with it as `torque`.
+
     Raises TrainFileError for an unknown case, one that is no table of changes, or one that changes nothing.
     """
     data: Data = copy.deepcopy(document.data)
+    data = {table: _spelled_out(table, rows) for table, rows in data.items()}
     known = case_names(data)
     for position, name in enumerate(names):
         if name not in known:
@@ -128,7 +163,7 @@ def lay_cases(document: Document, names: tuple[str, ...]) -> Data:
         problems = _case_problems(document, name, case, data)
         if problems:
             raise TrainFileError(problems)
-        changes = {table: rows for table, rows in case.items() if table != "because"}
+        changes = {table: _spelled_out(table, rows) for table, rows in case.items() if table != "because"}
         laid = {
             **data,
             **{table: _merge_table(table, data.get(table, {}), rows) for table, rows in changes.items()},

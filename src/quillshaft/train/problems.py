@@ -10,7 +10,7 @@ from quillshaft.records import dataclass
 NAMED_TABLES = frozenset(
     {
         "stations", "shafts", "couplings", "gears", "belts", "joints", "ties", "dampers", "machines",
-        "excitations", "dismissals", "materials", "events", "cases",
+        "excitations", "dismissals", "materials", "amplitudes", "events", "cases",
     }
 )  # fmt: skip
 """Tables whose keys are names the user chose; every other table holds fixed keys."""

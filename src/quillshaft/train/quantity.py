@@ -70,6 +70,7 @@ power            | W           | kW          | hp             | yes | -1e12 | 1e
 heat             | W           | W           | W              | yes | 0 | 1e12 | 620 W | 620 W
 speed            | rad/s       | rpm         | rpm            | no | 0 | 104719.75511965978 | 1487 rpm | 1780 rpm
 signed_speed     | rad/s       | rpm         | rpm            | no | -104719.75511965978 | 104719.75511965978 | -310 rpm | -310 rpm
+speed_rate       | rad/s^2     | rpm/s       | rpm/s          | no | 0 | 1e6 | 60 rpm/s | 60 rpm/s
 frequency        | Hz          | Hz          | Hz             | no | 0 | 1e6 | 50 Hz | 60 Hz
 signed_frequency | Hz          | Hz          | Hz             | no | -1e6 | 1e6 | -4 Hz | -4 Hz
 length           | m           | mm          | in             | no | 0 | 1e4 | 95 mm | 3.75 in

@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 from typing import Any
 
-from quillshaft.train import coupling_resolve, damper_resolve, gear_resolve, resolve, shaft_resolve
+from quillshaft.train import coupling_resolve, damper_resolve, duty_resolve, gear_resolve, resolve, shaft_resolve
 from quillshaft.train.assumptions import Assumptions
 from quillshaft.train.crosscheck import crosscheck, read_off, read_power
 from quillshaft.train.damper_cases import with_damper_cases
@@ -72,6 +72,7 @@ def _resolve(
         "machines": resolve.machines(rows, said, files),
         "excitations": resolve.excitations(rows, said),
     }
+    parts["amplitudes"] = duty_resolve.amplitudes(rows, said)
     parts["belts"] = gear_resolve.belts(rows, said)
     parts["joints"] = gear_resolve.joints(rows, said)
     parts["stations"] += gear_resolve.stations_brought(parts["gears"])
@@ -105,6 +106,9 @@ def _resolve(
         zeta=(zeta[0], zeta[1]),
         sign_off=_sign_off(rows),
         assumed=tuple(said.items),
+        ordinary_amplitudes=settings.amplitudes == "ordinary",
+        strength=duty_resolve.strength_criteria(rows.plain["criteria"].strength),
+        duty=duty_resolve.duty_criteria(rows.plain["criteria"].duty),
         **parts,
     )
 
@@ -138,6 +142,7 @@ def _operation(rows: Rows, said: Assumptions) -> Operation:
         row.barred or (),
         row.barred_because,
         dict(row.speeds),
+        **duty_resolve.operation_fields(row),
     )
 
 

@@ -76,6 +76,7 @@ def machine_parts(name: str, row: Any, read: Read) -> tuple[dict[str, Any], list
         "cylinders": cylinders,
         "stroke_m": row.stroke,
         "rod_m": row.rod,
+        "magnifier": row.magnifier,
         "gas": _engine_gas(name, row, cylinders, read, said) if engine else None,
     }
     return fields, said

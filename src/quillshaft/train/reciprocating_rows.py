@@ -35,6 +35,7 @@ LinePressure = Annotated[float, Ordinary("pressure", 1e3, True, high=5e8, words=
 Clearance = Annotated[float, Ordinary("share", 0.005, True, high=3.0, words="0.5 % to 300 % of the swept volume")]
 Compression = Annotated[float, Field(ge=3, le=30, strict=True, allow_inf_nan=False)]
 Exponent = Annotated[float, Field(ge=1, le=1.7, strict=True, allow_inf_nan=False)]
+Magnifier = Annotated[float, Field(ge=2, le=1000, strict=True, allow_inf_nan=False)]
 FileName = Annotated[str, Field(min_length=1, max_length=200, strict=True), AfterValidator(one_line)]
 
 
@@ -102,6 +103,7 @@ class ReciprocatingEngineRow(ElementRow):
     rod: Rod | None = None
     reciprocating_mass: MovingMass | None = None
     gas: GasRow | None = None
+    magnifier: Magnifier | None = None
 
     @model_validator(mode="after")
     def _complete(self) -> Self:
@@ -169,6 +171,7 @@ class ReciprocatingCompressorRow(ElementRow):
     dead_cylinders: Annotated[list[Count], Field(max_length=32, default_factory=list)]
     stroke: Stroke | None = None
     rod: Rod | None = None
+    magnifier: Magnifier | None = None
 
     @model_validator(mode="after")
     def _complete(self) -> Self:

@@ -120,6 +120,7 @@ def couplings(rows: Rows, said: Assumptions) -> tuple[Coupling, ...]:
                 row.group,
                 viscous_nms_rad=row.viscous,
                 ratings=coupling_ratings(name, row, said),
+                ambient_k=row.ambient,
             )
         )
     return tuple(out)
@@ -205,6 +206,8 @@ def excitations(rows: Rows, said: Assumptions) -> tuple[Excitation, ...]:
                 value if measure == "share" else None,
                 row.when,
                 provenance(row, f"excitations.{name}", said),
+                row.phase,
+                row.locked_with,
             )
         )
     return tuple(out)

@@ -26,6 +26,7 @@ from quillshaft.train.fields import (
     Poles,
     Ratio,
     Share,
+    SignedAngle,
     SignedFrequency,
     SignedViscous,
     Speed,
@@ -34,6 +35,7 @@ from quillshaft.train.fields import (
     Stress,
     Synchronizing,
     Teeth,
+    Temperature,
     TemperaturePair,
     Text,
     ToleranceField,
@@ -45,6 +47,9 @@ from quillshaft.train.fields import (
 )
 from quillshaft.train.gear_fields import Backlash, ContactRatio, GearStiffness, Shifts, StageStiffness
 from quillshaft.train.model import FIXED
+
+WHOLE_TURN_RAD = 6.283185307179587
+LOCKED = 'locked-with = "engine" beside it: a reciprocating machine or another excitation'
 
 
 class Row(BaseModel):
@@ -163,6 +168,7 @@ class CouplingRow(SpringRow):
     reference_frequency: Frequency | None = None
     permitted_heat: Heat | None = None
     heat_rise: HeatRise | None = None
+    ambient: Temperature | None = None
     max_speed: Speed | None = None
     temperature: FactorTable | None = None
     damping_temperature: FactorTable | None = None
@@ -203,6 +209,7 @@ class MeshRow(ToleratedRow):
     pressure_angle: Angle | None = None
     face: Length | None = None
     backlash: Backlash | None = None
+    rated_torque: Torque | None = None
     mesh_stiffness: Any = None
     psi: Ratio | None = None
     loss_factor: Ratio | None = None
@@ -314,6 +321,18 @@ class MaterialRow(ElementRow):
     shear_modulus: ModulusTable
     density: Density
     tensile: Stress | None = None
+    yield_: Stress | None = None
+    endurance: Stress | None = None
+
+    @model_validator(mode="after")
+    def _strengths(self) -> Self:
+        tensile, limited = self.tensile, self.yield_
+        if tensile is not None and limited is not None and limited > tensile:
+            raise complain("lies above tensile", f"up to {tensile / 1e6:.5g} MPa", "yield")
+        if tensile is not None and self.endurance is not None and self.endurance >= tensile:
+            allowed = "in fully reversed shear, of a plain polished bar: about 0.29 of tensile for steel"
+            raise complain("is not below tensile", allowed, "endurance")
+        return self
 
 
 class ExcitationRow(ElementRow):
@@ -324,11 +343,27 @@ class ExcitationRow(ElementRow):
     frequency: SignedFrequency | None = None
     torque: ExcitationTorque | None = None
     when: Literal["continuous", "start", "fault"] = "continuous"
+    phase: SignedAngle | None = None
+    locked_with: Name | None = None
 
     @model_validator(mode="after")
     def _line(self) -> Self:
         if not self.order and not self.frequency:
             raise complain("give order, frequency, or both, other than zero")
+        return self
+
+    @model_validator(mode="after")
+    def _locked(self) -> Self:
+        if self.phase is not None and abs(self.phase) > WHOLE_TURN_RAD:
+            raise complain("is more than a turn", "-360 to 360 degrees", "phase")
+        if self.locked_with is None:
+            if self.phase is not None:
+                raise complain("is that to what it is locked with, which is not given", LOCKED, "phase")
+            return self
+        if self.frequency:
+            raise complain("a constant frequency keeps its phase to no shaft", "order alone", "frequency")
+        if self.torque is None:
+            raise complain("needs an amplitude, which is not given", 'torque = "1.5 %" beside it', "locked-with")
         return self
 
 

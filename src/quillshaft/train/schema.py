@@ -13,7 +13,7 @@ from quillshaft.train.damper_rows import DAMPER_ROWS
 from quillshaft.train.fields import NUMBER_OR_TEXT
 from quillshaft.train.machine_rows import MACHINE_ROWS
 from quillshaft.train.overlay import KEYED_TABLES
-from quillshaft.train.validate import GEAR_ROWS, PLAIN, ROWS
+from quillshaft.train.validate import AMPLITUDE, GEAR_ROWS, PLAIN, ROWS
 
 Schema = dict[str, Any]
 
@@ -30,6 +30,8 @@ def _keyed(table: str) -> Schema:
         "dampers": [*DAMPER_ROWS.values()],
     }
     row = {"anyOf": [_reference(item) for item in kinds[table]]} if table in kinds else _reference(ROWS[table])
+    if table == "amplitudes":
+        row = {"anyOf": [{"type": "string", "description": AMPLITUDE}, row]}
     return {"type": "object", "additionalProperties": row}
 
 

@@ -7,6 +7,7 @@ from itertools import pairwise
 from typing import Any, Literal
 
 from quillshaft.train.assumptions import DEFAULT_TOLERANCE, ICE_K, Assumptions, damping, provenance
+from quillshaft.train.duty_resolve import shaft_strength
 from quillshaft.train.materials import BUILT_IN
 from quillshaft.train.model import EquivalentLength, Keyway, Material, Piece, Shaft, Throw
 from quillshaft.train.validate import Rows
@@ -28,7 +29,15 @@ def materials(rows: Rows) -> dict[str, Material]:
 def _material(name: str, row: Any) -> Material:
     points = row.shear_modulus
     table = points if len(points) > 1 else ()
-    return Material(name, points[0][1], row.density, row.tensile, modulus_points=table)
+    return Material(
+        name,
+        points[0][1],
+        row.density,
+        row.tensile,
+        modulus_points=table,
+        yield_pa=row.yield_,
+        endurance_pa=row.endurance,
+    )
 
 
 def at_temperature(material: Material, kelvin: float) -> Material:
@@ -78,6 +87,7 @@ def _shaft(name: str, row: Any, known: dict[str, Material], rows: Rows, said: As
         shoulder=_shoulder(row, pieces, element, said),
         cuts=(row.cuts or FIRST_CUTS) if own_inertia == "distributed" else 0,
         cuts_given=row.cuts is not None,
+        strength=shaft_strength(row),
     )
 
 
@@ -85,7 +95,7 @@ def _shaft_material(
     row: Any, known: dict[str, Material], rows: Rows, element: str, said: Assumptions
 ) -> Material | None:
     if row.pieces is None and row.equivalent is None and row.throw is None:
-        return None
+        return None if row.material is None else known[row.material]
     material = known[row.material or "steel"]
     _say_material(material, row.material is None, material.name in rows.keyed["materials"], element, said)
     if material.modulus_points and row.temperature is None:
@@ -157,6 +167,9 @@ def _piece(row: Any, hub_rule: float, material: Material | None) -> Piece:
         (row.spline.share or 0.0) if row.spline else 0.0,
         row.flange is not None,
         factor,
+        row.cross_hole,
+        row.stress_factor,
+        row.surface,
     )
 
 

@@ -4,6 +4,8 @@ from typing import Annotated, Literal, Self
 
 from pydantic import Field, StrictInt, model_validator
 
+from quillshaft.train.duty_model import Surface
+from quillshaft.train.duty_rows import ShaftLimitKeys, StressFactor, check_hole, check_limits
 from quillshaft.train.fields import (
     Bores,
     Count,
@@ -79,6 +81,9 @@ class PieceRow(Row):
     hub: HubLengths | None = None
     hub_rule: Share | None = None
     fillet: Length | None = None
+    cross_hole: Length | None = None
+    stress_factor: StressFactor | None = None
+    surface: Surface | None = None
     temperature: Temperature | None = None
 
     @property
@@ -104,7 +109,16 @@ class PieceRow(Row):
             raise complain("must be above zero, unless the piece is all in a hub", None, "length")
         if self.keyway is not None:
             self._groove(self.keyway)
+        self._raisers()
         return self
+
+    def _raisers(self) -> None:
+        for key in ("cross-hole", "stress-factor", "surface"):
+            if self.flange is not None and getattr(self, key.replace("-", "_")) is not None:
+                raise complain("a flange is taken as rigid, no stress is judged in it", "a piece that twists", key)
+        if self.cross_hole is not None and self.section is not None:
+            raise complain("a radial hole needs a round piece", "od or spline; or stress-factor", "cross-hole")
+        check_hole(self.cross_hole, min(self.outer))
 
     def _groove(self, keyway: KeywayRow) -> None:
         if self.od is None or self.od[0] != self.od[1]:
@@ -162,7 +176,7 @@ class EquivalentRow(Row):
     diameter: Length
 
 
-class ShaftRow(SpringRow):
+class ShaftRow(ShaftLimitKeys, SpringRow):
     """[shafts]: stiffness | flexibility | equivalent | pieces | throw."""
 
     stiffness: Stiffness | None = None
@@ -195,6 +209,7 @@ class ShaftRow(SpringRow):
             raise complain("a stiffness as given holds at its own temperature", "no temperature", "temperature")
         if self.pieces is not None:
             self._pieces(self.pieces)
+        check_limits(self)
         return self
 
     def _pieces(self, pieces: list[PieceRow]) -> None:

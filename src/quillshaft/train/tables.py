@@ -4,6 +4,7 @@ from typing import Annotated, Literal, Self
 
 from pydantic import Field, model_validator
 
+from quillshaft.train.duty_rows import DutyTable, StrengthTable
 from quillshaft.train.fields import (
     Date,
     Line,
@@ -13,10 +14,13 @@ from quillshaft.train.fields import (
     Share,
     SignedSpeed,
     Speed,
+    SpeedRate,
     Text,
     complain,
 )
 from quillshaft.train.rows import Row
+
+WORST_TACHOMETER = 0.2
 
 
 class TrainTable(Row):
@@ -39,6 +43,9 @@ class OperationTable(Row):
     barred_because: Text | None = None
     speed_band: Share | None = None
     supply_band: Share | None = None
+    tachometer: Share | None = None
+    ramp: SpeedRate | None = None
+    light_load: Share | None = None
     speeds: Annotated[dict[Name, SignedSpeed], Field(default_factory=dict)]
 
     @model_validator(mode="after")
@@ -54,6 +61,11 @@ class OperationTable(Row):
         for band, key in ((self.speed_band, "speed-band"), (self.supply_band, "supply-band")):
             if band is not None and band >= 0.5:
                 raise complain(f"{band:.0%} is no band about a speed", "a share well below 50 %", key)
+        if self.tachometer is not None and self.tachometer >= WORST_TACHOMETER:
+            allowed = f"0 % up to below {WORST_TACHOMETER:.0%}, such as 2 %"
+            raise complain("is no error that a tachometer may have", allowed, "tachometer")
+        if self.light_load is not None and not 0 < self.light_load < 1:
+            raise complain("is no light load", "above 0 % and below 100 % of full load", "light-load")
         return self
 
 
@@ -64,6 +76,7 @@ class AssumptionsTable(Row):
     own_inertia: Literal["ends", "none", "distributed"] | None = None
     hub_rule: Share | None = None
     zeta: Annotated[list[Share], Field(min_length=2, max_length=2)] | None = None
+    amplitudes: Literal["none", "ordinary"] | None = None
 
     @model_validator(mode="after")
     def _rising(self) -> Self:
@@ -73,11 +86,13 @@ class AssumptionsTable(Row):
 
 
 class CriteriaTable(Row):
-    """[criteria]: required separation, one share or a share per kind of source."""
+    """[criteria]: required separation, one share or a share per kind of source; strength and duty."""
 
     separation: SeparationField | None = None
     worst_case_separation: SeparationField | None = None
     margin_on: Literal["excitation", "natural"] | None = None
+    strength: StrengthTable | None = None
+    duty: DutyTable | None = None
 
 
 class RevisionRow(Row):

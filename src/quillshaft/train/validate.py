@@ -11,6 +11,7 @@ from quillshaft.records import dataclass
 from quillshaft.train.coupling_rows import FluidCouplingRow
 from quillshaft.train.damper_rows import DAMPER_ROWS
 from quillshaft.train.document import Document, line_of
+from quillshaft.train.duty_rows import AmplitudeRow
 from quillshaft.train.gear_rows import BeltRow, BevelRow, JointRow
 from quillshaft.train.machine_rows import MACHINE_ROWS
 from quillshaft.train.messages import refusal
@@ -39,6 +40,7 @@ ROWS: dict[str, type[BaseModel]] = {
     "materials": MaterialRow,
     "belts": BeltRow,
     "joints": JointRow,
+    "amplitudes": AmplitudeRow,
 }
 PLAIN: dict[str, type[BaseModel]] = {
     "train": TrainTable,
@@ -50,6 +52,7 @@ PLAIN: dict[str, type[BaseModel]] = {
 GEAR_ROWS: dict[str, type[BaseModel]] = {"mesh": GearRow, "epicyclic": EpicyclicRow, "bevel": BevelRow}
 TOP_LEVEL = sorted(PLAIN_TABLES | KEYED_TABLES | {"schema", "cases"})
 MOST_PROBLEMS = 200
+AMPLITUDE = '"1.5 %" of mean torque, "40 N m", or { torque = "1.5 %", source = "…" }'
 
 
 @dataclass
@@ -68,9 +71,18 @@ class Findings:
                 self.problems.append(Problem(self.document.name, None, (), None, more, None))
             return
         where = written_at(self.document, self.cases, path)
+        if path[0] == "amplitudes" and path[-1] == "torque" and not _holds(self.document.data, where):
+            where = where[:-1]
         text = None if seen is None else _shown(seen)
         line = line_of(self.document, where)
         self.problems.append(Problem(self.document.name, line, where, text, message, allowed))
+
+
+def _holds(data: Any, path: PathParts) -> bool:
+    """Whether the file itself has the last key of a path in a table: a row written as one text does not."""
+    for part in path[:-1]:
+        data = data.get(part) if isinstance(data, dict) else None
+    return isinstance(data, dict)
 
 
 @dataclass(frozen=True)
@@ -133,7 +145,8 @@ def _keyed_table(table: str, data: Any, system: str, findings: Findings) -> tupl
         return rows, notes
     for name, row in data.items():
         if not isinstance(row, dict):
-            findings.add((table, name), "is not a row of keys and values", row, "{ key = value, … }")
+            allowed = AMPLITUDE if table == "amplitudes" else "{ key = value, … }"
+            findings.add((table, name), "is not a row of keys and values", row, allowed)
             continue
         if reason := _bad_name(name):
             findings.add((table, name), reason, None, "1 to 80 characters that print")

@@ -6,6 +6,7 @@ from collections.abc import Iterator
 from typing import Any
 
 from quillshaft.elements.electrical import tie_stiffness
+from quillshaft.present.duty_words import damper_limit_words, limit_words
 from quillshaft.present.electrical_words import electrical_words, synchronizing_words
 from quillshaft.present.gear_words import belt_text, gear_text, joint_text
 from quillshaft.present.pdf.document import data_table, heading, note, paragraph
@@ -104,13 +105,15 @@ def _elements(train: Train, units: Any) -> Iterator[Row]:
         text += viscous_words(station, units)
         yield _row(train, f"stations.{station.name}", text, station.tolerance, station.provenance)
     for shaft in train.shafts:
-        text = shaft_words(shaft, units) + viscous_words(shaft, units)
+        text = shaft_words(shaft, units) + viscous_words(shaft, units) + limit_words(shaft, units)
         yield _row(train, f"shafts.{shaft.name}", text, shaft.tolerance, shaft.provenance)
     for coupling in train.couplings:
         text = f"{coupling.kind or 'coupling'}, {_coupling_stiffness(coupling, units)}"
         if coupling.rated_torque_nm is not None:
             text += f", rated {number(coupling.rated_torque_nm * units.per_nm)} {units.torque}"
         text += viscous_words(coupling, units) + ratings_text(coupling.ratings, units)
+        if coupling.ambient_k is not None:
+            text += f", in air of {coupling.ambient_k - 273.15:.4g} °C"
         if coupling.shaft_in_hub is not None:
             text += f", shaft ends in hubs {coupling.shaft_in_hub}"
         yield _row(train, f"couplings.{coupling.name}", text, coupling.tolerance, coupling.provenance)
@@ -129,7 +132,7 @@ def _elements(train: Train, units: Any) -> Iterator[Row]:
     for fluid in train.fluid_couplings:
         yield _row(train, f"couplings.{fluid.name}", fluid_text(fluid, units), (0.0, 0.0), fluid.provenance)
     for damper in train.dampers:
-        text = damper_text(damper, units)
+        text = damper_text(damper, units) + damper_limit_words(damper, units)
         yield _row(train, f"dampers.{damper.name}", text, damper.tolerance, damper.provenance)
 
 

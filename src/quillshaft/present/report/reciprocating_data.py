@@ -31,6 +31,8 @@ def reciprocating_words(machine: Machine, units: ShownUnits) -> list[str]:
     if dead:
         words.append(f"cylinder {', '.join(dead)} dead" if len(dead) == 1 else f"cylinders {', '.join(dead)} dead")
     words += _geometry(machine, units)
+    if machine.magnifier is not None:
+        words.append(f"magnifier {number(machine.magnifier)} of each cylinder")
     if machine.gas is not None:
         words.append(_gas_words(machine.gas, units))
     if machine.kind == "reciprocating-compressor":

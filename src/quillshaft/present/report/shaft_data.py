@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import Any
 
 from quillshaft.elements.crank import throw_stiffness
+from quillshaft.present.duty_words import raiser_words
 from quillshaft.present.units import ShownUnits
 from quillshaft.present.words import number
 from quillshaft.train.model import Piece, RunningGear, Shaft, Throw, Train
@@ -60,7 +61,7 @@ def _piece(piece: Piece, units: ShownUnits) -> str:
             text += f" over {piece.keyway.length_m * units.per_m:.4g}"
     if piece.modulus_factor != 1.0:
         text += f", modulus × {piece.modulus_factor:.4g}"
-    return text
+    return text + raiser_words(piece, units)
 
 
 def _kind(piece: Piece, outer: str, units: ShownUnits) -> str:
