@@ -13,6 +13,8 @@ from typing import TYPE_CHECKING
 from quillshaft.version import __version__
 
 if TYPE_CHECKING:
+    from quillshaft.assess.response.respond import respond
+    from quillshaft.assess.response_results import Response
     from quillshaft.assess.results import Interference, ModeResult, Screening
     from quillshaft.assess.screening import screen, screen_temperatures
     from quillshaft.graph.build import build_graph
@@ -27,6 +29,7 @@ __all__ = [
     "Interference",
     "ModeResult",
     "Problem",
+    "Response",
     "Screening",
     "TorsionalGraph",
     "Train",
@@ -35,6 +38,7 @@ __all__ = [
     "build_graph",
     "load",
     "report_pdf",
+    "respond",
     "screen",
     "screen_temperatures",
     "screening_json",
@@ -44,6 +48,7 @@ _HOME = {
     "Interference": "assess.results",
     "ModeResult": "assess.results",
     "Problem": "train.problems",
+    "Response": "assess.response_results",
     "Screening": "assess.results",
     "TorsionalGraph": "graph.torsional",
     "Train": "train.model",
@@ -51,6 +56,7 @@ _HOME = {
     "build_graph": "graph.build",
     "load": "train.read",
     "report_pdf": "present.report",
+    "respond": "assess.response.respond",
     "screen": "assess.screening",
     "screen_temperatures": "assess.screening",
     "screening_json": "present.results_json",

@@ -1,0 +1,1 @@
+"""Steady forced response: what every source does to every link over the speeds, and what that means."""

@@ -1,0 +1,300 @@
+"""Every check of every element: its largest value over the judged cases against its limit."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Iterator
+from dataclasses import replace
+from typing import Literal
+
+import numpy as np
+
+from quillshaft.assess.response.mean import MeanTorques
+from quillshaft.assess.response_results import CaseResponse, Finding, FindingVerdict, LimitCurve
+from quillshaft.elements.coupling_duty import frequency_factor, weighs_by_frequency
+from quillshaft.graph.network import Bools, Floats
+from quillshaft.graph.torsional import TorsionalGraph
+from quillshaft.records import dataclass
+from quillshaft.train.model import Coupling, Machine, Train
+
+RPM = 30.0 / math.pi
+ICE_K = 273.15
+RECALLED = "recalled, confirm against your edition"
+Zone = Literal["continuous", "passing"]
+
+
+@dataclass(frozen=True)
+class Ground:
+    """What findings rest on: the train, its graph, all cases and speeds, and which of those are run at for good."""
+
+    train: Train
+    graph: TorsionalGraph
+    cases: tuple[CaseResponse, ...]
+    speed_rad_s: Floats
+    continuous: Bools
+    limits: tuple[LimitCurve, ...]
+    mean: MeanTorques
+
+    @property
+    def judged(self) -> list[CaseResponse]:
+        """Cases that count for the verdict."""
+        return [case for case in self.cases if case.judged]
+
+    def zone(self, zone: Zone) -> Bools:
+        """(S,) True at the speeds of a zone."""
+        return self.continuous if zone == "continuous" else np.asarray(~self.continuous)
+
+
+def worst(
+    ground: Ground,
+    element: str,
+    check: str,
+    unit: str,
+    basis: str,
+    values: Callable[[CaseResponse], Floats],
+    limit: Floats | float | None,
+    zone: Zone = "continuous",
+) -> Iterator[Finding]:
+    """The case and speed at which a value is largest, against its limit where there is one; none where unknown.
+
+    Cases with a dead cylinder have a finding of their own, where they ask for more than the others.
+    """
+    what = (ground, element, check, unit, basis, values, limit, zone)
+    working = _largest([case for case in ground.judged if case.kind != "dead cylinder"], *what)
+    dead = _largest([case for case in ground.judged if case.kind == "dead cylinder"], *what)
+    if working is not None:
+        yield working
+    if dead is not None and (working is None or _size(dead) > _size(working) * 1.01):
+        yield dead
+
+
+def _size(finding: Finding) -> float:
+    return finding.value if finding.use is None else finding.use
+
+
+def _largest(
+    cases: list[CaseResponse],
+    ground: Ground,
+    element: str,
+    check: str,
+    unit: str,
+    basis: str,
+    values: Callable[[CaseResponse], Floats],
+    limit: Floats | float | None,
+    zone: Zone,
+) -> Finding | None:
+    where, best = ground.zone(zone), -1.0
+    found: Finding | None = None
+    for case in cases if where.any() else ():
+        own = values(case)
+        bound = np.full(own.shape, np.nan) if limit is None else np.broadcast_to(np.asarray(limit, float), own.shape)
+        with np.errstate(all="ignore"):
+            used = own if limit is None else share_of(own, bound)
+        used = np.where(where & np.isfinite(own) & ~np.isnan(used), used, -1.0)
+        at = int(np.argmax(used))
+        if used[at] <= best:
+            continue
+        best, allowed = float(used[at]), None if limit is None else float(bound[at])
+        verdict: FindingVerdict = "no limit given" if limit is None else "pass" if best <= 1.0 + 1e-9 else "fail"
+        speed = float(ground.speed_rad_s[at]) * RPM
+        found = Finding(
+            element, check, float(own[at]), allowed, unit, speed, case.name, zone, verdict, basis, case.kind
+        )
+    return found
+
+
+def judged_torque(case: CaseResponse, place: int) -> Floats:
+    """(S,) alternating torque of a link as its limit counts it: weighed by frequency in a rubber coupling."""
+    weighted = case.weighted_torque_nm[place]
+    return np.asarray(np.where(np.isfinite(weighted), weighted, case.alternating_torque_nm[place]))
+
+
+def share_of(value: Floats, limit: Floats) -> Floats:
+    """(S,) value over limit: infinite where the limit is 0 and the value is not, nan where there is no limit."""
+    with np.errstate(all="ignore"):
+        used = np.where(limit > 0, value / limit, np.where(value > 0, np.inf, 0.0))
+    return np.where(np.isnan(limit), np.nan, used)
+
+
+def damper_faults(ground: Ground) -> tuple[Finding, ...]:
+    """Limits exceeded in continuous running with a damper at fault, the worst of each element."""
+    faulty = tuple(replace(case, judged=True) for case in ground.cases if case.kind == "damper")
+    if not faulty:
+        return ()
+    found = [item for item in all_findings(replace(ground, cases=faulty)) if item.verdict == "fail"]
+    return tuple(item for item in found if item.zone == "continuous")
+
+
+def all_findings(ground: Ground) -> tuple[Finding, ...]:
+    """Every check, in the order of the links, then dampers and machines."""
+    rows: list[Finding] = []
+    train, places = ground.train, {link.name: number for number, link in enumerate(ground.graph.links)}
+    curves = {curve.link: curve for curve in ground.limits}
+    for shaft in train.shafts:
+        rows += _alternating(ground, places[shaft.name], curves[shaft.name])
+    for coupling in train.couplings:
+        rows += _coupling(ground, places[coupling.name], coupling)
+    for gear in train.gears:
+        rows += _gear(ground, places[gear.name], curves[gear.name], gear.name)
+    rows += _dampers(ground, places)
+    for machine in train.machines:
+        if machine.kind == "generator" and machine.at is not None:
+            rows += _generator(ground, machine)
+    return tuple(rows)
+
+
+def _alternating(ground: Ground, place: int, curve: LimitCurve) -> Iterator[Finding]:
+    """Alternating stress where the section is known, else torque, continuous and in passing."""
+    scale = curve.mpa_per_nm
+    check, unit = ("alternating stress", "MPa") if scale is not None else ("alternating torque", "N·m")
+    factor = 1.0 if scale is None else scale
+
+    def values(case: CaseResponse) -> Floats:
+        return np.asarray(case.alternating_torque_nm[place] * factor)
+
+    zones: tuple[tuple[Zone, Floats | None], ...] = (
+        ("continuous", curve.continuous_nm),
+        ("passing", curve.passing_nm),
+    )
+    most = 0.0
+    for zone, limit in zones:
+        if zone == "continuous" or limit is not None:
+            bound = None if limit is None else limit * factor
+            found = list(worst(ground, curve.link, check, unit, curve.basis, values, bound, zone))
+            yield from (item for item in found if zone == "continuous" or _size(item) > most)
+            most = max([most, *(_size(item) for item in found)])
+
+
+def _coupling(ground: Ground, place: int, coupling: Coupling) -> Iterator[Finding]:
+    name, ratings = coupling.name, coupling.ratings
+    rated = coupling.rated_torque_nm
+    given = "the maker's rating"
+    missing = "its maker's rating is not given"
+    if ground.mean.known:
+        yield from worst(
+            ground,
+            name,
+            "mean torque",
+            "N·m",
+            f"rated torque, {given if rated else missing}",
+            lambda case: np.abs(case.mean_torque_nm[place]),
+            rated,
+        )
+    peak = None if ratings is None else ratings.peak_nm
+    for zone in ("continuous", "passing"):
+        if zone == "continuous" or peak is not None:
+            basis = f"peak torque, {given if peak else missing}"
+            yield from worst(
+                ground, name, "peak torque", "N·m", basis, lambda case: case.peak_torque_nm[place], peak, zone
+            )
+    vibratory = None if ratings is None or ratings.vibratory_nm is None else ratings.vibratory_nm
+    reference = 10.0 if ratings is None else ratings.reference_hz or 10.0
+    weighs = weighs_by_frequency(coupling.kind)
+    limit = None if vibratory is None else vibratory * (frequency_factor(reference) if weighs else 1.0)
+    how = f" weighed by √(f / 10 Hz) above 10 Hz (DIN 740-2, {RECALLED})" if weighs else ""
+    basis = f"vibratory torque{how}, {given if vibratory else missing}"
+    yield from worst(ground, name, "vibratory torque", "N·m", basis, lambda case: judged_torque(case, place), limit)
+    heat = None if ratings is None else ratings.permitted_heat_w
+    basis = f"heat, {given if heat else missing}"
+    yield from worst(ground, name, "heat", "W", basis, lambda case: case.heat_w[place], heat)
+    yield from _temperature(ground, coupling)
+
+
+def _temperature(ground: Ground, coupling: Coupling) -> Iterator[Finding]:
+    """Temperature reached by its own heat, against the last of its table; running away fails."""
+    hot = [case for case in ground.judged if coupling.name in case.temperature_k]
+    if not hot:
+        return
+    top = coupling.temperature_points[-1][0] - ICE_K
+    none = np.full(len(ground.speed_rad_s), np.nan)
+
+    def reached(case: CaseResponse) -> Floats:
+        return np.asarray(case.temperature_k.get(coupling.name, none) - ICE_K)
+
+    basis = "settled by its own heat; the limit is the last temperature of its table"
+    for item in worst(ground, coupling.name, "temperature", "degC", basis, reached, top):
+        case = next(case for case in hot if case.name == item.case)
+        if bool((case.runaway[coupling.name] & ground.continuous).any()):
+            words = "it runs away: stiffness, heat and temperature do not settle; the value is where that was stopped"
+            yield replace(item, verdict="fail", basis=words)
+        else:
+            yield item
+
+
+def _gear(ground: Ground, place: int, curve: LimitCurve, name: str) -> Iterator[Finding]:
+    duty, mean = ground.train.duty, ground.mean.link_nm[place]
+
+    def vibratory(case: CaseResponse) -> Floats:
+        return np.asarray(case.alternating_torque_nm[place])
+
+    gear = next(item for item in ground.train.gears if item.name == name)
+    rated = gear.rated_torque_nm or (abs(float(mean)) if np.isfinite(mean) and mean else None)
+    share = None if rated is None else duty.gear_share * rated
+    basis = curve.basis.split("; no tooth")[0]
+    yield from worst(ground, name, "vibratory torque", "N·m", basis, vibratory, share)
+    if duty.gear_reversal == "allowed" or not ground.mean.known or not np.isfinite(mean):
+        return
+
+    def ratio(case: CaseResponse) -> Floats:
+        with np.errstate(all="ignore"):
+            return np.asarray(case.alternating_torque_nm[place] / np.abs(case.mean_torque_nm[place]))
+
+    text = "alternating over mean torque: above 1 the teeth separate (no reversal in continuous running, class rules)"
+    yield from worst(ground, name, "tooth separation", "", f"{text}, {duty.edition or RECALLED}", ratio, 1.0)
+
+
+def _dampers(ground: Ground, places: dict[str, int]) -> Iterator[Finding]:
+    for damper in ground.train.dampers:
+        if damper.state in {"lost", "seized"}:
+            continue
+        none = np.full(len(ground.speed_rad_s), np.nan)
+        name = damper.name
+
+        def heat(case: CaseResponse, name: str = name, none: Floats = none) -> Floats:
+            if name in case.damper_w:
+                return case.damper_w[name]
+            own = places.get(name)
+            return none if own is None else np.asarray(case.heat_w[own])
+
+        def torque(case: CaseResponse, name: str = name, none: Floats = none) -> Floats:
+            if name in case.damper_nm:
+                return case.damper_nm[name]
+            own = places.get(name)
+            return none if own is None else np.asarray(case.alternating_torque_nm[own])
+
+        words = "the maker's value" if damper.permitted_heat_w else "its maker's value is not given"
+        yield from worst(ground, name, "damper heat", "W", f"heat, {words}", heat, damper.permitted_heat_w)
+        if damper.permitted_torque_nm is not None:
+            basis = "torque through the damper, the maker's value"
+            yield from worst(ground, name, "damper torque", "N·m", basis, torque, damper.permitted_torque_nm)
+
+
+def _generator(ground: Ground, machine: Machine) -> Iterator[Finding]:
+    """Inertia torque, electrical angle and speed irregularity."""
+    duty, station = ground.train.duty, ground.graph.number(machine.at or "")
+    edition = duty.edition or RECALLED
+    rated = machine.electrical.rated_torque_nm or ground.mean.at_station(ground.graph, station)
+    limit = None if rated is None else duty.inertia_torque * rated
+    words = f"inertia torque within ±{duty.inertia_torque:g} × rated (class rules, {edition})"
+    yield from worst(
+        ground, machine.name, "inertia torque", "N·m", words, lambda case: case.inertia_torque_nm[station], limit
+    )
+    pairs = (machine.poles or 2) / 2.0
+    yield from worst(
+        ground,
+        machine.name,
+        "electrical angle",
+        "deg",
+        f"amplitude of the rotor's angle times {pairs:g} pole pairs (class rules, {edition})",
+        lambda case: pairs * case.angle_deg[station],
+        math.degrees(duty.electrical_rad),
+    )
+    yield from worst(
+        ground,
+        machine.name,
+        "speed irregularity",
+        "",
+        "peak-to-peak speed over mean speed" + ("" if duty.irregularity else ": no limit is stated"),
+        lambda case: case.irregularity[station],
+        duty.irregularity,
+    )
