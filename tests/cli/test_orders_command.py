@@ -16,13 +16,8 @@ from quillshaft.present.charts.stars import star_diagrams
 from quillshaft.train.read import load
 
 EXAMPLE = Path(__file__).parents[2] / "examples" / "dairy-generator.toml"
-PARTS = """[machines.engine]
-bore = "170 mm"
-stroke = "190 mm"
-rod = "350 mm"
-reciprocating-mass = "9.4 kg"
-gas = { cycle = { compression-ratio = 15.5, imep = "17 bar", peak = "155 bar" } }
-"""
+GAS = ("bore", "stroke ", "rod", "reciprocating-mass", "gas")
+"""Keys of the engine without which its torques are not known."""
 CASES = """
 [cases.dead-3]
 because = "one injector fails"
@@ -33,7 +28,17 @@ machines.engine.dead-cylinders = [3]
 @pytest.fixture
 def engine(tmp_path):
     path = tmp_path / "engine.toml"
-    path.write_text(EXAMPLE.read_text("utf-8").replace("[machines.engine]\n", PARTS) + CASES, "utf-8")
+    path.write_text(EXAMPLE.read_text("utf-8") + CASES, "utf-8")
+    return path
+
+
+@pytest.fixture
+def without_gas(tmp_path):
+    lines = EXAMPLE.read_text("utf-8").splitlines()
+    start = lines.index("[machines.engine]")
+    kept = [line for number, line in enumerate(lines) if number < start or not line.startswith(GAS)]
+    path = tmp_path / "without-gas.toml"
+    path.write_text("\n".join(kept) + "\n", "utf-8")
     return path
 
 
@@ -56,8 +61,8 @@ def test_orders_as_json_are_those_of_the_study(engine):
     assert [item["dead_centre_deg"] for item in result["cylinders"]] == pytest.approx([0, 480, 240, 600, 120, 360])
 
 
-def test_an_engine_without_gas_says_that_torques_are_not_known():
-    done = command("orders", EXAMPLE)
+def test_an_engine_without_gas_says_that_torques_are_not_known(without_gas):
+    done = command("orders", without_gas)
     assert "torques are not known" in done.out
     assert "N·m" not in done.out
 
@@ -75,7 +80,7 @@ def test_star_diagrams_are_written_and_say_which_orders_add_up(engine, tmp_path)
     done = command("orders", engine, "--case", "dead-3", "--charts", tmp_path / "charts")
     assert done.code == 0
     text = PdfReader(tmp_path / "charts" / "orders-engine.pdf").pages[0].extract_text()
-    assert "add up in orders 3, 6, 9 and 12 (5 of 6 act)" in " ".join(text.split())
+    assert "3, 6, 9 and 12 (5 of 6 act)" in " ".join(text.split())
     assert "Rigid crank" in text
     assert "sum 1.00 of 5" in text
 
@@ -112,8 +117,8 @@ def test_the_report_holds_the_orders_and_the_data_of_the_engine(engine, tmp_path
     text = " ".join(" ".join(page.extract_text() for page in PdfReader(out).pages).split())
     assert "Orders of engine at 1500 rpm" in text
     assert "Major orders: 3, 6, 9, 12" in text
-    assert "compression ratio 15.5" in text
-    assert "reciprocating mass 9.4 kg a cylinder" in text
+    assert "compression ratio 15" in text
+    assert "reciprocating mass 11.2 kg a cylinder" in text
     assert "bore 170 mm" in text
 
 

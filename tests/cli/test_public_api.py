@@ -88,7 +88,7 @@ def _silent(path: Path) -> list[str]:
     return found
 
 
-COMMANDS = {"cli/main.py:main", "cli/main.py:screen", "cli/main.py:report", "cli/main.py:run"}
+COMMANDS = {f"cli/main.py:{name}" for name in ("main", "screen", "report", "run")} | {"cli/respond_command.py:respond"}
 """Commands end with an exit code: their docstring is the text of --help."""
 
 

@@ -88,7 +88,7 @@ def test_no_label_of_the_map_overlaps_another_or_leaves_the_figure(second):
     [
         ("pump, one range", "With rubber-blocks at 0.1182 to 0.1406"),
         ("pump, three ranges", "1.528 to 2.253, 19.52 to 22.89 and 28.21 to 420"),
-        ("generator, hopeless", "No stiffness of ring clears engine order-7 (mode 2) and engine order-7.5 (mode 2)"),
+        ("generator, hopeless", "No stiffness of ring clears engine order-6 (mode 2) and engine order-6.5 (mode 2)"),
         ("generator, major orders", "(minor engine orders left out)"),
     ],
 )

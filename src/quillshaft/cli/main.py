@@ -17,6 +17,7 @@ from quillshaft.cli.damper_command import damper
 from quillshaft.cli.drift_command import drift
 from quillshaft.cli.orders_command import orders
 from quillshaft.cli.output import check_folder, check_target, console, refuse, write_many, write_whole
+from quillshaft.cli.respond_command import respond
 from quillshaft.cli.tolerance_command import tolerance
 from quillshaft.cli.windows_command import windows
 
@@ -207,6 +208,7 @@ def report(
     questions: Annotated[bool, typer.Option(help="Add the questions to each supplier.")] = False,
     damped: Annotated[bool, typer.Option(help="Add the damped modes.")] = False,
     orders: Annotated[bool, typer.Option(help="Add the orders of engines and reciprocating compressors.")] = False,
+    response: Annotated[bool, typer.Option(help="Add the forced response; the verdict is then what it makes.")] = False,
     strict: Annotated[bool, typer.Option(help="Exit with 3 when the worst case is not clear.")] = False,
 ) -> None:
     """Write the report as PDF, with the studies asked for."""
@@ -221,9 +223,10 @@ def report(
     screening = screened(train, case)
     target = out or report_path(screening)
     check_target(target, train)
-    chosen = (temperatures, levers, questions, damped, orders)
+    chosen = (temperatures, levers, questions, damped, orders, response)
     asked = Asked(tuple(windows or ()), tuple(compare or ()), tolerance, seed, drift, *chosen)
-    write_whole(target, report_bytes(screening, work_out(screening, asked)))
+    studies = work_out(screening, asked)
+    write_whole(target, report_bytes(screening, studies))
     if json is not None:
         put_json(screening, json)
     from quillshaft.present.words import case_lines, verdict_sentence
@@ -233,8 +236,13 @@ def report(
     said.print(f"Over the tolerances: {verdict_sentence(screening, worst=True)}")
     for line in case_lines(screening):
         said.print(line)
+    open_still = screening.worst_verdict != "clear"
+    if studies is not None and studies.response is not None:
+        from quillshaft.cli.show_response import say_answer
+
+        open_still = not say_answer(studies.response, said)
     said.print(f"Wrote {target}")
-    if strict and screening.worst_verdict != "clear":
+    if strict and open_still:
         raise typer.Exit(3)
 
 
@@ -245,6 +253,7 @@ app.command()(drift)
 app.command()(damper)
 app.command()(damped)
 app.command()(orders)
+app.command()(respond)
 
 
 def run() -> None:

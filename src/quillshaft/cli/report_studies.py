@@ -26,6 +26,7 @@ class Asked:
     questions: bool = False
     damped: bool = False
     orders: bool = False
+    response: bool = False
 
     @property
     def nothing(self) -> bool:
@@ -51,6 +52,7 @@ def work_out(screening: Screening, asked: Asked) -> Studies | None:
 def _studies(screening: Screening, asked: Asked) -> Studies:
     from quillshaft.cli.damped_command import damped_of
     from quillshaft.cli.more_output import find_levers
+    from quillshaft.cli.respond_command import response_of
     from quillshaft.cli.study_output import progress_bar
     from quillshaft.study.compare import compare_cases
     from quillshaft.study.drift import drift
@@ -79,6 +81,7 @@ def _studies(screening: Screening, asked: Asked) -> Studies:
         questions=asked.questions,
         damped=damped_of(screening) if asked.damped else None,
         orders=_orders(screening) if asked.orders else (),
+        response=response_of(screening) if asked.response else None,
     )
 
 

@@ -23,22 +23,24 @@ def report_pdf(screening: Screening, studies: Studies | None = None) -> bytes:
     from quillshaft.present.report.studies import study_parts
 
     sign = screening.train.sign_off
+    response = None if studies is None else studies.response
     frame = PageFrame(
         document=sign.document or screening.train.tag or "",
         revision=sign.revision or "",
         status=sign.status,
-        title=report_title(screening),
+        title=report_title(screening, response),
         date=sign.date or "",
         caution=(
-            "Screening of torsional vibration only; no approval by any class society or purchaser. "
+            f"{'Screening of torsional vibration' if response is None else 'Steady torsional vibration'} only; "
+            "no approval by any class society or purchaser. "
             "Valid only for the parts, data and limits listed. Local codes and site rules come first."
         ),
         author=sign.prepared or "",
     )
     story = [
-        *front_parts(screening),
+        *front_parts(screening, response),
         *data_parts(screening),
-        *finding_parts(screening),
+        *finding_parts(screening, response),
         *(study_parts(screening, studies) if studies is not None else ()),
         *closing_parts(screening),
     ]

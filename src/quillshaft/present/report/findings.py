@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from typing import Any
 
+from quillshaft.assess.response_results import Response
 from quillshaft.assess.results import Interference, ModeResult, Screening
 from quillshaft.present.listed_modes import listed_modes, unlisted_sentence
 from quillshaft.present.pdf.document import (
@@ -16,6 +17,7 @@ from quillshaft.present.pdf.document import (
     paragraph,
 )
 from quillshaft.present.pdf.style import FIGURE_HEIGHT_LIMIT_PT
+from quillshaft.present.response_words import closed_sentences, closing_words
 from quillshaft.present.rows import pair_row, source_rows
 from quillshaft.present.viscous_words import viscous_rows
 from quillshaft.present.words import attention_sentences, hertz, mode_words, plain
@@ -26,12 +28,12 @@ MOST_SHAPES = 8
 HIGHEST_FIGURE_IN = FIGURE_HEIGHT_LIMIT_PT / 72.0
 
 
-def finding_parts(screening: Screening) -> list[Any]:
-    """Modes, interferences, excitations and damping as blocks of a report."""
+def finding_parts(screening: Screening, response: Response | None = None) -> list[Any]:
+    """Modes, interferences, excitations and damping as blocks of a report; a response says what became of each."""
     return [
         *_modes(screening),
         *_shapes(screening),
-        *_interferences(screening),
+        *_interferences(screening, response),
         *_excitations(screening),
         *_damping(screening),
     ]
@@ -121,7 +123,7 @@ def _shape_tables(screening: Screening, shown: tuple[int, ...]) -> list[Any]:
     ]
 
 
-def _interferences(screening: Screening) -> list[Any]:
+def _interferences(screening: Screening, response: Response | None) -> list[Any]:
     from quillshaft.present.charts import interference_diagram
 
     criteria = screening.train.criteria
@@ -138,13 +140,14 @@ def _interferences(screening: Screening) -> list[Any]:
         ),
         heading("What is not clear, worst first", 2),
     ]
-    unclear = [sentence for _, sentence in attention_sentences(screening, dismissed=False)]
+    found = attention_sentences(screening, dismissed=False) if response is None else closed_sentences(response)
+    unclear = [sentence for _, sentence in found]
     parts += bullets(unclear) or [paragraph("Nothing.")]
-    parts += [heading("Critical speeds", 2), *_critical(screening)]
+    parts += [heading("Critical speeds", 2), *_critical(screening, response)]
     return parts
 
 
-def _critical(screening: Screening) -> list[Any]:
+def _critical(screening: Screening, response: Response | None) -> list[Any]:
     """Where modes and sources meet between standstill and a little above the highest speed."""
     operation = screening.train.operation
     top = 1.2 * max(operation.trip_rad_s or 0.0, operation.ranges_rad_s[-1][1]) * RPM
@@ -156,6 +159,7 @@ def _critical(screening: Screening) -> list[Any]:
     ]
     if not found:
         return [paragraph(f"No mode meets a source that follows speed below {top:.0f} rpm.")]
+    found = sorted(found, key=lambda item: item[0])
     rows = [
         (
             f"{speed:.0f}",
@@ -165,11 +169,14 @@ def _critical(screening: Screening) -> list[Any]:
             "–" if pair.excitability is None else f"{pair.excitability:.3f}",
             _place(screening, speed),
         )
-        for speed, pair in sorted(found, key=lambda item: item[0])
+        for speed, pair in found
     ]
     head = ("rpm", "mode", "Hz", "source", "excitability", "where")
     text = f"All meetings up to {top:.0f} rpm, in order of speed; minor engine orders only in the judged range."
-    return [data_table(head, rows, align="rrrlrl"), note(text)]
+    if response is None:
+        return [data_table(head, rows, align="rrrlrl"), note(text)]
+    closed = [(*row, closing_words(response, pair)) for row, (_, pair) in zip(rows, found, strict=True)]
+    return [data_table((*head, "forced response"), closed, align="rrrlrll"), note(text)]
 
 
 def _counts(screening: Screening, pair: Interference) -> bool:

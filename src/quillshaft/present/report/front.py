@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from typing import Any
 
+from quillshaft.assess.response_results import Response
 from quillshaft.assess.results import Screening
 from quillshaft.present.pdf.document import (
     FigureFlowable,
@@ -17,6 +18,7 @@ from quillshaft.present.pdf.document import (
     paragraph,
     stamp,
 )
+from quillshaft.present.report.response_front import closed_verdict
 from quillshaft.present.units import SHOWN
 from quillshaft.present.words import (
     apart_words,
@@ -42,19 +44,24 @@ RPM = 30.0 / math.pi
 MOST_ON_PAGE_ONE = 4
 
 
-def report_title(screening: Screening) -> str:
+def report_title(screening: Screening, response: Response | None = None) -> str:
     """Title of the document."""
     train = screening.train
     case = f", case {' + '.join(train.cases)}" if train.cases else ""
-    return f"Torsional screening: {train.title}{case}"
+    what = "Torsional screening" if response is None else "Torsional screening and forced response"
+    return f"{what}: {train.title}{case}"
 
 
-def front_parts(screening: Screening) -> list[Any]:
-    """Page one and the train page as blocks of a report."""
-    return [*_identification(screening), *_verdict(screening), *_train(screening), *_operating_map(screening)]
+def front_parts(screening: Screening, response: Response | None = None) -> list[Any]:
+    """Page one and the train page as blocks of a report; with a response the verdict is the one it comes to."""
+    if response is None:
+        verdict = _verdict(screening)
+    else:
+        verdict = closed_verdict(response, headline(screening), [*_governing(screening), *_basis(screening)])
+    return [*_identification(screening, response), *verdict, *_train(screening), *_operating_map(screening)]
 
 
-def _identification(screening: Screening) -> list[Any]:
+def _identification(screening: Screening, response: Response | None) -> list[Any]:
     train, sign = screening.train, screening.train.sign_off
     pairs = [
         ("Train", train.title + (f" ({train.tag})" if train.tag else "")),
@@ -69,7 +76,7 @@ def _identification(screening: Screening) -> list[Any]:
         ("Input", f"{train.file.name}, SHA-256 {train.file.sha256}"),
         ("Made with", f"Quillshaft {__version__}"),
     ]
-    return [heading(report_title(screening)), key_values(pairs)]
+    return [heading(report_title(screening, response)), key_values(pairs)]
 
 
 def headline(screening: Screening) -> tuple[str, Tone]:

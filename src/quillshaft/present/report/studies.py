@@ -8,12 +8,15 @@ from typing import Any
 
 from quillshaft.assess.damped_results import DampedResult
 from quillshaft.assess.orders import OrderStudy
+from quillshaft.assess.response_results import Response
 from quillshaft.assess.results import Screening
 from quillshaft.present.lever_rows import LEVER_HEADS, lever_notes, lever_rows, ways_title
 from quillshaft.present.pdf.document import FigureFlowable, bullets, data_table, heading, note, paragraph
 from quillshaft.present.question_rows import questions_by_supplier
 from quillshaft.present.report.damped import damped_parts
 from quillshaft.present.report.orders import order_parts
+from quillshaft.present.report.response import response_parts
+from quillshaft.present.report.restrictions import restriction_parts
 from quillshaft.present.temperature_rows import coupling_rows, temperature_heads, temperature_lines, temperature_rows
 from quillshaft.present.tolerance_words import driven_modes, driver_rows, mode_rows, pair_rows, study_sentences
 from quillshaft.present.units import SHOWN
@@ -38,11 +41,14 @@ class Studies:
     questions: bool = False
     damped: DampedResult | None = None
     orders: tuple[OrderStudy, ...] = ()
+    response: Response | None = None
 
 
 def study_parts(screening: Screening, studies: Studies) -> list[Any]:
     """The sections that were asked for, as blocks of a report."""
     return [
+        *response_parts(studies.response),
+        *restriction_parts(studies.response),
         *_temperatures(screening, studies.temperatures),
         *(part for windows, others in studies.windows for part in _windows(screening, windows, others)),
         *_comparisons(screening, studies.comparisons),
