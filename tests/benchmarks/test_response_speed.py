@@ -7,11 +7,17 @@ solve has its matrices assembled already, in blocks, so that it too works in mem
 from __future__ import annotations
 
 import time
+from pathlib import Path
 from statistics import median
 
 import numpy as np
 import pytest
 
+from quillshaft import load, respond, screen
+from quillshaft.assess.response.loads import collect_loads
+from quillshaft.assess.response.mean import mean_torques_of
+from quillshaft.assess.response.run import sweep
+from quillshaft.assess.response.states import all_states
 from quillshaft.graph.network import Network
 from quillshaft.solve.damped_state import Damping
 from quillshaft.solve.plan import plan_elimination
@@ -131,3 +137,28 @@ def test_cost_of_a_station_and_point_stays_within_a_factor_of_two_to_2000_statio
     shown = ", ".join(f"{stations}: {cost * 1e9:.1f}" for stations, cost in costs.items())
     print(f"\n{'tree' if branched else 'chain'}, ns a station and point: {shown}; most over least {ratio:.2f}")
     assert ratio <= 2.0
+
+
+@pytest.mark.benchmark
+def test_generator_set_with_24_orders_and_every_cylinder_dead_in_turn_takes_below_1_5_seconds():
+    """The sweep of the example at low damping, its grid refined until every peak is found; all of `respond` beside.
+
+    `respond` adds cold, hot and own heat, damper faults, tolerance ends, high damping, load limits and the rest.
+    """
+    screening = screen(load(Path(__file__).parents[2] / "examples" / "dairy-generator.toml"))
+    mean = mean_torques_of(screening.train, screening.graph, screening.duties, screening.station_power_w)
+    loads = collect_loads(screening.train, screening.graph, screening.sources, mean)
+    states = all_states(screening.train, "reference")
+    assert sum(len(group.lines) for group in loads.groups) == 24
+    ring = next(n for n, link in enumerate(screening.graph.links) if link.name == "ring")
+    sweeps, wholes = [], []
+    for _ in range(PAIRS):
+        start = time.process_time()
+        swept = sweep(states[:1], loads, (0,), (ring,))
+        middle = time.process_time()
+        respond(screening)
+        sweeps.append(middle - start)
+        wholes.append(time.process_time() - middle)
+    assert sum(case.kind == "dead cylinder" for case in swept.cases) == 6
+    print(f"\nsweep of {len(swept.cases)} cases {median(sweeps):.2f} s, all of respond {median(wholes):.2f} s")
+    assert median(sweeps) < 1.5

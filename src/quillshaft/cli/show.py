@@ -55,11 +55,12 @@ def show_screening(screening: Screening, out: Console, every: bool) -> None:
         out.print(f"Dismissal {item.dismissal.name} was not applied: {item.why}.")
     out.print()
     out.print(tables.modes_table(screening))
-    beyond = len(listed_modes(screening)) - len(screening.judged_modes)
+    beyond, left = len(listed_modes(screening)) - len(screening.judged_modes), unlisted_sentence(screening)
     if beyond:
         verb = "is" if beyond == 1 else "are"
-        left = unlisted_sentence(screening)
         out.print(f"{counted(beyond, 'mode')} above the highest source {verb} listed and not judged.{left}")
+    elif left:
+        out.print(left.strip())
     if every:
         out.print()
         out.print(tables.matrix_table(screening))

@@ -4,15 +4,12 @@ from __future__ import annotations
 
 from quillshaft.assess.results import ModeResult, Screening
 
-BEYOND = 2
-"""Modes above the judged ones that are shown where a shaft is cut: higher ones are not converged."""
-
 
 def listed_modes(screening: Screening) -> tuple[ModeResult, ...]:
-    """The modes that tables list: with shafts of distributed inertia, no more than two above the judged ones."""
+    """The modes that tables list: with distributed shafts the judged ones alone: higher ones are not converged."""
     if all(link.cut is None for link in screening.graph.links):
         return screening.modes
-    return screening.modes[: max(screening.judged_modes, default=0) + BEYOND]
+    return screening.modes[: max(screening.judged_modes, default=1)]
 
 
 def unlisted_sentence(screening: Screening) -> str:

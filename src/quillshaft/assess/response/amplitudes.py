@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
-from quillshaft.assess.response.mean import MeanTorques
+from quillshaft.assess.response.mean import MeanTorques, torque_words
 from quillshaft.elements.joint import joint_amplitude
 from quillshaft.graph.network import Floats
 from quillshaft.graph.torsional import GraphLink, TorsionalGraph
@@ -119,14 +119,14 @@ def _of_torque(
 ) -> Size | None:
     torque, share = given
     if torque is not None:
-        return abs(torque), 0.0, reference, f"{abs(torque):.4g} N·m as stated"
+        return abs(torque), 0.0, reference, f"{torque_words(abs(torque))} as stated"
     if share is None:
         return None
     if reference is None:
         message = "is a share of the mean torque there, and no power gives one"
         findings.add(path, message, None, "[power] with the mean power of each station, or an amplitude in N m")
         return None
-    return 0.0, share * reference, reference, f"{share * 100:.3g} % of {reference:.4g} N·m mean"
+    return 0.0, share * reference, reference, f"{share * 100:.3g} % of {torque_words(reference)} mean"
 
 
 def _of_joint(train: Train, graph: TorsionalGraph, name: str, excitation: Excitation | None) -> Size | None:
@@ -148,7 +148,7 @@ def _ordinary(graph: TorsionalGraph, source: Source, mean: MeanTorques) -> tuple
     if kind is None or reference is None:
         return None, ()
     share = ORDINARY["propeller blade-pass" if kind == "blade-pass" and "propeller" in kinds else kind]
-    text = f"{share * 100:.3g} % of {reference:.4g} N·m mean"
+    text = f"{share * 100:.3g} % of {torque_words(reference)} mean"
     why = "not given: an ordinary figure (common practice), since [assumptions] amplitudes = ordinary"
     return (0.0, share * reference, reference, f"{text}, ordinary"), (Assumed(source.name, "amplitude", text, why),)
 

@@ -13,10 +13,11 @@ from quillshaft.assess.response.states import State
 from quillshaft.assess.response.synthesis import extremes
 from quillshaft.assess.response_results import CaseResponse, LineShare
 from quillshaft.elements.coupling_duty import FLAT_HZ
-from quillshaft.graph.network import Floats, Ints
+from quillshaft.graph.network import Bools, Floats, Ints
 from quillshaft.records import dataclass
 from quillshaft.sources.gas import Complexes
 from quillshaft.sources.line import TWO_PI
+from quillshaft.train.model import Operation
 
 
 @dataclass(frozen=True)
@@ -108,26 +109,33 @@ class Combined:
         single = [size * _worst(pick(own)) for size, own in self.plain]
         return put_together(grouped, single, (rows, len(self.speed_rad_s)))
 
-    def angles(self, stations: tuple[int, ...], power: int) -> Range:
-        """Angles of stations that are kept times the circular frequency to a power, as waves over the cycle."""
-        places = [self.kept.stations.index(station) for station in stations]
-        grouped = [(group, own.angle_rad[places] * own.omega_rad_s**power) for group, own in self.groups]
-        chosen = list(stations)
-        single = [size * _worst(own.angle_rad[chosen] * own.omega_rad_s**power) for size, own in self.plain]
-        return put_together(grouped, single, (len(stations), len(self.speed_rad_s)))
+    def angles(self, stations: tuple[int, ...], power: int, where: Bools) -> Floats:
+        """(stations, S) half the range of angles times the circular frequency to a power, nan but `where` (S,)."""
+        places, chosen = [self.kept.stations.index(station) for station in stations], list(stations)
+
+        def taken(own: Lines, rows: list[int]) -> Complexes:
+            return np.asarray(own.angle_rad[rows][:, :, where] * own.omega_rad_s[:, where] ** power)
+
+        grouped = [(group, taken(own, places)) for group, own in self.groups]
+        single = [size[where] * _worst(taken(own, chosen)) for size, own in self.plain]
+        out = np.full((len(stations), len(where)), np.nan)
+        out[:, where] = put_together(grouped, single, (len(stations), int(where.sum()))).half
+        return out
 
 
 def combine(what: Combined, mean_nm: Floats, watched: tuple[int, ...], couplings: tuple[int, ...]) -> CaseResponse:
     """One case; mean_nm (links,) is the mean torque at rated speed and the full load of the case.
 
     Angles and heat are known where they are kept; speed irregularity and inertia torque at the stations `watched`,
-    weighted torque in the links `couplings`; nan elsewhere.
+    weighted torque in the links `couplings`; nan elsewhere. What moves is worked out at all speeds in the normal case,
+    in the others at the judged speeds.
     """
     state, case, torque = what.state, what.case, what.torque
     links = len(state.graph.links)
     mean = mean_nm[:, None] * what.share * case.load_share
     known = np.nan_to_num(mean)
-    irregular, inertia = _motion(what, list(watched))
+    where = moving_speeds(what)
+    irregular, inertia = _motion(what, list(watched), where)
     return CaseResponse(
         name=_case_name(state, case),
         kind=case.kind if state.kind == "normal" or case.dead is not None else state.kind,
@@ -142,7 +150,7 @@ def combine(what: Combined, mean_nm: Floats, watched: tuple[int, ...], couplings
         ),
         twist_deg=np.degrees(torque.half * _compliance(state, what.lines.springs)),
         heat_w=_heat(what, links),
-        angle_deg=_angles(what),
+        angle_deg=_angles(what, where),
         irregularity=irregular,
         inertia_torque_nm=inertia,
         temperature_k={},
@@ -169,9 +177,9 @@ def _heat(what: Combined, links: int) -> Floats:
     return _spread(total, what.kept.links, links)
 
 
-def _angles(what: Combined) -> Floats:
+def _angles(what: Combined, where: Bools) -> Floats:
     stations = what.kept.stations
-    return _spread(np.degrees(what.angles(stations, 0).half), stations, len(what.state.graph.stations))
+    return _spread(np.degrees(what.angles(stations, 0, where)), stations, len(what.state.graph.stations))
 
 
 def _case_name(state: State, case: LoadCase) -> str:
@@ -191,10 +199,28 @@ def _compliance(state: State, springs: Numbers | None) -> Floats:
     return out
 
 
-def _motion(what: Combined, watched: list[int]) -> tuple[Floats, Floats]:
+def moving_speeds(what: Combined) -> Bools:
+    """(S,) speeds at which the motion of stations is worked out."""
+    everywhere = what.state.kind == "normal" and what.number == 0
+    if everywhere:
+        return np.ones(len(what.speed_rad_s), dtype=bool)
+    return continuous_speeds(what.state.train.operation, what.speed_rad_s)
+
+
+def continuous_speeds(operation: Operation, speed_rad_s: Floats) -> Bools:
+    """(S,) True at speeds of the judged ranges, barred ones left out."""
+    inside = np.zeros(len(speed_rad_s), dtype=bool)
+    for low, high in operation.ranges_rad_s:
+        inside |= (speed_rad_s >= low * (1 - 1e-9)) & (speed_rad_s <= high * (1 + 1e-9))
+    for low, high in operation.barred_rad_s:
+        inside &= ~((speed_rad_s > low * (1 + 1e-9)) & (speed_rad_s < high * (1 - 1e-9)))
+    return inside
+
+
+def _motion(what: Combined, watched: list[int], where: Bools) -> tuple[Floats, Floats]:
     """(stations, S) speed irregularity and inertia torque [N·m] at the watched stations, nan elsewhere."""
     graph, places = what.state.graph, tuple(watched)
-    speed, rate = what.angles(places, 1).half, what.angles(places, 2).half
+    speed, rate = what.angles(places, 1, where), what.angles(places, 2, where)
     irregular = 2.0 * speed / np.multiply.outer(graph.scale[watched], what.speed_rad_s)
     inertia = rate * graph.inertia_kgm2[watched][:, None]
     stations = len(graph.stations)

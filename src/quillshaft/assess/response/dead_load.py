@@ -26,7 +26,7 @@ from quillshaft.sources.gas import Complexes
 from quillshaft.train.model import Coupling
 
 HALVINGS = 7
-MOST_TRIED = 60
+MOST_TRIED = 40
 """Speeds at which a load is tried for heat."""
 
 
@@ -50,8 +50,10 @@ def dead_loads(ground: Ground, swept: Swept, loads: LoadSet) -> tuple[DeadLoad, 
         numbers.sort(key=lambda number: -_most_used(ground, swept.cases[number]))
         worst = numbers[0]
         share, why = _largest_share(ground, swept, loads, worst)
+        hottest = max(numbers, key=lambda number: _heat(ground, swept.cases[number]))
         for number in numbers[1:]:
-            if share is not None and _limiting(ground, swept, loads, number, share) is not None:
+            limiting = _limiting if number == hottest else _torque_limiting
+            if share is not None and limiting(ground, swept, loads, number, share) is not None:
                 worst, (share, why) = number, _largest_share(ground, swept, loads, number)
         out.append(DeadLoad(group.name, swept.loads[worst].name, share, why))
     return tuple(out)
@@ -73,18 +75,28 @@ def _most_used(ground: Ground, case: CaseResponse) -> float:
     return used
 
 
+def _heat(ground: Ground, case: CaseResponse) -> float:
+    """Largest heat [W] of any coupling in a case at the judged speeds."""
+    rows = [place for place, link in enumerate(ground.graph.links) if link.kind == "coupling"]
+    return float(np.nan_to_num(case.heat_w[rows][:, ground.continuous]).max(initial=0.0))
+
+
 def _limiting(ground: Ground, swept: Swept, loads: LoadSet, number: int, share: float) -> str | None:
     """What is beyond its limit at a share of load in load case `number`; None where nothing is."""
+    return _torque_limiting(ground, swept, loads, number, share) or _trial(ground, swept, loads, number, share)
+
+
+def _torque_limiting(ground: Ground, swept: Swept, loads: LoadSet, number: int, share: float) -> str | None:
+    """The link whose torque is beyond its limit at a share of load, couplings at 30 °C."""
     places = [n for n, curve in enumerate(ground.limits) if curve.continuous_nm is not None]
-    if places:
-        inside = ground.continuous
-        limits = np.array([ground.limits[n].continuous_nm for n in places])[:, inside]
-        weights = np.array([_weight(swept, number, n)[inside] for n in places])
-        half = _at_load(swept, loads, number, share, places, inside) * weights
-        over = np.flatnonzero((half > limits * (1 + 1e-9)).any(axis=1))
-        if len(over):
-            return ground.limits[places[int(over[0])]].link
-    return _trial(ground, swept, loads, number, share)
+    if not places:
+        return None
+    inside = ground.continuous
+    limits = np.array([ground.limits[n].continuous_nm for n in places])[:, inside]
+    weights = np.array([_weight(swept, number, n)[inside] for n in places])
+    half = _at_load(swept, loads, number, share, places, inside) * weights
+    over = np.flatnonzero((half > limits * (1 + 1e-9)).any(axis=1))
+    return ground.limits[places[int(over[0])]].link if len(over) else None
 
 
 def _largest_share(ground: Ground, swept: Swept, loads: LoadSet, number: int) -> tuple[float | None, str]:
@@ -106,7 +118,7 @@ def _largest_share(ground: Ground, swept: Swept, loads: LoadSet, number: int) ->
 def _trial(ground: Ground, swept: Swept, loads: LoadSet, number: int, share: float) -> str | None:
     """What is beyond its limit at a share of load, stiffness, heat and temperature of couplings settled on each other.
 
-    At no more than 60 of the judged speeds: heat, torques of links, and the motion of generators.
+    At no more than 40 of the judged speeds: heat, torques of links, and the motion of generators.
     """
     state, case = swept.states[0], replace(swept.loads[number], load_share=share)
     few = thinned(ground.continuous, MOST_TRIED)
@@ -142,8 +154,9 @@ def _generator(ground: Ground, what: Combined) -> str | None:
         if machine.kind != "generator" or machine.at is None:
             continue
         station = ground.graph.number(machine.at)
-        angle = what.angles((station,), 0).half[0] * (machine.poles or 2) / 2.0
-        inertia = what.angles((station,), 2).half[0] * float(ground.graph.inertia_kgm2[station])
+        every = np.ones(len(what.speed_rad_s), dtype=bool)
+        angle = what.angles((station,), 0, every)[0] * (machine.poles or 2) / 2.0
+        inertia = what.angles((station,), 2, every)[0] * float(ground.graph.inertia_kgm2[station])
         rated = machine.electrical.rated_torque_nm or ground.mean.at_station(ground.graph, station)
         if (angle > duty.electrical_rad).any() or (rated is not None and (inertia > duty.inertia_torque * rated).any()):
             return machine.name

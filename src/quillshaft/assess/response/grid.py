@@ -18,8 +18,8 @@ STEP = 0.01
 NARROW = 0.4
 """Modes whose damping ratio is below this share of the step get points of their own at their critical speeds."""
 GAIN = 2e-4
-DROP = 0.12
-"""A peak is found when a parabola through it rises by no more than GAIN, and its neighbours lie within DROP of it."""
+DROP = 0.35
+"""A peak is found when a parabola through it rises by no more than GAIN; beyond DROP its neighbours are too far off."""
 SMALLEST = 0.02
 """Peaks below this share of the largest torque of their link are left as they are."""
 NEAREST = 0.015
@@ -102,10 +102,11 @@ def refine(speeds: Floats, curves: Floats, least: float) -> Peaks:
     y0, y1, y2 = (curves[rows, place + step] for step in (0, 1, 2))
     x0, x1, x2 = (speeds[place + step] for step in (0, 1, 2))
     vertex, height = _parabola((x0, x1, x2), (y0, y1, y2))
-    loose = (height - y1 > GAIN * y1) | (y1 - np.minimum(y0, y2) > DROP * y1)
+    steep = y1 - np.minimum(y0, y2) > DROP * y1
+    loose = steep | (height - y1 > GAIN * y1)
     if not loose.any():
         return Peaks(np.zeros(0), True)
-    found = [vertex[loose], 0.5 * (x0 + x1)[loose], 0.5 * (x1 + x2)[loose]]
+    found = [vertex[loose], 0.5 * (x0 + x1)[steep], 0.5 * (x1 + x2)[steep]]
     wanted = _thinned(np.sort(np.concatenate(found)), least)
     near = np.searchsorted(speeds, wanted)
     beside = np.minimum(

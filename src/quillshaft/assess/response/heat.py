@@ -18,7 +18,7 @@ from quillshaft.sources.gas import Complexes
 from quillshaft.train.model import Coupling, Train
 
 MOST_ROUNDS = 60
-SETTLED_K = 0.01
+SETTLED_K = 0.02
 BEYOND_K = 60.0
 """How far above the last temperature of its table a coupling may get before it is said to run away."""
 

@@ -6,8 +6,9 @@ from dataclasses import replace
 
 import numpy as np
 
+from quillshaft.assess.response.mean import torque_words
 from quillshaft.assess.response_results import LimitCurve
-from quillshaft.elements.coupling_duty import frequency_factor
+from quillshaft.elements.coupling_duty import frequency_factor, weighs_by_frequency
 from quillshaft.elements.endurance import (
     fatigue_notch_factor,
     notch_sensitivity,
@@ -84,7 +85,7 @@ def _shaft(train: Train, shaft: Shaft, mean: Floats, ratio: Floats, assumed: lis
     flat = np.ones(len(ratio))
     if own.permitted_torque_nm is not None:
         passing = own.passing_torque_nm or own.permitted_torque_nm
-        basis = f"torque amplitude stated: {own.permitted_torque_nm:.4g} N·m"
+        basis = f"torque amplitude stated: {torque_words(own.permitted_torque_nm)}"
         return LimitCurve(shaft.name, own.permitted_torque_nm * flat, passing * flat, per_nm, basis)
     if own.permitted_stress_pa is not None and sections:
         least = min(sections, key=lambda item: item.modulus_m3)
@@ -218,14 +219,14 @@ def _coupling(coupling: Coupling, mean: Floats) -> LimitCurve:
     continuous = passing = None
     words = []
     if ratings is not None and ratings.vibratory_nm is not None:
-        at_ten = ratings.vibratory_nm * frequency_factor(ratings.reference_hz or 10.0)
-        continuous = at_ten * flat
-        words.append(
-            f"vibratory torque {at_ten:.4g} N·m up to 10 Hz, less above by √(10 Hz / f) (DIN 740-2, {RECALLED})"
-        )
+        weighs = weighs_by_frequency(coupling.kind)
+        permitted = ratings.vibratory_nm * (frequency_factor(ratings.reference_hz or 10.0) if weighs else 1.0)
+        continuous = permitted * flat
+        by_frequency = f" up to 10 Hz, less above by √(10 Hz / f) (DIN 740-2, {RECALLED})" if weighs else ""
+        words.append(f"vibratory torque {torque_words(permitted)}{by_frequency}")
     if ratings is not None and ratings.peak_nm is not None:
         passing = np.maximum(ratings.peak_nm - mean, 0.0)
-        words.append(f"peak torque {ratings.peak_nm:.4g} N·m less the mean torque in passing")
+        words.append(f"peak torque {torque_words(ratings.peak_nm)} less the mean torque in passing")
     return LimitCurve(coupling.name, continuous, passing, None, "; ".join(words) or "its maker's ratings are not given")
 
 
@@ -239,10 +240,10 @@ def _gear(
         if rated == 0.0:
             return _none(gear.name, "neither rated-torque nor a mean torque to take for it is known")
         why = "not given: the mean torque at rated speed is taken for it"
-        assumed.append(Assumed(f"gears.{gear.name}", "rated-torque", f"{rated:.4g} N·m", why))
+        assumed.append(Assumed(f"gears.{gear.name}", "rated-torque", torque_words(rated), why))
     flat = np.ones(len(mean)) * duty.gear_share * rated
     edition = duty.edition or RECALLED
-    basis = f"vibratory torque {duty.gear_share * 100:.3g} % of rated {rated:.4g} N·m (class rules, {edition})"
+    basis = f"vibratory torque {duty.gear_share * 100:.3g} % of rated {torque_words(rated)} (class rules, {edition})"
     if duty.gear_reversal == "refused":
         return LimitCurve(gear.name, np.minimum(flat, mean), None, None, f"{basis}; no tooth separation")
     return LimitCurve(gear.name, flat, None, None, basis)

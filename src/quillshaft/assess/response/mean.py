@@ -81,3 +81,8 @@ STARTING = 0.8
 """Share of idle speed below which an engine is being started."""
 CONSTANT_POWER_LOW = 0.5
 """Share of rated speed below which a constant-power drive holds its torque (common practice)."""
+
+
+def torque_words(torque_nm: float) -> str:
+    """A torque [N·m] as written in words: four digits, thousands in full."""
+    return f"{torque_nm:.0f} N·m" if abs(torque_nm) >= 1000.0 else f"{torque_nm:.4g} N·m"

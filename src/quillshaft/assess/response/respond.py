@@ -8,7 +8,7 @@ from dataclasses import replace
 import numpy as np
 
 from quillshaft.assess.response.closing import close_pairs
-from quillshaft.assess.response.combine import Combined, combine, torque_range
+from quillshaft.assess.response.combine import Combined, combine, continuous_speeds, torque_range
 from quillshaft.assess.response.evaluate import Kept, all_kept, evaluate
 from quillshaft.assess.response.findings import Ground, all_findings, damper_faults
 from quillshaft.assess.response.heat import (
@@ -25,7 +25,7 @@ from quillshaft.assess.response.maps import separation_maps, waves
 from quillshaft.assess.response.mean import MeanTorques, mean_torques_of
 from quillshaft.assess.response.measure import gauges
 from quillshaft.assess.response.restrictions import restrictions
-from quillshaft.assess.response.run import UNDAMPED, Swept, continuous_speeds, modes_of, sweep
+from quillshaft.assess.response.run import UNDAMPED, Swept, modes_of, sweep
 from quillshaft.assess.response.states import State, all_states
 from quillshaft.assess.response_results import CaseResponse, Response
 from quillshaft.assess.results import Screening

@@ -7,18 +7,26 @@ from dataclasses import replace
 import numpy as np
 
 from quillshaft.assess.mean_torque import mean_torques
-from quillshaft.assess.response.combine import Combined, Range, combine, joined_range, line_shares, torque_range
+from quillshaft.assess.response.combine import (
+    Combined,
+    Range,
+    combine,
+    continuous_speeds,
+    joined_range,
+    line_shares,
+    torque_range,
+)
 from quillshaft.assess.response.evaluate import Kept, StateLines, all_kept, evaluate, joined_lines
 from quillshaft.assess.response.grid import MOST_SPEEDS, NEAREST, ROUNDS, first_speeds, refine
 from quillshaft.assess.response.loads import LoadCase, LoadSet
 from quillshaft.assess.response.mean import shares_along
 from quillshaft.assess.response.states import State
 from quillshaft.assess.response_results import CaseResponse, LineShare
-from quillshaft.graph.network import Bools, Floats
+from quillshaft.graph.network import Floats
 from quillshaft.records import dataclass
 from quillshaft.solve.damped_state import undamped
 from quillshaft.solve.modes import natural_modes
-from quillshaft.train.model import Operation, Train
+from quillshaft.train.model import Train
 
 UNDAMPED = 1e-6
 """Damping ratio below which a mode counts as undamped."""
@@ -154,16 +162,6 @@ def _asked(
         worst = (dead[int(np.argmax(sizes))],)
     by = {"all": cases, "worst": (cases[0], *worst), "one": cases[:1]}
     return [by[state.loads] for state in states]
-
-
-def continuous_speeds(operation: Operation, speed_rad_s: Floats) -> Bools:
-    """(S,) True at speeds of the judged ranges, barred ones left out."""
-    inside = np.zeros(len(speed_rad_s), dtype=bool)
-    for low, high in operation.ranges_rad_s:
-        inside |= (speed_rad_s >= low * (1 - 1e-9)) & (speed_rad_s <= high * (1 + 1e-9))
-    for low, high in operation.barred_rad_s:
-        inside &= ~((speed_rad_s > low * (1 + 1e-9)) & (speed_rad_s < high * (1 - 1e-9)))
-    return inside
 
 
 def bands(states: tuple[State, ...], loads: LoadSet) -> list[dict[str, tuple[float, ...]]]:

@@ -8,7 +8,7 @@ from collections.abc import Sequence
 import numpy as np
 
 from quillshaft.assess.response_results import CaseResponse, LimitCurve, Response
-from quillshaft.graph.network import Bools, Floats
+from quillshaft.graph.network import Bools, Floats, Ints
 from quillshaft.present.charts.phrases import RPM, brief
 from quillshaft.present.units import SHOWN
 from quillshaft.present.words import number
@@ -105,10 +105,12 @@ def weighted(response: Response, link: str) -> bool:
 
 
 def swing(response: Response, case: CaseResponse, link: str) -> Floats:
-    """(S,) alternating torque [N·m] that is held against the link's limit."""
-    rows = case.weighted_torque_nm if weighted(response, link) else case.alternating_torque_nm
-    row: Floats = np.asarray(rows[link_number(response, link)], dtype=float)
-    return row
+    """(S,) alternating torque [N·m] that is held against the link's limit: weighted in the judged ranges alone."""
+    number = link_number(response, link)
+    row: Floats = np.asarray(case.alternating_torque_nm[number], dtype=float)
+    if not weighted(response, link):
+        return row
+    return np.where(response.continuous, case.weighted_torque_nm[number], row)
 
 
 def worst_of(rows: Sequence[Floats]) -> Floats:
@@ -210,3 +212,13 @@ def share_text(share: float) -> str:
     if 99.0 < value < 101.0:
         return f"{number(value, 5 if value > 100.0 else 4)} %"
     return f"{value:.0f} %" if value >= 10 else f"{number(value, 2)} %"
+
+
+def outline_places(*curves: Floats, most: int = 200) -> Ints:
+    """Places of the points that the outline of a filled area needs: its ends, every turn, and evenly between them."""
+    count = len(curves[0])
+    if count <= most:
+        return np.arange(count)
+    turns = [np.flatnonzero(np.diff(np.sign(np.diff(curve)))) + 1 for curve in curves]
+    even = np.linspace(0, count - 1, most).astype(int)
+    return np.asarray(np.unique(np.concatenate([even, *turns])), dtype=np.intp)

@@ -120,8 +120,11 @@ def _values(response: Response, case: CaseResponse, link: str, kind: Kind) -> Fl
 
 
 def _largest_w(response: Response, link: str) -> tuple[float, float, CaseResponse]:
-    """Largest loss [W] over the judged cases, its speed [rpm] and case."""
-    rows = [(np.nan_to_num(_values(response, case, link, "heat"), posinf=0.0), case) for case in judged_cases(response)]
+    """Largest loss [W] of the judged cases in the judged ranges (in passing none settles), its rpm, its case."""
+    rows = [
+        (np.where(response.continuous, np.nan_to_num(_values(response, case, link, "heat"), posinf=0.0), 0.0), case)
+        for case in judged_cases(response)
+    ]
     row, case = max(rows, key=lambda item: float(item[0].max()))
     at = int(np.argmax(row))
     return float(row[at]), float(speeds_rpm(response)[at]), case

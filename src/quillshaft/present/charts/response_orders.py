@@ -25,6 +25,7 @@ from quillshaft.present.charts.response_common import (
     Unit,
     link_number,
     nearest,
+    outline_places,
     share_text,
     speeds_rpm,
     torque_text,
@@ -128,7 +129,8 @@ def _draw_lane(made: look.Frame, page: Axes, response: Response, lane: Lane, acr
     if len(rpm) == 1:
         axes.plot([rpm[0]] * 2, [0.0, values[0]], lw=4.0, color=look.FAINT, solid_capstyle="butt", zorder=2)
     else:
-        axes.fill_between(rpm, 0.0, values, facecolor=face, edgecolor=look.QUIET, hatch=hatch, lw=0.0, zorder=2)
+        at = outline_places(values)
+        axes.fill_between(rpm[at], 0.0, values[at], facecolor=face, edgecolor=look.QUIET, hatch=hatch, lw=0.0, zorder=2)
     plot_over_speed(axes, response, values, zorder=3, gid=lane.name, clip_on=False)
     _write_lane(page, lane, _lane_words(response, lane), up.start_mm + min(up.length_mm, 10.0) / 2.0)
 

@@ -32,6 +32,7 @@ from quillshaft.present.charts.response_common import (
     judged_cases,
     limit_at_speeds,
     limit_of,
+    outline_places,
     stress_unit,
     swing,
     torque_unit,
@@ -157,7 +158,10 @@ def _draw_band(axes: Axes, response: Response, link: str, calm: CaseResponse) ->
     if len(rpm) == 1:
         axes.plot([rpm[0]] * 2, [low[0], high[0]], lw=4.0, color=look.FAINT, solid_capstyle="butt", zorder=2)
         return
-    axes.fill_between(rpm, low, high, facecolor=look.FAINT, edgecolor="none", lw=0.0, zorder=2, gid="damping")
+    at = outline_places(low, high)
+    axes.fill_between(
+        rpm[at], low[at], high[at], facecolor=look.FAINT, edgecolor="none", lw=0.0, zorder=2, gid="damping"
+    )
 
 
 def _draw_limits(axes: Axes, response: Response, link: str, up: Scale, unit: Unit) -> list[tuple[float, str]]:
@@ -209,7 +213,7 @@ def _note(response: Response, links: Sequence[str]) -> str:
     if _damped(response) is not None:
         text += " Grey band: normal case from low to high damping."
     if any(weighted(response, link) for link in links):
-        text += " Weighted: each order by the frequency factor of couplings."
+        text += " Weighted: in the judged ranges each order by the frequency factor of couplings."
     if any(case.kind not in ("normal", "dead cylinder") for case in judged_cases(response)):
         others = [case.name for case in judged_cases(response)[1:] if case.kind != "dead cylinder"]
         text += f" Other cases: {listed(others, 4)}."
