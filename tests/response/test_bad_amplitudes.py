@@ -60,3 +60,12 @@ def test_ordinary_amplitudes_are_taken_only_when_asked_for_and_are_listed():
     response = response_of(asked)
     assert "driver 1x" not in response.unjudged
     assert any(item.element == "driver 1x" and "ordinary" in item.why for item in response.assumed)
+
+
+def test_two_amplitudes_of_one_source_are_refused():
+    text = plain_text(amplitudes={"driver 1x": "5 N m", "load 1x": "0 N m"}).replace(
+        '"driver 1x" = "not looked at"\n', ""
+    )
+    message = refused(text)
+    assert '[amplitudes."load 1x"]' in message
+    assert "another name of the source that driver 1x" in message

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import math
+
 import numpy as np
 import pytest
 from response_trains import RPM, alternating_at, engine_text, plain_text, response_of
@@ -135,3 +137,52 @@ def test_a_ramp_says_how_long_a_resonance_is_passed_and_what_that_does():
     assert row.seconds == pytest.approx(2 * 0.01 * frequency / rate, rel=1e-3)
     assert row.cycles == pytest.approx(2 * 0.01 * frequency**2 / rate, rel=1e-3)
     assert 0.3 < row.peak_share < 1.0
+
+
+def side_line(limit: float, **line):
+    """A narrow range at 1500 rpm, a mode that ±12 % of stiffness move from 43.1 to 48.6 Hz, and a line of one's own."""
+    shaft = {
+        "between": ["driver", "load"],
+        "stiffness": 1e5,
+        "loss-factor": 0.02,
+        "tolerance": "12 %",
+        "permitted-torque": limit,
+        "passing-torque": 50 * limit,
+    }
+    excitations = {"shake": {"at": "driver", "torque": "100 N m", **line}}
+    operation = {"range": ["1495 rpm", "1505 rpm"]}
+    return response_of(plain_text(shafts={"shaft": shaft}, excitations=excitations, operation=operation))
+
+
+@pytest.mark.parametrize(
+    "line",
+    [{"order": 1.9}, {"order": 0.5, "frequency": "35 Hz"}, {"frequency": "47.5 Hz"}, {"order": 1.76}],
+)
+def test_a_mode_that_tolerances_tune_onto_a_source_is_judged_at_its_full_resonance(line):
+    """T J2/(J1+J2) / η at resonance whatever the stiffness is (two discs, loss factor η): 3000 N·m (derived)."""
+    peak = 100 * 0.6 * math.hypot(1.0, 0.02) / 0.02
+    for share, status in ((1.01, "cleared by response"), (0.98, "not cleared")):
+        item = closing(side_line(share * peak, **line))
+        assert item.status == status
+        assert item.finding.use == pytest.approx(1 / share, rel=2e-3)
+        assert item.finding.case == "tuned by its tolerances"
+
+
+def test_a_belt_that_carries_a_mode_keeps_it_from_being_cleared():
+    text = plain_text(shafts={}).replace(
+        '"shaft" = { "between" = ["driver", "load"], "stiffness" = 100000.0, "loss-factor" = 0.02 }\n', ""
+    )
+    text += (
+        '[belts]\n"vee" = { "between" = ["driver", "load"], "diameters" = ["300 mm", "300 mm"], "stiffness" = 1e5 }\n'
+    )
+    item = closing(response_of(text))
+    assert item.status == "not judged: no limit"
+    assert "vee" in item.text
+
+
+def test_declared_barred_ranges_stand_among_the_restrictions():
+    operation = {**WIDE, "barred": [["1300 rpm", "1500 rpm"]], "barred-because": "first mode"}
+    shaft = {"between": ["driver", "load"], "stiffness": 1e5, "loss-factor": 0.02, "permitted-torque": 2000.0}
+    response = response_of(plain_text(shafts={"shaft": shaft}, operation=operation))
+    (span,) = response.restrictions.barred
+    assert (span.from_rpm, span.to_rpm) == pytest.approx((1300.0, 1500.0))

@@ -83,7 +83,9 @@ def test_the_weakest_piece_governs_and_a_fillet_costs_strength():
     soft = {**plain, "pieces": [{**plain["pieces"][0], "fillet": "8 mm"}, plain["pieces"][1]]}
     limits = []
     for shaft in (plain, soft):
-        text = plain_text(shafts={"shaft": shaft}, materials=STEEL, criteria={"strength": {"rule": "endurance"}})
+        text = plain_text(
+            shafts={"shaft": shaft}, materials=STEEL, power=POWER, criteria={"strength": {"rule": "endurance"}}
+        )
         limits.append(response_of(text).limits[0])
     assert limits[0].continuous_nm[0] < limits[1].continuous_nm[0]
     assert "piece 1, 60 mm" in limits[0].basis
@@ -169,3 +171,71 @@ def test_teeth_separate_where_alternating_torque_exceeds_the_mean():
     assert gear.ratio[half] == pytest.approx(last / 0.5, rel=1e-9)
     item = finding(response, "mesh", "tooth separation")
     assert (item.verdict == "fail") == (item.value > 1.0)
+
+
+def test_without_power_neither_peak_torque_nor_endurance_is_passed():
+    """A mean torque that is not known is not zero."""
+    text = plain_text(shafts={"shaft": GEOMETRY}, materials=STEEL, criteria={"strength": {"rule": "endurance"}})
+    response = response_of(text)
+    assert finding(response, "shaft", "alternating stress").verdict == "no limit given"
+    assert "mean torque" in response.limits[0].basis
+    rubber = {**RUBBER, "between": ["driver", "load"], "stiffness": 1e5, "peak-torque": 5000, "rated-torque": 2000}
+    text = plain_text(couplings={"rubber": rubber}).replace(
+        '"shaft" = { "between" = ["driver", "load"], "stiffness" = 100000.0, "loss-factor" = 0.02 }\n', ""
+    )
+    item = finding(response_of(text), "rubber", "peak torque")
+    assert item.verdict == "no limit given"
+    assert "mean torque is not known" in item.basis
+
+
+def test_above_the_speeds_of_the_class_rule_a_propulsion_shaft_is_not_judged():
+    """IACS UR M68 gives limits up to 1.05 of rated speed (from memory)."""
+    shaft = {
+        **GEOMETRY,
+        "pieces": [{"od": "300 mm", "length": "4000 mm"}],
+        "strength-rule": "propulsion",
+        "propulsion-kind": "intermediate",
+        "propulsion-form": "integral-flange",
+    }
+    operation = {"range": ["1400 rpm", "1620 rpm"]}
+    response = response_of(plain_text(shafts={"shaft": shaft}, materials=STEEL, operation=operation))
+    assert response.unlimited == ("shaft",)
+    assert response.verdict == "not judged"
+    texts = [item.basis for item in response.findings if item.limit is None]
+    assert any("gives no limit at these speeds" in text for text in texts)
+
+
+def test_unlocked_sources_of_one_frequency_heat_a_coupling_by_amplitude():
+    """Twice the torque at one frequency is four times the heat; the squares alone would give twice."""
+    shaft = '"shaft" = { "between" = ["driver", "load"], "stiffness" = 100000.0, "loss-factor" = 0.02 }\n'
+    rubber = {"rubber": {"between": ["driver", "load"], "stiffness": 1e4, "psi": 1.0}}
+    one = response_of(plain_text(couplings=rubber).replace(shaft, ""))
+    more = {"twin": {"at": "driver", "order": 2, "torque": "100 N m", "note": "not locked"}}
+    two = response_of(plain_text(couplings=rubber, excitations=more).replace(shaft, ""))
+    speeds = one.speed_rad_s
+    doubled = np.interp(speeds, two.speed_rad_s, two.normal.heat_w[0])
+    assert doubled[200] == pytest.approx(4.0 * one.normal.heat_w[0][200], rel=1e-2)
+
+
+@pytest.mark.parametrize("damper", ["tuned", "pendulum"])
+def test_a_train_with_a_swinging_damper_responds_with_the_damper_lost_too(damper):
+    """The link of a lost damper is not there: its rows are nan, all others stay at their links."""
+    rows = {
+        "tuned": {"kind": "tuned", "at": "load", "ring-inertia": 0.2, "tuned-frequency": "46 Hz", "viscous": 20},
+        "pendulum": {
+            "kind": "pendulum",
+            "at": "load",
+            "mass": 2,
+            "number": 2,
+            "suspension-radius": "160 mm",
+            "length": "40 mm",
+            "viscous": 0.5,
+        },
+    }
+    response = response_of(plain_text(dampers={"tamer": rows[damper]}))
+    lost = next(case for case in response.cases if case.name == "normal, tamer lost")
+    assert np.isnan(lost.alternating_torque_nm[place(response, "tamer")]).all()
+    at = int(np.argmin(np.abs(response.speed_rad_s - 1000 * RPM)))
+    omega = 2 * response.speed_rad_s[at]
+    expected = 60 * np.hypot(1, 0.02) / np.hypot(1 - omega**2 / (1e5 * 5 / 6), 0.02)
+    assert lost.alternating_torque_nm[place(response, "shaft"), at] == pytest.approx(expected, rel=1e-9)

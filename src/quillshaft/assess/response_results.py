@@ -9,6 +9,8 @@ from __future__ import annotations
 from dataclasses import field
 from typing import Literal
 
+import numpy as np
+
 from quillshaft.assess.results import Screening
 from quillshaft.graph.network import Bools, Floats
 from quillshaft.records import dataclass
@@ -295,9 +297,16 @@ class Response:
 
     @property
     def governing(self) -> Finding | None:
-        """The finding with a limit that is used most."""
-        limited = [item for item in self.findings if item.use is not None]
+        """The finding with a limit that is used most, those of the closings included."""
+        closed = [item.finding for item in self.closings if item.finding is not None]
+        limited = [item for item in (*self.findings, *closed) if item.use is not None]
         return max(limited, key=lambda item: item.use or 0.0, default=None)
+
+    @property
+    def unlimited(self) -> tuple[str, ...]:
+        """Links whose rule gives no limit at some of the judged speeds."""
+        rows = [(curve.link, curve.continuous_nm) for curve in self.limits if curve.continuous_nm is not None]
+        return tuple(link for link, row in rows if bool(np.isnan(row[self.continuous]).any()))
 
     @property
     def verdict(self) -> ResponseVerdict:
@@ -308,6 +317,7 @@ class Response:
         helped = all(dead.load_share is not None and dead.load_share > 0 for dead in self.restrictions.dead_loads)
         if False in failed or "not cleared" in statuses or (failed and not helped):
             return "fail"
-        if statuses - {"cleared by response"} or not any(item.limit is not None for item in self.findings):
+        limited = any(item.limit is not None for item in self.findings)
+        if statuses - {"cleared by response"} or not limited or self.unlimited:
             return "not judged"
         return "restricted" if failed else "pass"

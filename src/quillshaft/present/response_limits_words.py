@@ -83,7 +83,7 @@ def tolerable_note(response: Response) -> str:
     unit = torque_unit(response)
     return (
         f"How large a source may be, amplitude in {unit} at its own station with all others as they stand, before the "
-        "first limit is reached in the judged ranges."
+        "first limit of torque is reached in the judged ranges, normal case."
     )
 
 

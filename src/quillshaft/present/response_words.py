@@ -77,7 +77,11 @@ def _tally(response: Response, found: Standing) -> str:
     text += f", {len(found.failed)} {'exceeds' if len(found.failed) == 1 else 'exceed'} it"
     if found.failed and len(found.dead) == len(found.failed):
         text += ", only with a cylinder dead"
-    return text + (f", {silent} {'has' if silent == 1 else 'have'} none to be held against." if silent else ".")
+    text += f", {silent} {'has' if silent == 1 else 'have'} none to be held against." if silent else "."
+    if response.unjudged:
+        verb = "is" if len(response.unjudged) == 1 else "are"
+        text += f" {counted(len(response.unjudged), 'source')} without an amplitude {verb} not in it."
+    return text
 
 
 def fault_sentences(response: Response) -> list[str]:

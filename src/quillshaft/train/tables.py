@@ -23,6 +23,9 @@ from quillshaft.train.rows import Row
 WORST_TACHOMETER = 0.2
 
 
+MOST_ZETA = 0.2
+
+
 class TrainTable(Row):
     """[train]: identification and what bare numbers mean."""
 
@@ -80,6 +83,10 @@ class AssumptionsTable(Row):
 
     @model_validator(mode="after")
     def _rising(self) -> Self:
+        if self.zeta is not None and self.zeta[1] > MOST_ZETA:
+            raise complain(
+                "is no damping of steel and rubber", "damping ratios up to 20 %, ordinary 0.5 to 4 %", "zeta"
+            )
         if self.zeta is not None and not 0 < self.zeta[0] <= self.zeta[1]:
             raise complain("the two values do not rise from above zero", '["1 %", "2 %"]', "zeta")
         return self

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from dataclasses import replace
+from typing import Any
 
 import numpy as np
 
@@ -14,10 +16,22 @@ from quillshaft.assess.response.synthesis import extremes
 from quillshaft.assess.response_results import CaseResponse, LineShare
 from quillshaft.elements.coupling_duty import FLAT_HZ
 from quillshaft.graph.network import Bools, Floats, Ints
+from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.records import dataclass
 from quillshaft.sources.gas import Complexes
 from quillshaft.sources.line import TWO_PI
 from quillshaft.train.model import Operation
+
+BY_LINK = (
+    "mean_torque_nm",
+    "alternating_torque_nm",
+    "root_sum_square_nm",
+    "peak_torque_nm",
+    "weighted_torque_nm",
+    "twist_deg",
+    "heat_w",
+)
+BY_STATION = ("angle_deg", "irregularity", "inertia_torque_nm")
 
 
 @dataclass(frozen=True)
@@ -167,14 +181,28 @@ def _spread(values: Floats, places: tuple[int, ...], rows: int) -> Floats:
     return out
 
 
+def added_heat(loads: LoadSet, groups: list[tuple[Group, Floats]], single: list[Floats]) -> Floats:
+    """(rows, S) heat [W] of all sources: of one frequency they add by amplitude, of others by power.
+
+    groups: (rows, lines, S) of each; single: (rows, S) of each single source at its amplitude.
+    """
+    parts: dict[tuple[float, float], Floats] = {}
+    for group, heat in groups:
+        for number, harmonic in enumerate(group.harmonics.tolist()):
+            key = (round(harmonic * group.base, 6), 0.0)
+            parts[key] = parts.get(key, 0.0) + np.sqrt(np.maximum(heat[:, number], 0.0))
+    for item, heat in zip(loads.plain, single, strict=True):
+        order, constant = item.frequencies[0]
+        key = (round(abs(order), 6), round(constant if order >= 0 else -constant, 6))
+        parts[key] = parts.get(key, 0.0) + np.sqrt(np.maximum(heat, 0.0))
+    return np.asarray(sum(part**2 for part in parts.values()))
+
+
 def _heat(what: Combined, links: int) -> Floats:
     places = list(what.kept.links)
-    total = np.zeros((len(places), len(what.speed_rad_s)))
-    for _, own in what.groups:
-        total = total + own.heat_w.sum(axis=1)
-    for size, own in what.plain:
-        total = total + size**2 * own.heat_w[places].max(axis=1)
-    return _spread(total, what.kept.links, links)
+    groups = [(group, own.heat_w) for group, own in what.groups]
+    single = [size**2 * own.heat_w[places].max(axis=1) for size, own in what.plain]
+    return _spread(added_heat(what.loads, groups, single), what.kept.links, links)
 
 
 def _angles(what: Combined, where: Bools) -> Floats:
@@ -234,9 +262,8 @@ def _rings(what: Combined, heat: bool) -> dict[str, Floats]:
     if not rings:
         return {}
     if heat:
-        total = np.zeros((len(rings), len(what.speed_rad_s)))
-        total = sum((own.ring_w.sum(axis=1) for _, own in what.groups), total)
-        total = sum((size**2 * own.ring_w.max(axis=1) for size, own in what.plain), total)
+        groups = [(group, own.ring_w) for group, own in what.groups]
+        total = added_heat(what.loads, groups, [size**2 * own.ring_w.max(axis=1) for size, own in what.plain])
     else:
         total = what.rows(lambda own: own.ring_nm, len(rings)).half
         total = total / np.array([float(graph.scale[ring.station]) for ring in rings])[:, None]
@@ -255,3 +282,22 @@ def line_shares(loads: LoadSet, lines: StateLines, share: Floats) -> tuple[LineS
         source = item.source
         out.append(LineShare(source.name, source.name, abs(source.order), source.frequency_hz, size))
     return tuple(out)
+
+
+def aligned(made: CaseResponse, graph: TorsionalGraph, first: TorsionalGraph) -> CaseResponse:
+    """A case of a graph that lacks stations or links of the first, in the order of that; nan where it lacks them."""
+    links, wanted = [link.name for link in graph.links], [link.name for link in first.links]
+    if links == wanted and graph.stations == first.stations:
+        return made
+
+    def taken(name: str) -> Floats:
+        own, names = (list(graph.stations), list(first.stations)) if name in BY_STATION else (links, wanted)
+        rows = getattr(made, name)
+        out = np.full((len(names), rows.shape[1]), np.nan)
+        for place, item in enumerate(names):
+            if item in own:
+                out[place] = rows[own.index(item)]
+        return out
+
+    moved: dict[str, Any] = {name: taken(name) for name in (*BY_LINK, *BY_STATION)}
+    return replace(made, **moved)

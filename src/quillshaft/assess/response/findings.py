@@ -157,6 +157,10 @@ def _alternating(ground: Ground, place: int, curve: LimitCurve) -> Iterator[Find
         ("passing", curve.passing_nm),
     )
     most = 0.0
+    without = None if curve.continuous_nm is None else np.isnan(curve.continuous_nm) & ground.continuous
+    if without is not None and without.any():
+        words = f"{curve.basis}: it gives no limit at these speeds"
+        yield from worst(replace(ground, continuous=without), curve.link, check, unit, words, values, None)
     for zone, limit in zones:
         if zone == "continuous" or limit is not None:
             bound = None if limit is None else limit * factor
@@ -181,11 +185,20 @@ def _coupling(ground: Ground, place: int, coupling: Coupling) -> Iterator[Findin
             rated,
         )
     peak = None if ratings is None else ratings.peak_nm
+    known = bool(np.isfinite(ground.cases[0].mean_torque_nm[place]).all())
+    reason = missing if peak is None else "the mean torque is not known, so it cannot be judged"
     for zone in ("continuous", "passing"):
-        if zone == "continuous" or peak is not None:
-            basis = f"peak torque, {given if peak else missing}"
+        if zone == "continuous" or peak is not None or ground.train.operation.barred_rad_s:
+            basis = f"peak torque, {given if peak and known else reason}"
             yield from worst(
-                ground, name, "peak torque", "N·m", basis, lambda case: case.peak_torque_nm[place], peak, zone
+                ground,
+                name,
+                "peak torque",
+                "N·m",
+                basis,
+                lambda case: case.peak_torque_nm[place],
+                peak if known else None,
+                zone,
             )
     vibratory = None if ratings is None or ratings.vibratory_nm is None else ratings.vibratory_nm
     reference = 10.0 if ratings is None else ratings.reference_hz or 10.0
@@ -241,6 +254,17 @@ def _gear(ground: Ground, place: int, curve: LimitCurve, name: str) -> Iterator[
 
     text = "alternating over mean torque: above 1 the teeth separate (no reversal in continuous running, class rules)"
     yield from worst(ground, name, "tooth separation", "", f"{text}, {duty.edition or RECALLED}", ratio, 1.0)
+    if ground.train.operation.barred_rad_s:
+        words = "alternating over mean torque while a barred range is passed: above 1 teeth separate; no limit is kept"
+        yield from worst(_in_barred(ground), name, "tooth separation", "", words, ratio, None, "passing")
+
+
+def _in_barred(ground: Ground) -> Ground:
+    """The same with the declared barred ranges alone as speeds that are passed."""
+    inside = np.zeros(len(ground.speed_rad_s), dtype=bool)
+    for low, high in ground.train.operation.barred_rad_s:
+        inside |= (ground.speed_rad_s > low) & (ground.speed_rad_s < high)
+    return replace(ground, continuous=~inside)
 
 
 def _dampers(ground: Ground, places: dict[str, int]) -> Iterator[Finding]:

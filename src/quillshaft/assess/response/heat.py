@@ -7,6 +7,7 @@ from dataclasses import replace
 
 import numpy as np
 
+from quillshaft.assess.response.combine import added_heat
 from quillshaft.assess.response.evaluate import Kept, StateLines, evaluate
 from quillshaft.assess.response.loads import LoadCase, LoadSet
 from quillshaft.assess.response.states import State
@@ -102,10 +103,12 @@ def _reached(coupling: Coupling, heat_w: Floats) -> Floats:
 def _heat(loads: LoadSet, case: LoadCase, lines: StateLines, share: Floats, place: tuple[int, int]) -> Floats:
     """(S,) heat of a coupling: its row among what is kept of groups, and its place among all links."""
     row, link = place
-    total = sum((own.heat_w[row].sum(axis=0) for own in lines.groups[0]), np.zeros(len(share)))
-    for item, own in zip(loads.plain, lines.plain, strict=True):
-        total = total + item.amplitude_nm(share * case.load_share) ** 2 * own.heat_w[link].max(axis=0)
-    return np.asarray(total)
+    groups = [(group, own.heat_w[[row]]) for group, own in zip(loads.groups, lines.groups[0], strict=True)]
+    single = [
+        item.amplitude_nm(share * case.load_share) ** 2 * own.heat_w[[link]].max(axis=1)
+        for item, own in zip(loads.plain, lines.plain, strict=True)
+    ]
+    return np.asarray(added_heat(loads, groups, single)[0])
 
 
 def complex_springs(state: State, speed_rad_s: Floats) -> Complexes:

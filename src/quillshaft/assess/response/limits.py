@@ -61,11 +61,11 @@ def limit_curves(
     curves = []
     for number, link in enumerate(graph.links):
         element = elements.get(link.name)
-        mean = np.abs(np.nan_to_num(mean_nm[number]))
+        mean, known = np.abs(np.nan_to_num(mean_nm[number])), bool(np.isfinite(mean_nm[number]).all())
         if isinstance(element, Shaft):
-            curves.append(_shaft(train, element, mean, speed_ratio, assumed))
+            curves.append(_shaft(train, element, mean if known else None, speed_ratio, assumed))
         elif isinstance(element, Coupling):
-            curves.append(_coupling(element, mean))
+            curves.append(_coupling(element, mean, known))
         elif element is not None:
             at_rated = float(mean[int(np.argmin(np.abs(speed_ratio - 1.0)))])
             curves.append(_gear(train, element, mean, at_rated, assumed))
@@ -78,7 +78,7 @@ def _none(name: str, why: str) -> LimitCurve:
     return LimitCurve(name, None, None, None, why)
 
 
-def _shaft(train: Train, shaft: Shaft, mean: Floats, ratio: Floats, assumed: list[Assumed]) -> LimitCurve:
+def _shaft(train: Train, shaft: Shaft, mean: Floats | None, ratio: Floats, assumed: list[Assumed]) -> LimitCurve:
     own = shaft.strength or ShaftStrength()
     sections = _sections(shaft, own)
     per_nm = None if not sections else max(1.0 / item.modulus_m3 for item in sections) / MPA
@@ -103,7 +103,10 @@ def _shaft(train: Train, shaft: Shaft, mean: Floats, ratio: Floats, assumed: lis
     material = shaft.material
     if material is None or material.tensile_pa is None:
         return LimitCurve(shaft.name, None, None, per_nm, "its material states no tensile strength")
-    limits = [_by_rule(train, rule, own, item, material, mean, ratio, (shaft.name, assumed)) for item in sections]
+    if mean is None and rule == "endurance":
+        return LimitCurve(shaft.name, None, None, per_nm, "the endurance rule asks for the mean torque: give [power]")
+    steady = np.zeros(len(ratio)) if mean is None else mean
+    limits = [_by_rule(train, rule, own, item, material, steady, ratio, (shaft.name, assumed)) for item in sections]
     continuous = np.min([item.continuous_nm for item in limits], axis=0)
     passing = np.min([item.passing_nm for item in limits], axis=0)
     governing = min(limits, key=lambda item: float(np.nanmin(item.continuous_nm)))
@@ -212,7 +215,7 @@ def _piece_section(pieces: tuple[Piece, ...], number: int) -> StressSection:
     return section if steps or piece.fillet_m is None else replace(section, fillet_m=None)
 
 
-def _coupling(coupling: Coupling, mean: Floats) -> LimitCurve:
+def _coupling(coupling: Coupling, mean: Floats, known: bool) -> LimitCurve:
     """Vibratory torque permitted at 10 Hz and below, and in passing what the peak torque leaves beside the mean one."""
     ratings = coupling.ratings
     flat = np.ones(len(mean))
@@ -224,7 +227,7 @@ def _coupling(coupling: Coupling, mean: Floats) -> LimitCurve:
         continuous = permitted * flat
         by_frequency = f" up to 10 Hz, less above by √(10 Hz / f) (DIN 740-2, {RECALLED})" if weighs else ""
         words.append(f"vibratory torque {torque_words(permitted)}{by_frequency}")
-    if ratings is not None and ratings.peak_nm is not None:
+    if ratings is not None and ratings.peak_nm is not None and known:
         passing = np.maximum(ratings.peak_nm - mean, 0.0)
         words.append(f"peak torque {torque_words(ratings.peak_nm)} less the mean torque in passing")
     return LimitCurve(coupling.name, continuous, passing, None, "; ".join(words) or "its maker's ratings are not given")

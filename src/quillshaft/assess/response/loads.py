@@ -119,8 +119,16 @@ def collect_loads(train: Train, graph: TorsionalGraph, sources: tuple[Source, ..
 def _check_names(train: Train, sources: tuple[Source, ...], findings: Findings) -> None:
     names = sorted(name for source in sources for name in source.origins)
     off = set(train.excitations_off)
+    first: dict[tuple[str, str], str] = {}
     for amplitude in train.amplitudes:
-        if amplitude.source in off or any(source.answers_to(amplitude.source) for source in sources):
+        named = next((source for source in sources if source.answers_to(amplitude.source)), None)
+        if named is not None:
+            origin = amplitude.source if amplitude.source in named.origins else named.origins[0]
+            before = first.setdefault((named.name, origin), amplitude.source)
+            if before != amplitude.source:
+                message = f"is another name of the source that {before} already gives an amplitude"
+                findings.add(("amplitudes", amplitude.source), message, None, "one amplitude for each source")
+        if named is not None or amplitude.source in off:
             continue
         hint = did_you_mean(amplitude.source, names)
         message = f"there is no source of this name{hint}"

@@ -83,7 +83,7 @@ def respond(screening: Screening) -> Response:
         combination=COMBINATION,
         unjudged=loads.unjudged,
         assumed=tuple(assumed),
-        notes=(*loads.notes, *_notes(screening, swept)),
+        notes=(*loads.notes, *_notes(screening, swept, loads)),
         faults=damper_faults(ground),
     )
 
@@ -231,7 +231,7 @@ def _criteria(train: Train) -> list[Assumed]:
     return out
 
 
-def _notes(screening: Screening, swept: Swept) -> list[str]:
+def _notes(screening: Screening, swept: Swept, loads: LoadSet) -> list[str]:
     out = []
     if not swept.all_found:
         out.append("the speed grid reached its largest size before every peak was found to 0.1 %: peaks may be low")
@@ -239,6 +239,9 @@ def _notes(screening: Screening, swept: Swept) -> list[str]:
         out.append(
             "the grid holds the machine near rated speed only: start-up speeds are not steady and not shown here"
         )
+    several = [item.source.name for item in loads.plain if len(item.places) > 1 and not item.silent]
+    if several:
+        out.append(f"applied at whichever station of the shaft line is worst for each link: {', '.join(several)}")
     when = sorted({source.name for source in screening.sources if source.when != "continuous"})
     if when:
         out.append(f"not steady, so not here: {', '.join(when)} (they act at the start or in a fault)")

@@ -21,6 +21,7 @@ from quillshaft.sources.line import TWO_PI, slope
 
 RPM = 30.0 / math.pi
 MOST_PASSAGES = 12
+DECLARED = "declared barred by the file"
 
 
 def over_limit(ground: Ground, case: CaseResponse) -> dict[str, Bools]:
@@ -72,7 +73,8 @@ def barred_spans(ground: Ground) -> tuple[BarredSpan, ...]:
             found += [_span(ground, case, link, span, link in rule) for span in spans]
     share = operation.tachometer
     widened = [(start * (1 - share) * RPM, end * (1 + share) * RPM, words) for start, end, words in found]
-    return tuple(_merged(widened))
+    declared = [(start * RPM, end * RPM, DECLARED) for start, end in operation.barred_rad_s]
+    return tuple(_merged([*widened, *declared]))
 
 
 def _span(
@@ -109,15 +111,21 @@ def _merged(spans: list[tuple[float, float, str]]) -> list[BarredSpan]:
 
 
 def _few(words: list[str]) -> str:
+    if words == [DECLARED]:
+        return DECLARED
+    also = f"; partly {DECLARED}" if DECLARED in words else ""
+    words = [item for item in words if item != DECLARED]
     links = list(dict.fromkeys(item.split(":")[0] for item in words))
     refused = " (no barred range is accepted here: λ ≥ 0.8)" if any("λ ≥ 0.8" in item for item in words) else ""
     shown = ", ".join(links[:4]) + (f" and {len(links) - 4} more" if len(links) > 4 else "")
-    return f"continuous limit of {shown} exceeded{refused}"
+    return f"continuous limit of {shown} exceeded{refused}{also}"
 
 
 def lowest_idle(ground: Ground) -> tuple[float | None, str]:
     """Lowest speed [rpm] from which up to the judged range every continuous limit of torque holds in normal running."""
     limited = [curve for curve in ground.limits if curve.continuous_nm is not None]
+    if float(ground.speed_rad_s[0]) >= ground.train.operation.ranges_rad_s[0][0] * (1 - 1e-9):
+        return None, "the train runs at no speed below the judged range"
     if not limited:
         return None, "no limits are given, so no lowest idle can be stated"
     top = ground.train.operation.ranges_rad_s[0][0]

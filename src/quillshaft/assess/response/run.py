@@ -10,6 +10,7 @@ from quillshaft.assess.mean_torque import mean_torques
 from quillshaft.assess.response.combine import (
     Combined,
     Range,
+    aligned,
     combine,
     continuous_speeds,
     joined_range,
@@ -188,11 +189,19 @@ class _Work:
     couplings: tuple[int, ...]
     bands: list[dict[str, tuple[float, ...]]]
 
+    def places(self, state: State) -> tuple[tuple[int, ...], tuple[int, ...]]:
+        """The watched stations and couplings by their places in a state that may lack a damper's own."""
+        first, graph = self.states[0].graph, state.graph
+        links = [link.name for link in graph.links]
+        stations = tuple(graph.number(first.stations[number]) for number in self.watched)
+        return stations, tuple(links.index(first.links[number].name) for number in self.couplings)
+
     def kept(self, state: State, cases: tuple[LoadCase, ...]) -> tuple[Kept, ...]:
         """Everything of the normal case; of the others the stations watched, and the heat of what may get hot."""
-        whole = all_kept(state.graph) if state.kind == "normal" else Kept(self.watched, all_kept(state.graph).links)
+        every, stations = all_kept(state.graph), self.places(state)[0]
+        whole = every if state.kind == "normal" else Kept(stations, every.links)
         hot = tuple(n for n, link in enumerate(state.graph.links) if link.kind in ("coupling", "damper"))
-        return (whole, *[Kept(self.watched, hot)] * (len(cases) - 1))
+        return (whole, *[Kept(stations, hot)] * (len(cases) - 1))
 
     def part(self, speed_rad_s: Floats) -> _Part:
         """The lines of every state, and the alternating torques of every case, at speeds (S,)."""
@@ -218,7 +227,8 @@ class _Work:
                 torque = ranges[len(responses)]
                 kept = self.kept(state, own)[number]
                 what = Combined(state, self.loads, case, number, own_lines, speed_rad_s, share, torque, kept)
-                responses.append(combine(what, mean, self.watched, self.couplings))
+                made = combine(what, mean, *self.places(state))
+                responses.append(aligned(made, state.graph, self.states[0].graph))
                 states.append(state)
                 cases.append(case)
         shares = line_shares(self.loads, lines[0], share)

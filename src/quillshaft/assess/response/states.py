@@ -27,6 +27,9 @@ from quillshaft.train.read import train_of
 Asked = Literal["all", "worst", "one"]
 
 
+Pick = Callable[[TorsionalGraph], Network]
+
+
 @dataclass(frozen=True)
 class State:
     """A train ready to be shaken.
@@ -35,6 +38,7 @@ class State:
     springs_along      (S,) speeds -> (springs, S) stiffness where it follows speed; None elsewhere
     loads              all: every load case is asked for; worst: the normal one, and the dead cylinder that is worst
                        for the couplings in the normal state; one: the normal one alone
+    pick               which of the graph's networks it is: nominal, or an end of the tolerances
     judged             False of what is only shown beside the verdict
     """
 
@@ -50,9 +54,7 @@ class State:
     springs_along: Callable[[Floats], Floats] | None
     loads: Asked
     judged: bool
-
-
-Pick = Callable[[TorsionalGraph], Network]
+    pick: Pick
 
 
 def _nominal(graph: TorsionalGraph) -> Network:
@@ -88,7 +90,7 @@ def make_state(
     along = None if settled is None else _along(train, settled, temperature, pick, network)
     duties = mean_torques(train, graph) if settled is None else settled.duties
     plan = plan_elimination(network)
-    return State(name, kind, note, train, graph, network, damping, plan, duties, along, loads, judged)
+    return State(name, kind, note, train, graph, network, damping, plan, duties, along, loads, judged, pick)
 
 
 def with_magnifiers(train: Train, graph: TorsionalGraph, damping: Damping) -> Damping:
