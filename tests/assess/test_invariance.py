@@ -44,7 +44,7 @@ TABLES = {"assumptions": {"tolerances": "default"}, "operation": {}}
 
 
 @given(seeds)
-@settings(max_examples=100, deadline=None, derandomize=True)
+@settings(max_examples=60, deadline=None, derandomize=True)
 def test_the_order_of_rows_in_the_file_changes_nothing(seed):
     draft = random_draft(seed)
     extra = {"assumptions": {"tolerances": "default"}}
@@ -78,7 +78,7 @@ def test_the_order_of_rows_in_the_file_changes_nothing(seed):
 
 
 @given(seeds)
-@settings(max_examples=100, deadline=None, derandomize=True)
+@settings(max_examples=60, deadline=None, derandomize=True)
 def test_the_choice_of_the_reference_shaft_changes_nothing(seed):
     draft = random_draft(seed)
     draft.speeds.clear()

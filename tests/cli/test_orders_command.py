@@ -111,27 +111,25 @@ def test_the_mean_of_a_star_is_its_sum_over_the_cylinders(engine):
     assert lengths == pytest.approx([7.5 * value / 5 for value in sums], rel=1e-9)
 
 
-def test_the_report_holds_the_orders_and_the_data_of_the_engine(engine, tmp_path):
-    out = tmp_path / "report.pdf"
-    assert command("report", engine, "--orders", "--out", out).code == 0
-    text = " ".join(" ".join(page.extract_text() for page in PdfReader(out).pages).split())
-    assert "Orders of engine at 1500 rpm" in text
-    assert "Major orders: 3, 6, 9, 12" in text
-    assert "compression ratio 15" in text
-    assert "reciprocating mass 11.2 kg a cylinder" in text
-    assert "bore 170 mm" in text
-
-
-def test_the_report_lists_the_files_that_the_train_names(engine, tmp_path):
+def test_the_report_holds_the_orders_the_data_of_the_engine_and_the_files_that_the_train_names(engine, tmp_path):
     (tmp_path / "orders.csv").write_text("order, cosine [bar], sine [bar]\n0, 2.7, 0\n0.5, 1.5, 2.5\n")
     text = engine.read_text("utf-8")
     start = text.index("gas = {")
     engine.write_text(text[:start] + 'gas = { harmonics = "orders.csv" }' + text[text.index("\n", start) :], "utf-8")
     out = tmp_path / "report.pdf"
-    assert command("report", engine, "--out", out).code == 0
+    assert command("report", engine, "--orders", "--out", out).code == 0
     text = " ".join(" ".join(page.extract_text() for page in PdfReader(out).pages).split())
+    assert "Orders of engine at 1500 rpm" in text
+    assert "Major orders: 3, 6, 9, 12" in text
+    assert "reciprocating mass 11.2 kg a cylinder" in text
+    assert "bore 170 mm" in text
     assert "tangential-pressure harmonics orders.csv, 2 orders" in text
     assert "It names these files, and its digest covers them: orders.csv, SHA-256" in text
+
+
+def test_the_issued_report_of_the_engine_holds_its_compression_ratio():
+    pages = PdfReader(EXAMPLE.parents[1] / "reports" / "dairy-generator.pdf").pages
+    assert any("compression ratio 15" in " ".join(page.extract_text().split()) for page in pages[:8])
 
 
 def test_an_engine_of_which_no_cylinder_fires_still_shows_its_torques(engine, tmp_path):

@@ -88,7 +88,9 @@ def _silent(path: Path) -> list[str]:
     return found
 
 
-COMMANDS = {f"cli/main.py:{name}" for name in ("main", "screen", "report", "run")} | {"cli/respond_command.py:respond"}
+COMMANDS = {"cli/main.py:main", "cli/main.py:run"} | {
+    f"cli/{name}_command.py:{name}" for name in ("screen", "report", "respond")
+}
 """Commands end with an exit code: their docstring is the text of --help."""
 
 

@@ -8,7 +8,7 @@ from pathlib import Path
 import pytest
 from typer.testing import CliRunner
 
-from quillshaft.cli.main import app
+from quillshaft.cli.main import application
 from quillshaft.present.units import SHOWN
 from trains import train_text
 
@@ -18,7 +18,7 @@ GENERATOR = str(ROOT / "examples" / "dairy-generator.toml")
 
 
 def run(*arguments: str):
-    return CliRunner().invoke(app, ["windows", *arguments])
+    return CliRunner().invoke(application(["windows"]), ["windows", *arguments])
 
 
 def test_says_first_whether_the_nominal_stiffness_is_allowed_and_what_is_recommended():

@@ -65,7 +65,7 @@ def test_the_range_is_cut_into_cells_that_cover_it() -> None:
     assert edges[-1] * 30 / np.pi == pytest.approx(1500, rel=1e-12)
 
 
-@pytest.mark.parametrize("scale", np.geomspace(0.3, 6.0, 13).tolist())
+@pytest.mark.parametrize("scale", np.geomspace(0.3, 6.0, 9).tolist())
 def test_a_scaled_curve_is_allowed_only_where_screening_it_is_clear(scale: float) -> None:
     """Cells enclose what lies between their ends, so a window may be narrower than the truth, by under 1 %."""
     base = screened()
@@ -79,7 +79,7 @@ def test_a_scaled_curve_is_allowed_only_where_screening_it_is_clear(scale: float
         assert not clear(screened(scale))
 
 
-@pytest.mark.parametrize("factor", np.geomspace(0.02, 8.0, 9).tolist())
+@pytest.mark.parametrize("factor", np.geomspace(0.02, 8.0, 5).tolist())
 def test_another_link_is_judged_over_all_speeds(factor: float) -> None:
     base = screened()
     windows = stiffness_windows(base, "shaft")
@@ -97,6 +97,6 @@ def test_temperature_factors_are_those_of_the_coupling_over_its_service() -> Non
 def test_recommended_ranges_hold_cold_and_hot() -> None:
     windows = stiffness_windows(screened(), "flex")
     for low, high in windows.recommended:
-        for stiffness in (low * 1.001, (low + high) / 2, high * 0.999):
+        for stiffness in (low * 1.001, high * 0.999):
             for celsius in (-20.0, 30.0, 80.0):
                 assert clear(screened(stiffness / windows.nominal_nm_rad, temperature=celsius + 273.15))

@@ -121,7 +121,7 @@ def _moved(value: Any, factor: float) -> Any:
     return f"{float(match[1]) * factor!r} {match[2]}"
 
 
-@settings(max_examples=250)
+@settings(max_examples=120)
 @given(st.lists(st.tuples(st.sampled_from(NUMBERS), st.floats(-12, 12)), min_size=1, max_size=4))
 def test_numbers_moved_by_up_to_twelve_decades_are_refused_or_screened_soundly(moves):
     data = copy.deepcopy(BASES[moves[0][0][0]])

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import json
 import tomllib
+from functools import cache
 from pathlib import Path
 from typing import Any
 
@@ -30,6 +31,7 @@ from quillshaft.train.validate import GEAR_ROWS, PLAIN, ROWS
 from train_files import MORE, TEXT, complaint, edited
 
 EXAMPLES = sorted((Path(__file__).parents[2] / "examples").glob("*.toml"))
+built = cache(build_schema)
 CLASSES = [*ROWS.values(), *PLAIN.values(), *MACHINE_ROWS.values(), *GEAR_ROWS.values()]
 INNER = [PieceRow, KeywayRow, SplineRow, SectionRow, ThrowRow, EquivalentRow, RunningGearRow]
 INNER += [EpicyclicTeethRow, CylinderRow, RevisionRow]
@@ -65,21 +67,21 @@ def test_a_sound_file_keeps_the_schema(validator, text):
 
 @pytest.mark.parametrize("row", [*CLASSES, *INNER], ids=lambda row: row.__name__)
 def test_every_key_of_every_row_stands_in_the_schema_and_no_other(row):
-    definitions = build_schema()["$defs"]
+    definitions = built()["$defs"]
     assert set(definitions[row.__name__]["properties"]) == set(keys_of(row))
     assert definitions[row.__name__]["additionalProperties"] is False
 
 
 @pytest.mark.parametrize("row", CLASSES, ids=lambda row: row.__name__)
 def test_in_a_case_nothing_is_required_and_an_element_can_be_left_out(row):
-    partial = build_schema()["$defs"][f"case-{row.__name__}"]
+    partial = built()["$defs"][f"case-{row.__name__}"]
     assert "required" not in partial
     omit = {"omit"} if row not in PLAIN.values() else set()
     assert set(partial["properties"]) == set(keys_of(row)) | omit
 
 
 def test_every_table_stands_in_the_schema_and_in_its_cases():
-    schema = build_schema()
+    schema = built()
     case = schema["properties"]["cases"]["additionalProperties"]["properties"]
     assert set(schema["properties"]) == PLAIN_TABLES | KEYED_TABLES | {"schema", "cases"}
     assert set(case) == PLAIN_TABLES | KEYED_TABLES | {"because"}

@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, Annotated
 
 import typer
 
+from quillshaft.cli.options import JsonPath, TrainPath
 from quillshaft.cli.output import check_folder, check_target, console, refuse, write_many, write_whole
 
 if TYPE_CHECKING:
@@ -18,14 +19,12 @@ if TYPE_CHECKING:
 
 
 def compare(
-    train: Annotated[Path, typer.Argument(help="The train file (TOML).", show_default=False)],
+    train: TrainPath,
     case: Annotated[
         list[str] | None,
         typer.Option("--case", metavar="NAME", help="A case to set against the base; several stand side by side."),
     ] = None,
-    json: Annotated[
-        str | None, typer.Option("--json", metavar="PATH", help="Write the numbers as JSON; - is standard output.")
-    ] = None,
+    json: JsonPath = None,
     out: Annotated[
         Path | None, typer.Option(metavar="FILE.pdf", help="Write the before-and-after sheet as PDF.")
     ] = None,

@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, Annotated
 
 import typer
 
+from quillshaft.cli.options import Cases, JsonPath, Temperature, TrainPath
 from quillshaft.cli.output import check_target, console, refuse
 
 if TYPE_CHECKING:
@@ -17,21 +18,14 @@ if TYPE_CHECKING:
 
 
 def damped(
-    train: Annotated[Path, typer.Argument(help="The train file (TOML).", show_default=False)],
-    case: Annotated[
-        list[str] | None,
-        typer.Option("--case", metavar="NAME", help="Lay this case over the file; several are laid in turn."),
-    ] = None,
-    at: Annotated[
-        str | None, typer.Option(metavar="TEMP", help='Couplings cold, hot, or at one temperature: "65 degC".')
-    ] = None,
+    train: TrainPath,
+    case: Cases = None,
+    at: Temperature = None,
     high: Annotated[
         bool, typer.Option("--high", help="Take the high value of zeta for links that state no damping.")
     ] = False,
     every: Annotated[bool, typer.Option("--all", help="Show the modes above the highest source too.")] = False,
-    json: Annotated[
-        str | None, typer.Option("--json", metavar="PATH", help="Write the numbers as JSON; - is standard output.")
-    ] = None,
+    json: JsonPath = None,
 ) -> None:
     """Damped modes: frequency, damping ratio, decrement, energy lost by element; what grows is flagged."""
     from quillshaft.cli.study_output import put_text

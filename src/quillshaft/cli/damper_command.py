@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, Annotated
 
 import typer
 
+from quillshaft.cli.options import Cases, JsonPath, TrainPath
 from quillshaft.cli.output import check_target, console, refuse
 
 if TYPE_CHECKING:
@@ -16,20 +17,15 @@ if TYPE_CHECKING:
 
 
 def damper(
-    train: Annotated[Path, typer.Argument(help="The train file (TOML).", show_default=False)],
+    train: TrainPath,
     name: Annotated[
         str | None, typer.Option("--damper", metavar="NAME", help="This damper alone; else all of the file.")
     ] = None,
     mode: Annotated[
         int | None, typer.Option(metavar="N", help="Mode, of the train without the damper, to make it best for.")
     ] = None,
-    case: Annotated[
-        list[str] | None,
-        typer.Option("--case", metavar="NAME", help="Lay this case over the file; several are laid in turn."),
-    ] = None,
-    json: Annotated[
-        str | None, typer.Option("--json", metavar="PATH", help="Write the numbers as JSON; - is standard output.")
-    ] = None,
+    case: Cases = None,
+    json: JsonPath = None,
 ) -> None:
     """The best of each damper by rule and by minimisation; the train with it seized, lost and at half damping."""
     from quillshaft.cli.study_output import put_text

@@ -7,24 +7,20 @@ from typing import Annotated
 
 import typer
 
+from quillshaft.cli.options import Cases, JsonPath, TrainPath
 from quillshaft.cli.output import check_folder, check_target, console, refuse, write_many
 
 
 def drift(
-    train: Annotated[Path, typer.Argument(help="The train file (TOML).", show_default=False)],
+    train: TrainPath,
     datum: Annotated[
         str, typer.Option(metavar="PATH", help="The number that drifts, such as stations.impeller.inertia.")
     ],
     start: Annotated[str, typer.Option("--from", metavar="VALUE", help='Where it starts, such as "6.2 kg m^2".')],
     end: Annotated[str, typer.Option("--to", metavar="VALUE", help='Where it ends, such as "4.9 kg m^2".')],
     steps: Annotated[int, typer.Option(metavar="N", help="Values along the way, both ends among them.")] = 41,
-    case: Annotated[
-        list[str] | None,
-        typer.Option("--case", metavar="NAME", help="Lay this case over the file; several are laid in turn."),
-    ] = None,
-    json: Annotated[
-        str | None, typer.Option("--json", metavar="PATH", help="Write the numbers as JSON; - is standard output.")
-    ] = None,
+    case: Cases = None,
+    json: JsonPath = None,
     charts: Annotated[Path | None, typer.Option(metavar="DIR", help="Write the chart as a PDF file.")] = None,
 ) -> None:
     """Natural frequencies as one number of the file drifts, and where each interference first appears."""

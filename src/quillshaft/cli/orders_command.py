@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, Annotated
 
 import typer
 
+from quillshaft.cli.options import Cases, JsonPath, TrainPath
 from quillshaft.cli.output import check_folder, check_target, console, refuse, write_many
 
 if TYPE_CHECKING:
@@ -16,17 +17,12 @@ if TYPE_CHECKING:
 
 
 def orders(
-    train: Annotated[Path, typer.Argument(help="The train file (TOML).", show_default=False)],
+    train: TrainPath,
     machine: Annotated[
         str | None, typer.Option(metavar="NAME", help="The engine or compressor; needed where there are several.")
     ] = None,
-    case: Annotated[
-        list[str] | None,
-        typer.Option("--case", metavar="NAME", help="Lay this case over the file; several are laid in turn."),
-    ] = None,
-    json: Annotated[
-        str | None, typer.Option("--json", metavar="PATH", help="Write the numbers as JSON; - is standard output.")
-    ] = None,
+    case: Cases = None,
+    json: JsonPath = None,
     charts: Annotated[Path | None, typer.Option(metavar="DIR", help="Write the star diagrams as a PDF file.")] = None,
 ) -> None:
     """Orders of an engine or reciprocating compressor: phase-vector sums, major and minor, torques."""

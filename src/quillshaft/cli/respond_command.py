@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, Annotated
 
 import typer
 
+from quillshaft.cli.options import Cases, JsonPath, Temperature, TrainPath
 from quillshaft.cli.output import check_folder, check_target, console, refuse, write_many
 
 if TYPE_CHECKING:
@@ -17,23 +18,16 @@ if TYPE_CHECKING:
 
 
 def respond(
-    train: Annotated[Path, typer.Argument(help="The train file (TOML).", show_default=False)],
-    case: Annotated[
-        list[str] | None,
-        typer.Option("--case", metavar="NAME", help="Lay this case over the file; several are laid in turn."),
-    ] = None,
-    at: Annotated[
-        str | None, typer.Option(metavar="TEMP", help='Couplings cold, hot, or at one temperature: "65 degC".')
-    ] = None,
+    train: TrainPath,
+    case: Cases = None,
+    at: Temperature = None,
     link: Annotated[
         list[str] | None, typer.Option("--link", metavar="NAME", help="Show only this link in the long tables.")
     ] = None,
     every: Annotated[
         bool, typer.Option("--all", help="Show every finding, cases, limits and where to measure.")
     ] = False,
-    json: Annotated[
-        str | None, typer.Option("--json", metavar="PATH", help="Write the numbers as JSON; - is standard output.")
-    ] = None,
+    json: JsonPath = None,
     csv: Annotated[Path | None, typer.Option(metavar="DIR", help="Write torques and findings as CSV files.")] = None,
     charts: Annotated[Path | None, typer.Option(metavar="DIR", help="Write the charts as PDF files.")] = None,
     strict: Annotated[bool, typer.Option(help="Exit with 3 when anything fails or is left open.")] = False,

@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, Annotated
 
 import typer
 
+from quillshaft.cli.options import Cases, JsonPath, TrainPath
 from quillshaft.cli.output import check_folder, check_target, console, refuse, write_many
 
 if TYPE_CHECKING:
@@ -14,11 +15,8 @@ if TYPE_CHECKING:
 
 
 def tolerance(
-    train: Annotated[Path, typer.Argument(help="The train file (TOML).", show_default=False)],
-    case: Annotated[
-        list[str] | None,
-        typer.Option("--case", metavar="NAME", help="Lay this case over the file; several are laid in turn."),
-    ] = None,
+    train: TrainPath,
+    case: Cases = None,
     samples: Annotated[int, typer.Option(metavar="N", help="Variants of the train to draw.")] = 10_000,
     seed: Annotated[int, typer.Option(metavar="S", help="The same seed draws the same variants.")] = 1,
     distribution: Annotated[
@@ -28,9 +26,7 @@ def tolerance(
             help="uniform | triangular | normal (a tolerance is two standard deviations, cut off there).",
         ),
     ] = "uniform",
-    json: Annotated[
-        str | None, typer.Option("--json", metavar="PATH", help="Write the numbers as JSON; - is standard output.")
-    ] = None,
+    json: JsonPath = None,
     charts: Annotated[Path | None, typer.Option(metavar="DIR", help="Write the chart as a PDF file.")] = None,
 ) -> None:
     """Bounds of every natural frequency, the chance that each pair is not clear, and the data that decide it."""

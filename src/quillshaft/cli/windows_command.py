@@ -13,6 +13,7 @@ from typing import TYPE_CHECKING, Annotated
 
 import typer
 
+from quillshaft.cli.options import Cases, JsonPath, TrainPath
 from quillshaft.cli.output import check_folder, check_target, console, refuse, write_many, write_whole
 
 if TYPE_CHECKING:
@@ -24,15 +25,12 @@ if TYPE_CHECKING:
 
 
 def windows(
-    train: Annotated[Path, typer.Argument(help="The train file (TOML).", show_default=False)],
+    train: TrainPath,
     link: Annotated[
         list[str] | None,
         typer.Option("--link", metavar="NAME", help="The link to ask about; given twice: a map of both."),
     ] = None,
-    case: Annotated[
-        list[str] | None,
-        typer.Option("--case", metavar="NAME", help="Lay this case over the file; several are laid in turn."),
-    ] = None,
+    case: Cases = None,
     start: Annotated[
         list[str] | None,
         typer.Option("--from", metavar="STIFFNESS", help="Softest to search (default nominal/20); once a link."),
@@ -53,9 +51,7 @@ def windows(
         typer.Option(metavar="LOW HIGH", help="Stiffness factors over temperature (default: the coupling's table)."),
     ] = None,
     points: Annotated[int, typer.Option(metavar="N", help="Lines of the map of two links.")] = 97,
-    json: Annotated[
-        str | None, typer.Option("--json", metavar="PATH", help="Write the numbers as JSON; - is standard output.")
-    ] = None,
+    json: JsonPath = None,
     charts: Annotated[Path | None, typer.Option(metavar="DIR", help="Write the chart as a PDF file.")] = None,
 ) -> None:
     """Stiffness windows: which stiffnesses of a link clear everything, exactly, and which are recommended."""

@@ -28,6 +28,7 @@ from quillshaft.present.charts.spread import Box, free_spot
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
     from matplotlib.figure import Figure
+    from numpy.typing import NDArray
 
 LEFT_MM, RIGHT_MM = 15.0, 34.0
 HIGH_MM = 84.0
@@ -179,7 +180,7 @@ def _name_field(
     points = [(rpm[columns[at]], load[rows[at]]) for at in order.tolist()]
     box = _free(points, look.width_mm(text, bold=True), scales, taken, ratio=(rpm, load, ratio))
     x, y = (box[0] + box[2]) / 2.0, (box[1] + box[3]) / 2.0
-    if _inside_field(box, scales, (rpm, load, ratio)):
+    if _inside_field(np.array([box]), scales, (rpm, load, ratio))[0]:
         look.put(page, x, y, text, fontweight="bold", zorder=7, gid="contour", bbox=BACKING)
         return
     at = up.at(float(load[rows].mean()))
@@ -202,25 +203,25 @@ def _free(
         y = min(max(up.at(float(share)), up.start_mm + 2.2), up.start_mm + up.length_mm - 2.2)
         boxes.append((x - half, y - 1.7, x + half, y + 1.7))
     if ratio is not None:
-        boxes.sort(key=lambda box: not _inside_field(box, scales, ratio))
+        inside = _inside_field(np.array(boxes), scales, ratio)
+        boxes = [boxes[at] for at in np.argsort(~inside, kind="stable").tolist()]
     box = boxes[free_spot(boxes, taken)]
     taken.append(box)
     return box
 
 
-def _inside_field(box: Box, scales: tuple[Scale, Scale], field: tuple[Floats, Floats, Floats]) -> bool:
-    """True where the teeth separate at all corners of a box [mm]."""
+def _inside_field(
+    boxes: Floats, scales: tuple[Scale, Scale], field: tuple[Floats, Floats, Floats]
+) -> NDArray[np.bool_]:
+    """(boxes,) True where the teeth separate at all corners of a box; boxes (boxes, 4) left, low, right, high [mm]."""
     rpm, load, ratio = field
     across, up = scales
-    for x in (box[0], box[2]):
-        for y in (box[1], box[3]):
-            value = across.low + (x - across.start_mm) / across.length_mm * (across.high - across.low)
-            share = up.low + (y - up.start_mm) / up.length_mm * (up.high - up.low)
-            column = int(np.argmin(np.abs(rpm - value)))
-            row = int(np.argmin(np.abs(load - share)))
-            if ratio[row, column] < 1.0:
-                return False
-    return True
+    values = across.low + (boxes[:, (0, 2)] - across.start_mm) / across.length_mm * (across.high - across.low)
+    shares = up.low + (boxes[:, (1, 3)] - up.start_mm) / up.length_mm * (up.high - up.low)
+    columns = np.argmin(np.abs(rpm - values[..., None]), axis=-1)
+    rows = np.argmin(np.abs(load - shares[..., None]), axis=-1)
+    inside: NDArray[np.bool_] = np.all(ratio[rows[:, :, None], columns[:, None, :]] >= 1.0, axis=(1, 2))
+    return inside
 
 
 def _note(ratio: Floats) -> str:
