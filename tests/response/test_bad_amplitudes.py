@@ -69,3 +69,14 @@ def test_two_amplitudes_of_one_source_are_refused():
     message = refused(text)
     assert '[amplitudes."load 1x"]' in message
     assert "another name of the source that driver 1x" in message
+
+
+def test_an_amplitude_that_stands_for_another_source_on_the_same_line_is_listed_as_assumed():
+    text = plain_text(
+        machines={"pump": {"kind": "centrifugal-pump", "at": "load", "vanes": 5}},
+        excitations={"wave": {"at": "load", "order": 5, "torque": "70 N m"}},
+    )
+    response = response_of(text)
+    (found,) = [item for item in response.assumed if item.element == "pump vane-pass"]
+    assert found.value == "that of wave"
+    assert "on the same line" in found.why

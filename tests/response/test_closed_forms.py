@@ -91,6 +91,30 @@ def test_excitations_locked_in_phase_are_synthesised_as_one_wave():
     assert found < abs(one) + abs(three) - 1e-3
 
 
+def test_what_is_locked_with_a_silent_excitation_is_of_unknown_phase_and_the_notes_say_so():
+    """An excitation without torque has no wave to keep a phase to: amplitudes add, as of any two single sources."""
+    more = {
+        "third": {"at": "driver", "order": 3},
+        "shake": {"at": "driver", "order": 1, "torque": "100 N m", "phase": "180 deg", "locked-with": "third"},
+    }
+    response = response_of(plain_text(excitations=more))
+    assert any("shake is locked with third" in note and "unknown phase" in note for note in response.notes)
+    assert not response.groups
+    assert "third" in response.unjudged
+    at = int(np.argmin(np.abs(response.speed_rad_s - 1000.0 * RPM)))
+    expected = two_disc_torque(response.speed_rad_s[at], 0.02, 100.0)
+    assert response.normal.alternating_torque_nm[0, at] == pytest.approx(expected, rel=1e-12)
+
+
+def test_two_locked_with_a_silent_excitation_keep_their_phase_to_each_other():
+    """cos φ and −cos φ at one place cancel, whatever the third does."""
+    one = {"at": "driver", "order": 1, "torque": "100 N m", "locked-with": "third"}
+    more = {"third": {"at": "driver", "order": 3}, "shake": one, "against": {**one, "phase": "180 deg"}}
+    response = response_of(plain_text(excitations=more))
+    assert any("to each other only" in note for note in response.notes)
+    assert response.normal.alternating_torque_nm[0].max() < 1e-9
+
+
 def test_a_gear_carries_what_the_pinion_side_leaves():
     """Dense solve of three referred discs; the rigid mesh carries pinion shaft torque less the pinion's inertia."""
     stations = {"motor": 2.0, "pinion": 0.3, "wheel": 4.0, "load": 9.0}

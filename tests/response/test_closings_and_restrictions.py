@@ -77,6 +77,18 @@ def test_lowest_idle_is_above_the_last_speed_beyond_a_continuous_limit():
     assert response.restrictions.lowest_idle_rpm == pytest.approx(over.max() * 1.02, rel=0.02)
 
 
+def test_lowest_idle_holds_at_the_ends_of_the_tolerances_too():
+    """A shaft 12 % stiffer has its resonance at √1.12 of the nominal speed: idle keeps clear of that."""
+    shaft = {"between": ["driver", "load"], "stiffness": 1e5, "loss-factor": 0.02, "permitted-torque": 300.0}
+    operation = {"range": ["1650 rpm", "1900 rpm"], "idle": "700 rpm"}
+    exact, loose = (
+        response_of(plain_text(order=4, shafts={"shaft": {**shaft, **more}}, operation=operation))
+        for more in ({}, {"tolerance": "12 %"})
+    )
+    wanted = exact.restrictions.lowest_idle_rpm * math.sqrt(1.12)
+    assert loose.restrictions.lowest_idle_rpm == pytest.approx(wanted, rel=0.02)
+
+
 def test_tolerable_ripple_put_back_uses_the_limit_exactly():
     response = limited(2000.0)
     row = next(item for item in response.restrictions.tolerable if item.source == "shake")

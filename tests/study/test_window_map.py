@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 import random
 
 import pytest
@@ -48,7 +49,7 @@ def two_links(seed: int):
 def test_every_stiffness_in_a_proven_box_is_clear_when_screened():
     inside = 0
     rng = random.Random(3)
-    for found in [found for found in map(two_links, range(300, 360)) if found is not None][:20]:
+    for found in itertools.islice((found for found in map(two_links, range(300, 360)) if found is not None), 20):
         case, other, chart = found
         for box in chart.boxes:
             for _ in range(4):

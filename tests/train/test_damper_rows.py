@@ -146,6 +146,7 @@ def test_a_vibratory_torque_without_its_frequency_is_taken_at_10_hz_and_that_is_
         ({"vibratory-torque": "32 kN m"}, "lies above rated-torque"),
         ({"permitted-heat": "70 K"}, "a heat is wanted"),
         ({"heat-rise": "620 W"}, 'for example "70 K"'),
+        ({"ambient": "400 degC"}, "-60 degC to 120 degC"),
         ({"max-speed": "22 Hz"}, 'max-speed = "22 Hz"'),
     ],
 )

@@ -329,6 +329,8 @@ def test_criteria_of_strength_and_duty():
         ({"strength": {"notch": "kuhn"}}, "peterson | neuber"),
         ({"strength": {"surface": "cast"}}, "ground | machined | hot-rolled | forged"),
         ({"strength": {"edition": 2015}}, "strength.edition = 2015: is not text"),
+        ({"strength": {"edition": ""}}, "strength.edition"),
+        ({"duty": {"edition": ""}}, "duty.edition"),
         ({"strength": {"sefety": 2}}, 'did you mean "safety"?'),
         ({"strength": "endurance"}, '{ rule = "endurance", safety = 1.5 }'),
         ({"duty": {"gear-share": "0 %"}}, "above 0 % and up to 100 %"),

@@ -102,10 +102,12 @@ def source_lines(screening: Screening, top_rpm: float) -> tuple[SourceLine, ...]
     groups: dict[tuple[int, float], list[Source]] = {}
     for source in screening.sources:
         groups.setdefault(_line_key(source), []).append(source)
-    return tuple(_line(screening, group, top_rpm) for group in groups.values())
+    pairs = screening.not_clear()
+    return tuple(_line(screening, group, pairs, top_rpm) for group in groups.values())
 
 
-def _line(screening: Screening, group: list[Source], top_rpm: float) -> SourceLine:
+def _line(screening: Screening, group: list[Source], pairs: tuple[Interference, ...], top_rpm: float) -> SourceLine:
+    """The line of a group of sources; pairs are those not clear."""
     source = group[0]
     rise = slope(source)
     corners = {0.0, top_rpm / RPM}
@@ -125,7 +127,7 @@ def _line(screening: Screening, group: list[Source], top_rpm: float) -> SourceLi
         tuple(high for _, high in edges),
         all(member.major is False for member in group),
         all(member.when != "continuous" for member in group),
-        tuple(pair for pair in screening.not_clear() if any(m.name == pair.source for m in group)),
+        tuple(pair for pair in pairs if any(m.name == pair.source for m in group)),
     )
 
 

@@ -57,7 +57,7 @@ def collect_sources(train: Train, graph: TorsionalGraph) -> SourceSet:
         raise TrainFileError(tuple(findings.problems))
     on = [source for source in sources if _reason_off(source, train) is None]
     off = [(source, reason) for source in sources if (reason := _reason_off(source, train)) is not None]
-    return SourceSet(_merged(on), tuple(off))
+    return SourceSet(_merged(on, _phased(train)), tuple(off))
 
 
 def _reason_off(source: Source, train: Train) -> str | None:
@@ -124,8 +124,14 @@ def _check_names(sources: list[Source], train: Train, findings: Findings) -> Non
                 findings.add(("criteria", key, kind), f"no source is of this kind{hint}", None, allowed)
 
 
-def _merged(sources: list[Source]) -> tuple[Source, ...]:
-    """Sources on the same stations and the same line as one row that lists all its origins."""
+def _phased(train: Train) -> frozenset[str]:
+    """Excitations that keep a phase, and what they keep it to."""
+    locked = [item for item in train.excitations if item.locked_with is not None]
+    return frozenset(name for item in locked for name in (item.name, item.locked_with or ""))
+
+
+def _merged(sources: list[Source], phased: frozenset[str]) -> tuple[Source, ...]:
+    """Sources on the same stations and the same line as one row that lists all its origins, `phased` ones apart."""
     rows: dict[object, Source] = {}
     for source in sources:
         sign = -1.0 if (source.order or source.frequency_hz) < 0 else 1.0
@@ -135,6 +141,7 @@ def _merged(sources: list[Source]) -> tuple[Source, ...]:
             round(sign * source.frequency_hz, 9),
             source.band,
             source.when,
+            source.name if source.name in phased else "",
         )
         first = rows.get(line)
         if first is None:

@@ -69,13 +69,9 @@ def slope(source: Source) -> float:
 
 def frequencies_over(source: Source, low_rad_s: float, high_rad_s: float) -> tuple[float, float]:
     """Lowest and highest frequency [Hz] of a source while the speed runs from low to high [rad/s]."""
-    rise = slope(source)
-    edges = [
-        rise * speed + source.frequency_hz * factor
-        for speed in (low_rad_s, high_rad_s)
-        for factor in ((1.0 - source.band, 1.0 + source.band) if source.frequency_hz else (1.0,))
-    ]
-    low, high = min(edges), max(edges)
+    ends = (slope(source) * low_rad_s, slope(source) * high_rad_s)
+    bands = (source.frequency_hz * (1.0 - source.band), source.frequency_hz * (1.0 + source.band))
+    low, high = min(ends) + min(bands), max(ends) + max(bands)
     if low <= 0.0 <= high:
         return 0.0, max(-low, high)
     return min(abs(low), abs(high)), max(abs(low), abs(high))

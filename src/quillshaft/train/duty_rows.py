@@ -8,9 +8,9 @@ from quillshaft.train.duty_model import MeanStress, PropulsionForm, PropulsionKi
 from quillshaft.train.fields import (
     Amplitude,
     Angle,
+    Edition,
     Length,
     LengthOrZero,
-    Line,
     Share,
     Stress,
     Torque,
@@ -123,7 +123,7 @@ class StrengthTable(Row):
     safety: Safety | None = None
     notch: Literal["peterson", "neuber"] | None = None
     surface: Surface | None = None
-    edition: Line | None = None
+    edition: Edition | None = None
 
 
 class DutyTable(Row):
@@ -134,7 +134,7 @@ class DutyTable(Row):
     inertia_torque: TorqueRatio | None = None
     electrical_angle: Angle | None = None
     irregularity: Share | None = None
-    edition: Line | None = None
+    edition: Edition | None = None
 
     @model_validator(mode="after")
     def _plausible(self) -> Self:

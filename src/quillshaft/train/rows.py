@@ -49,6 +49,8 @@ from quillshaft.train.gear_fields import Backlash, ContactRatio, GearStiffness, 
 from quillshaft.train.model import FIXED
 
 WHOLE_TURN_RAD = 6.283185307179587
+AIR_K = (213.15, 393.15)
+"""Coldest and hottest air that a coupling may stand in: -60 to 120 degC."""
 LOCKED = 'locked-with = "engine" beside it: a reciprocating machine or another excitation'
 
 
@@ -185,6 +187,8 @@ class CouplingRow(SpringRow):
                 raise complain("operating-temperature needs the temperature table that it is read in")
             if self.operating_temperature[0] >= self.operating_temperature[1]:
                 raise complain("operating-temperature wants the cold value first, then the hot one")
+        if self.ambient is not None and not AIR_K[0] <= self.ambient <= AIR_K[1]:
+            raise complain("is no temperature of the air about a coupling", "-60 degC to 120 degC", "ambient")
         self._ratings()
         return self
 

@@ -64,8 +64,8 @@ def plain_source(
     train: Train, graph: TorsionalGraph, source: Source, mean: MeanTorques, findings: Findings, notes: list[str]
 ) -> tuple[PlainSource, tuple[Assumed, ...]]:
     """The source with its amplitude, 0 where the file gives none, and what was assumed for it."""
-    size = _stated(train, graph, source, mean, findings)
-    assumed: tuple[Assumed, ...] = ()
+    size, missing = _stated(train, graph, source, mean, findings)
+    assumed = _stood_for(source, missing) if size is not None else ()
     if size is None and train.ordinary_amplitudes:
         size, assumed = _ordinary(graph, source, mean)
     silent = size is None
@@ -91,10 +91,20 @@ def plain_source(
 Size = tuple[float, float, float | None, str]
 
 
-def _stated(train: Train, graph: TorsionalGraph, source: Source, mean: MeanTorques, findings: Findings) -> Size | None:
-    """(constant, following the mean torque [N·m], the mean torque there, words) of what the file states."""
+def _stood_for(source: Source, missing: list[str]) -> tuple[Assumed, ...]:
+    """What is taken of sources on the same line as others that have an amplitude, and without one themselves."""
+    others = " and ".join(name for name in source.origins if name not in missing)
+    why = f"not given: the amplitude of {others}, on the same stations and the same line, stands for it"
+    return tuple(Assumed(name, "amplitude", f"that of {others}", why) for name in missing)
+
+
+def _stated(
+    train: Train, graph: TorsionalGraph, source: Source, mean: MeanTorques, findings: Findings
+) -> tuple[Size | None, list[str]]:
+    """(constant, following the mean torque [N·m], the mean torque there, words) stated, and the names without it."""
     reference = reference_torque(graph, source, mean)
     total: Size | None = None
+    missing = []
     for name in source.origins:
         given: tuple[float | None, float | None] = (None, None)
         path: tuple[str, ...] = ("amplitudes", name)
@@ -105,9 +115,11 @@ def _stated(train: Train, graph: TorsionalGraph, source: Source, mean: MeanTorqu
         if given == (None, None) and excitation is not None:
             given, path = (excitation.torque_nm, excitation.torque_share), ("excitations", name, "torque")
         size = _of_torque(given, reference, path, findings) or _of_joint(train, graph, name, excitation)
-        if size is not None:
+        if size is None:
+            missing.append(name)
+        else:
             total = size if total is None else _sum(total, size)
-    return total
+    return total, missing
 
 
 def _sum(a: Size, b: Size) -> Size:

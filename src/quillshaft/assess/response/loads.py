@@ -112,8 +112,8 @@ def collect_loads(train: Train, graph: TorsionalGraph, sources: tuple[Source, ..
     if findings.problems:
         raise TrainFileError(tuple(findings.problems))
     unjudged = tuple(item.source.name for item in silent)
-    rest = (tuple(silent), unjudged, tuple(assumed), tuple(notes))
-    return _locked(train, machine_groups, plain, rest, findings)
+    joined, single = _locked(train, machine_groups, plain, findings, notes)
+    return LoadSet(joined, single, tuple(silent), unjudged, tuple(assumed), tuple(notes))
 
 
 def _check_names(train: Train, sources: tuple[Source, ...], findings: Findings) -> None:
@@ -154,13 +154,12 @@ def _machine_group(machine: Machine, graph: TorsionalGraph, sources: list[Source
 
 
 def _locked(
-    train: Train,
-    groups: list[Group],
-    plain: list[PlainSource],
-    rest: tuple[tuple[PlainSource, ...], tuple[str, ...], tuple[Assumed, ...], tuple[str, ...]],
-    findings: Findings,
-) -> LoadSet:
-    """Excitations that follow a machine or one another in phase join its group, or make one of their own."""
+    train: Train, groups: list[Group], plain: list[PlainSource], findings: Findings, notes: list[str]
+) -> tuple[tuple[Group, ...], tuple[PlainSource, ...]]:
+    """Groups, and single sources that are left: what follows a machine or an excitation in phase is in its group.
+
+    Excitations that follow one another make a group of their own.
+    """
     locked = {item.name: item for item in train.excitations if item.locked_with is not None}
     chosen: dict[str, list[PlainSource]] = {}
     roots = {_root(item, locked) for item in locked.values()}
@@ -173,13 +172,23 @@ def _locked(
     for root, members in chosen.items():
         if root in names:
             groups = [_joined(group, members, findings) if group.name == root else group for group in groups]
-        else:
+            continue
+        if all(source.source.name != root for source in members):
+            notes.append(_alone(root, members))
+        if len(members) > 1:
             groups.append(_own_group(root, members))
     if findings.problems:
         raise TrainFileError(tuple(findings.problems))
-    taken = {source.source.name for members in chosen.values() for source in members}
-    single = tuple(source for source in plain if source.source.name not in taken)
-    return LoadSet(tuple(groups), single, *rest)
+    taken = {line.source.name for group in groups for line in group.lines}
+    return tuple(groups), tuple(source for source in plain if source.source.name not in taken)
+
+
+def _alone(root: str, members: list[PlainSource]) -> str:
+    """What is said of excitations that follow a machine or excitation of which no steady torque is known."""
+    names = " and ".join(source.source.name for source in members)
+    if len(members) > 1:
+        return f"{names} are locked with {root}, which gives no steady torque: they keep their phase to each other only"
+    return f"{names} is locked with {root}, which gives no steady torque: it is taken as of unknown phase"
 
 
 def _root(item: Excitation, locked: dict[str, Excitation]) -> str:

@@ -22,6 +22,8 @@ from quillshaft.sources.line import TWO_PI, slope
 RPM = 30.0 / math.pi
 MOST_PASSAGES = 12
 DECLARED = "declared barred by the file"
+RUNNING = ("normal", "temperature", "tolerance")
+"""Kinds of case that are normal running: what is asked of it holds hot, cold and at the ends of the tolerances."""
 
 
 def over_limit(ground: Ground, case: CaseResponse) -> dict[str, Bools]:
@@ -66,7 +68,7 @@ def barred_spans(ground: Ground) -> tuple[BarredSpan, ...]:
     running = (ground.speed_rad_s >= low * (1 - 1e-9)) & (ground.speed_rad_s <= high * (1 + 1e-9))
     found: list[tuple[float, float, str]] = []
     for case in ground.judged:
-        if case.kind not in ("normal", "temperature", "tolerance"):
+        if case.kind not in RUNNING:
             continue
         for link, bad in over_limit(ground, case).items():
             spans = _spans(ground.speed_rad_s, bad & running)
@@ -130,8 +132,9 @@ def lowest_idle(ground: Ground) -> tuple[float | None, str]:
         return None, "no limits are given, so no lowest idle can be stated"
     top = ground.train.operation.ranges_rad_s[0][0]
     bad = np.zeros(len(ground.speed_rad_s), dtype=bool)
-    for own in over_limit(ground, ground.cases[0]).values():
-        bad |= own
+    for case in ground.judged:
+        for own in over_limit(ground, case).values() if case.kind in RUNNING else ():
+            bad |= own
     below = np.flatnonzero(ground.speed_rad_s <= top * (1 + 1e-9))
     wrong = [index for index in below.tolist() if bad[index]]
     if not wrong:
