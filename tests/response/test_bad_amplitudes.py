@@ -79,4 +79,4 @@ def test_an_amplitude_that_stands_for_another_source_on_the_same_line_is_listed_
     response = response_of(text)
     (found,) = [item for item in response.assumed if item.element == "pump vane-pass"]
     assert found.value == "that of wave"
-    assert "on the same line" in found.why
+    assert "along the same line" in found.why

@@ -94,7 +94,7 @@ Size = tuple[float, float, float | None, str]
 def _stood_for(source: Source, missing: list[str]) -> tuple[Assumed, ...]:
     """What is taken of sources on the same line as others that have an amplitude, and without one themselves."""
     others = " and ".join(name for name in source.origins if name not in missing)
-    why = f"not given: the amplitude of {others}, on the same stations and the same line, stands for it"
+    why = f"not given: {others} acts on the same stations along the same line, and stands for it"
     return tuple(Assumed(name, "amplitude", f"that of {others}", why) for name in missing)
 
 
