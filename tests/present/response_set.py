@@ -106,7 +106,8 @@ def settled(
 ) -> Response:
     """The set with these findings, and every open interference closed in this way."""
     response = generator()
-    restrictions = response.restrictions if barred else replace(response.restrictions, barred=())
+    restrictions = replace(response.restrictions, lowest_idle_rpm=None)
+    restrictions = restrictions if barred else replace(restrictions, barred=())
     finding = None if status.startswith("not judged") else KEPT
     closings = tuple(
         Closing(source, mode, status, f"mode {mode} with {source}: 80 % of the limit in ring", finding)

@@ -53,6 +53,19 @@ def test_a_limit_exceeded_only_with_a_cylinder_dead_asks_for_less_load() -> None
     assert "1 exceeds it, only with a cylinder dead" in said[2]
 
 
+@pytest.mark.parametrize(("lowest", "outcome"), [(690.0, "pass"), (700.4, "pass"), (712.3, "restricted")])
+def test_a_stated_idle_below_the_lowest_is_a_restriction_on_page_one(lowest, outcome) -> None:
+    response = settled()
+    assert response.screening.train.operation.idle_rad_s == pytest.approx(700 * math.pi / 30)
+    found = replace(response, restrictions=replace(response.restrictions, lowest_idle_rpm=lowest))
+    assert standing(found).verdict == outcome
+    said = words.answer_sentences(found)[0]
+    assert (said == "Passes with restriction: idle at 713 rpm or above.") == (outcome == "restricted")
+    assert any("700 rpm lies BELOW it" in line for line in limits.restriction_sentences(found)) == (
+        outcome == "restricted"
+    )
+
+
 def test_a_damper_at_fault_is_told_beside_the_verdict() -> None:
     faulty = replace(settled(), faults=(replace(FAILED, case="normal, nose seized", case_kind="damper"),))
     assert standing(faulty).verdict == "pass"

@@ -2,9 +2,13 @@
 
 from __future__ import annotations
 
+import math
+
 from quillshaft.assess.response_results import Closing, Finding, Response, ResponseVerdict
 from quillshaft.assess.results import Interference
 from quillshaft.records import dataclass
+
+RPM = 30.0 / math.pi
 
 
 @dataclass(frozen=True)
@@ -15,6 +19,7 @@ class Standing:
     not_cleared   interferences that the response does not clear; not_judged: those it could not judge
     unclosed      interferences of the screening without a closing: open as well
     barred        True where barred speed ranges must be kept, declared by the file or found here
+    low_idle      True where the stated idle lies below the lowest at which every continuous limit holds
     limited       True where at least one finding but mean torques has a limit
     """
 
@@ -25,6 +30,7 @@ class Standing:
     not_judged: tuple[Closing, ...]
     unclosed: tuple[Interference, ...]
     barred: bool
+    low_idle: bool
     limited: bool
 
     @property
@@ -40,7 +46,7 @@ class Standing:
 
 def standing(response: Response) -> Standing:
     """The response's own verdict; not judged too where an interference has no closing or only mean torques have a
-    limit, restricted too where barred ranges must be kept.
+    limit, restricted too where barred ranges must be kept or the idle raised.
     """
     screening = response.screening
     closed = {(item.source, item.mode) for item in response.closings}
@@ -49,10 +55,11 @@ def standing(response: Response) -> Standing:
     )
     limited = any(item.limit is not None and item.check != "mean torque" for item in response.findings)
     barred = bool(response.restrictions.barred) or screening.gravest_verdict == "barred"
+    low_idle = idle_too_low(response)
     verdict = response.verdict
     if verdict in ("pass", "restricted") and (unclosed or not limited):
         verdict = "not judged"
-    elif verdict == "pass" and barred:
+    elif verdict == "pass" and (barred or low_idle):
         verdict = "restricted"
     return Standing(
         verdict,
@@ -62,5 +69,12 @@ def standing(response: Response) -> Standing:
         tuple(item for item in response.closings if item.status.startswith("not judged")),
         unclosed,
         barred,
+        low_idle,
         limited,
     )
+
+
+def idle_too_low(response: Response) -> bool:
+    """True where the stated idle lies below the lowest at which every continuous limit holds, by 0.5 rpm and more."""
+    idle, lowest = response.screening.train.operation.idle_rad_s, response.restrictions.lowest_idle_rpm
+    return idle is not None and lowest is not None and idle * RPM < lowest - 0.5

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from quillshaft.assess.response_results import DeadLoad, Gauge, Response, Tolerable
+from quillshaft.assess.response_standing import idle_too_low
 from quillshaft.present.response_values import RPM, torque_text, torque_unit
 from quillshaft.present.units import SHOWN
 from quillshaft.present.words import counted, hertz, number, percent, plain
@@ -32,9 +33,8 @@ def _idle(response: Response) -> str:
     if found.lowest_idle_rpm is None:
         return f"Lowest idle: not known; {text}."
     idle = response.screening.train.operation.idle_rad_s
-    lowest = found.lowest_idle_rpm
-    line = f"Lowest idle: {lowest:.0f} rpm; {text}."
-    if idle is not None and idle * RPM < lowest - 0.5:
+    line = f"Lowest idle: {found.lowest_idle_rpm:.0f} rpm; {text}."
+    if idle is not None and idle_too_low(response):
         line += f" The stated idle of {idle * RPM:.0f} rpm lies BELOW it."
     return line
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 import re
 from collections.abc import Sequence
 
@@ -58,11 +59,13 @@ def verdict_sentence(response: Response, found: Standing) -> str:
 
 
 def restriction_words(response: Response, found: Standing) -> str:
-    """Which speed ranges must be barred, and how much load may be kept with a cylinder dead."""
+    """Which speed ranges must be barred, where idle must lie, how much load may be kept with a cylinder dead."""
     spans = [f"{span.from_rpm:.0f} to {span.to_rpm:.0f} rpm" for span in response.restrictions.barred]
     parts = [f"{_listed(spans)} must be barred"] if spans else []
     if found.barred and not spans:
         parts.append("the barred speed ranges of the file must be kept")
+    if found.low_idle:
+        parts.append(f"idle at {math.ceil(response.restrictions.lowest_idle_rpm or 0.0)} rpm or above")
     if found.dead:
         loads = [item for item in response.restrictions.dead_loads if (item.load_share or 0.0) < 1.0]
         said = [f"at most {(item.load_share or 0.0) * 100:.0f} % of full load with {item.cylinder}" for item in loads]
