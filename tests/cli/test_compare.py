@@ -3,15 +3,14 @@
 from __future__ import annotations
 
 import hashlib
-import io
 import json
 import re
 from pathlib import Path
 
 import pytest
 from commands import command, process
-from pypdf import PdfReader
 
+from pdf_texts import page_texts
 from quillshaft.present.comparison_words import comparison_title, mode_notes, reapproval_sentences
 from quillshaft.present.report.comparison import comparison_pdf
 from quillshaft.study.compare import compare, compare_cases
@@ -106,7 +105,7 @@ def test_a_case_that_changes_nothing_is_refused(tmp_path: Path):
 
 def test_the_sheet_has_both_columns_cautions_and_lines_to_sign():
     found = compare_cases(screened(HARDER + LIGHT), ("new-coupling",))
-    pages = [re.sub(r"\s+", " ", page.extract_text()) for page in PdfReader(io.BytesIO(comparison_pdf(found))).pages]
+    pages = page_texts(comparison_pdf(found))
     text = " ".join(pages)
     assert "Before After new-coupling" in pages[0]
     for words in ('"0.145 MN m/rad" "1.1 MN m/rad"', "To be approved anew", "Cautions", "Signature", "Approved"):

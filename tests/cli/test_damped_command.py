@@ -2,15 +2,14 @@
 
 from __future__ import annotations
 
-import io
 import json
 import re
 from pathlib import Path
 
 import pytest
 from commands import command
-from pypdf import PdfReader
 
+from pdf_texts import page_texts
 from trains import train_text
 
 KEYS = {
@@ -107,8 +106,7 @@ def test_the_report_holds_the_section_only_where_asked_and_the_same_bytes_each_t
         out = tmp_path / "report.pdf"
         assert command("report", file, "--out", out, *words).code == 0
         data = out.read_bytes()
-        pages = [page.extract_text() for page in PdfReader(io.BytesIO(data)).pages]
-        return re.sub(r"\s+", " ", " ".join(pages)), data
+        return " ".join(page_texts(data)), data
 
     asked, first = text("--damped")
     assert "Damped modes" in asked

@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-import io
 import json
 
-import pypdf
 import pytest
 from commands import command
+
+from pdf_texts import page_texts
 
 TEXT = """\
 schema = 1
@@ -144,8 +144,7 @@ def test_check_shows_stations_and_links_of_dampers_and_what_a_fluid_coupling_doe
 def test_the_data_table_of_the_report_holds_every_damper_and_rating(path, tmp_path):
     out = tmp_path / "report.pdf"
     assert command("report", path, "--out", out).code == 0
-    pages = pypdf.PdfReader(io.BytesIO(out.read_bytes())).pages
-    text = " ".join(" ".join(page.extract_text() for page in pages).split())
+    text = " ".join(page_texts(out))
     start = text.index("Equivalent system")
     data = text[:start] if "untuned viscous damper" in text[:start] else text
     for words in (

@@ -7,8 +7,8 @@ from pathlib import Path
 
 import pytest
 from commands import command
-from pypdf import PdfReader
 
+from pdf_texts import page_texts
 from quillshaft.assess.orders import order_study
 from quillshaft.assess.screening import screen
 from quillshaft.present.charts.look import TALLEST_MM, title_of
@@ -79,8 +79,8 @@ def test_a_train_without_engine_is_refused():
 def test_star_diagrams_are_written_and_say_which_orders_add_up(engine, tmp_path):
     done = command("orders", engine, "--case", "dead-3", "--charts", tmp_path / "charts")
     assert done.code == 0
-    text = PdfReader(tmp_path / "charts" / "orders-engine.pdf").pages[0].extract_text()
-    assert "3, 6, 9 and 12 (5 of 6 act)" in " ".join(text.split())
+    text = page_texts(tmp_path / "charts" / "orders-engine.pdf")[0]
+    assert "3, 6, 9 and 12 (5 of 6 act)" in text
     assert "Rigid crank" in text
     assert "sum 1.00 of 5" in text
 
@@ -118,7 +118,7 @@ def test_the_report_holds_the_orders_the_data_of_the_engine_and_the_files_that_t
     engine.write_text(text[:start] + 'gas = { harmonics = "orders.csv" }' + text[text.index("\n", start) :], "utf-8")
     out = tmp_path / "report.pdf"
     assert command("report", engine, "--orders", "--out", out).code == 0
-    text = " ".join(" ".join(page.extract_text() for page in PdfReader(out).pages).split())
+    text = " ".join(page_texts(out))
     assert "Orders of engine at 1500 rpm" in text
     assert "Major orders: 3, 6, 9, 12" in text
     assert "reciprocating mass 11.2 kg a cylinder" in text
@@ -128,8 +128,8 @@ def test_the_report_holds_the_orders_the_data_of_the_engine_and_the_files_that_t
 
 
 def test_the_issued_report_of_the_engine_holds_its_compression_ratio():
-    pages = PdfReader(EXAMPLE.parents[1] / "reports" / "dairy-generator.pdf").pages
-    assert any("compression ratio 15" in " ".join(page.extract_text().split()) for page in pages[:8])
+    pages = page_texts(EXAMPLE.parents[1] / "reports" / "dairy-generator.pdf")
+    assert any("compression ratio 15" in page for page in pages[:8])
 
 
 def test_an_engine_of_which_no_cylinder_fires_still_shows_its_torques(engine, tmp_path):

@@ -3,15 +3,14 @@
 from __future__ import annotations
 
 import csv
-import io
 import json
 import re
 from pathlib import Path
 
 import pytest
 from commands import command
-from pypdf import PdfReader
 
+from pdf_texts import page_texts
 from trains import train_text
 
 CONTRACT = {
@@ -169,8 +168,7 @@ def test_the_report_closes_the_loop_only_where_asked(tmp_path: Path) -> None:
 
     def pages(*words: str) -> list[str]:
         assert command("report", path, "--out", out, *words).code == 0
-        found = PdfReader(io.BytesIO(out.read_bytes())).pages
-        return [re.sub(r"\s+", " ", page.extract_text()) for page in found]
+        return page_texts(out)
 
     plain = pages()
     assert "NOT CLEAR" in plain[0]

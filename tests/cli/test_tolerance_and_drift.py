@@ -9,6 +9,7 @@ from pathlib import Path
 import pytest
 from commands import command, process
 
+from pdf_texts import page_texts
 from train_files import TEXT
 from trains import train_text
 
@@ -136,16 +137,11 @@ def test_drift_refuses_what_cannot_drift(booster: Path, options: tuple[str, str,
 
 
 def test_both_write_their_chart_with_the_answer_as_title(two_discs: Path, tmp_path: Path) -> None:
-    from pypdf import PdfReader
-
     charts = tmp_path / "charts"
     drifting = ("--datum", "stations.wheel.inertia", "--from", "6 kg m^2", "--to", "4.9 kg m^2")
     for words in (("tolerance", two_discs, "--samples", "300"), ("drift", two_discs, *drifting)):
         assert command(*words, "--charts", charts).code == 0
-    texts = {
-        name: " ".join(PdfReader(charts / f"{name}.pdf").pages[0].extract_text().split())
-        for name in ("tolerance", "drift")
-    }
+    texts = {name: page_texts(charts / f"{name}.pdf")[0] for name in ("tolerance", "drift")}
     assert "Mode 1 is not clear of hum in" in texts["tolerance"]
     assert "exact bounds" in texts["tolerance"]
     assert "Mode 1 comes closer than 1 % to hum" in texts["drift"]

@@ -15,6 +15,7 @@ import pytest
 from pypdf import PdfReader
 
 from issue_reports import ISSUED, ROOT
+from pdf_texts import page_texts
 from quillshaft import load, respond, screen
 from quillshaft.assess.response_results import Response
 from quillshaft.assess.response_standing import standing
@@ -31,7 +32,7 @@ def issued(stem: str) -> bytes:
 @cache
 def issued_text(stem: str) -> list[str]:
     """Text of each page of the issued report, runs of white space as one blank."""
-    return pages_of(issued(stem))
+    return page_texts(issued(stem))
 
 
 @cache
@@ -42,12 +43,6 @@ def made(stem: str) -> tuple[Response | None, bytes]:
     return response, report_pdf(screening, None if response is None else Studies(response=response))
 
 
-def pages_of(data: bytes, count: int | None = None) -> list[str]:
-    """Text of each page, or of the first few, runs of white space as one blank."""
-    pages = PdfReader(io.BytesIO(data)).pages[:count]
-    return [re.sub(r"\s+", " ", page.extract_text()).strip() for page in pages]
-
-
 EXAMPLES = pytest.mark.parametrize("stem", sorted(ISSUED))
 
 
@@ -55,7 +50,7 @@ EXAMPLES = pytest.mark.parametrize("stem", sorted(ISSUED))
 def test_issued_reports_are_what_the_examples_give_now_and_pass_only_where_all_is_settled(stem: str) -> None:
     response, data = made(stem)
     if data != issued(stem):
-        assert pages_of(data) == issued_text(stem), "run tests/issue_reports.py and look at the pages"
+        assert page_texts(data) == issued_text(stem), "run tests/issue_reports.py and look at the pages"
     screening = screen(load(ROOT / "examples" / f"{stem}.toml"))
     passed = screening.gravest_verdict in ("clear", "barred") if response is None else standing(response).settled
     assert ("PASS" in issued_text(stem)[0]) == passed
@@ -147,7 +142,7 @@ def test_report_holds_no_raster_image_and_embeds_its_fonts(stem: str) -> None:
 
 def test_a_case_is_named_on_page_one() -> None:
     screening = screen(load(ROOT / "examples" / "sluice-pump.toml", ["hard-blocks"]))
-    first = pages_of(report_pdf(screening), 1)[0]
+    first = page_texts(report_pdf(screening))[:1][0]
     assert "hard-blocks" in first
     assert "replacement blocks of the next hardness" in first
     assert "NOT CLEAR" in first

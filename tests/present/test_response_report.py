@@ -2,14 +2,12 @@
 
 from __future__ import annotations
 
-import io
-import re
 from dataclasses import replace
 
 import pytest
-from pypdf import PdfReader
 from response_set import FAILED, KEPT, SILENT, generator, settled
 
+from pdf_texts import page_texts
 from quillshaft.assess.response_results import Response
 from quillshaft.present.pdf.document import PageFrame, build_pdf
 from quillshaft.present.report import report_pdf
@@ -23,8 +21,7 @@ def pages(response: Response) -> list[str]:
 
 
 def read(pdf: bytes) -> list[str]:
-    reader = PdfReader(io.BytesIO(pdf))
-    return [re.sub(r"\s+", " ", page.extract_text()) for page in reader.pages]
+    return page_texts(pdf)
 
 
 @pytest.mark.parametrize(
@@ -86,5 +83,4 @@ def test_without_a_response_nothing_of_it_is_there() -> None:
     assert report_title(screening).startswith("Torsional screening: ")
     plain = report_pdf(screening)
     assert plain == report_pdf(screening, Studies())
-    found = PdfReader(io.BytesIO(plain)).pages
-    assert not any("Forced response" in page.extract_text() for page in found)
+    assert not any("Forced response" in page for page in page_texts(plain))
