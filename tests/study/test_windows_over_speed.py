@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from functools import cache
+
 import numpy as np
 import pytest
 
@@ -44,6 +46,7 @@ tolerances = "none"
 """
 
 
+@cache
 def screened(scale: float = 1.0, shaft: float = 2e6, temperature: float = 303.15):
     """The train with its coupling's curve scaled, or another shaft."""
     text = TEXT.replace("SHAFT", repr(shaft))
