@@ -12,7 +12,8 @@ from quillshaft.assess.screening import screen_alone, screen_temperatures
 from quillshaft.elements.coupling import coupling_loss_factor, coupling_stiffness, table_value
 from quillshaft.graph.build import build_graph
 from quillshaft.graph.states import with_stiffness
-from quillshaft.train.model import Coupling, Power
+from quillshaft.train.coupling_model import Coupling
+from quillshaft.train.model import Power
 from quillshaft.train.problems import TrainFileError
 from trains import train
 

@@ -19,7 +19,7 @@ from quillshaft.elements.coupling_duty import (
     torque_magnification,
     two_mass_frequency,
 )
-from quillshaft.train.model import Coupling
+from quillshaft.train.coupling_model import Coupling
 
 POINTS = ((0.0, 0.9e6), (5e3, 1.4e6), (10e3, 2.6e6))
 

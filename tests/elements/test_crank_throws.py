@@ -11,7 +11,7 @@ import pytest
 from quillshaft.elements import crank
 from quillshaft.present.report.shaft_data import shaft_words
 from quillshaft.present.units import SHOWN
-from quillshaft.train.model import Material, Throw
+from quillshaft.train.shaft_model import Material, Throw
 from trains import graph_of, omegas, refusal, screening_of, toml, train, train_text
 
 THROW = Throw(0.2, 0.1, 0.18, 0.11, 0.06, 0.26, 0.15)

@@ -8,7 +8,7 @@ from fractions import Fraction
 import pytest
 
 from quillshaft.elements.gear import base_radius, mesh_ratio
-from quillshaft.train.model import GearGeometry, GearMesh
+from quillshaft.train.gear_model import GearGeometry, GearMesh
 from trains import graph_of, omegas, train_text
 
 # c = 20 N/(mm·µm), face 60 mm, pitch radius 100 mm (40 teeth of module 5), 20°: k = c b r_b². Derived:

@@ -16,7 +16,7 @@ from quillshaft.elements.mesh_stiffness import (
     single_stiffness,
     tooth_flexibility,
 )
-from quillshaft.train.model import GearGeometry
+from quillshaft.train.gear_model import GearGeometry
 from trains import graph_of, omegas, refusal, screening_of, train, train_text
 
 ALPHA = math.radians(20.0)

@@ -12,7 +12,7 @@ from scipy.sparse.linalg import spsolve
 
 from quillshaft.elements import shaft_sections as sections
 from quillshaft.elements.shaft import piece_inertia, piece_stiffness
-from quillshaft.train.model import Piece
+from quillshaft.train.shaft_model import Piece
 from trains import graph_of, refusal, train, train_text
 
 G = 80e9

@@ -10,7 +10,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from quillshaft.elements import shaft
-from quillshaft.train.model import Material, Piece
+from quillshaft.train.shaft_model import Material, Piece
 from trains import graph_of, train_text
 
 G = 80e9

@@ -237,7 +237,7 @@ def test_bounds_over_the_tolerances_hold_for_every_corner_of_planets_and_support
 def test_tooth_stiffness_by_the_rule_adds_up_over_the_planets():
     # ISO 6336-1 simplified (from memory): N · c_γ · face · r_b,sun² for each of the two meshes.
     from quillshaft.elements.mesh_stiffness import rule_stiffness
-    from quillshaft.train.model import GearGeometry
+    from quillshaft.train.gear_model import GearGeometry
 
     sizes = {"module": "5 mm", "face": "60 mm", "mesh-stiffness": "iso-6336"}
     graph = graph_of(fixed_train("ring", **sizes))

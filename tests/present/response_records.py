@@ -31,7 +31,8 @@ from quillshaft.assess.response_results import (
     Wave,
 )
 from quillshaft.assess.results import Screening
-from quillshaft.train.model import Assumed, CouplingRatings
+from quillshaft.train.basic_model import Assumed
+from quillshaft.train.coupling_model import CouplingRatings
 
 ROOT = Path(__file__).resolve().parents[2]
 RPM = 30.0 / math.pi

@@ -30,7 +30,7 @@ from quillshaft.present.charts.response_axes import Scale, value_scale
 from quillshaft.present.charts.response_common import above_limit, share_text, stretches, torque_text, uses
 from quillshaft.present.charts.response_orders import leading_lines
 from quillshaft.present.pdf.figure import write_figure_pdf
-from quillshaft.train.model import CouplingRatings
+from quillshaft.train.coupling_model import CouplingRatings
 
 PAGE_MM = 200.0
 LABELS = {"heading", "end", "tick", "name", "operation", "line", "value", "yardstick", "contour"}

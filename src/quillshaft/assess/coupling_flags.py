@@ -9,7 +9,9 @@ from quillshaft.assess.results import Flag
 from quillshaft.elements.coupling_duty import coupling_twist
 from quillshaft.elements.damper import viscous_optimum
 from quillshaft.graph.torsional import TorsionalGraph
-from quillshaft.train.model import Coupling, Damper, Train
+from quillshaft.train.coupling_model import Coupling
+from quillshaft.train.damper_model import Damper
+from quillshaft.train.model import Train
 
 RPM = 30.0 / math.pi
 STIFFNESS_OVER_TORQUE = {

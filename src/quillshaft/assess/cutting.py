@@ -17,7 +17,8 @@ from quillshaft.records import dataclass
 from quillshaft.solve.modes import natural_modes
 from quillshaft.solve.plan import plan_elimination
 from quillshaft.sources.collect import collect_sources
-from quillshaft.train.model import Assumed, Train
+from quillshaft.train.basic_model import Assumed
+from quillshaft.train.model import Train
 
 WANTED = 1e-3
 """Relative error of every judged frequency at which cutting stops."""

@@ -6,7 +6,8 @@ import math
 from collections.abc import Iterator
 
 from quillshaft.assess.results import Flag, LinkDuty
-from quillshaft.train.model import Belt, Epicyclic, GearMesh, Train, UniversalJoint
+from quillshaft.train.gear_model import Belt, Epicyclic, GearMesh
+from quillshaft.train.model import Train, UniversalJoint
 
 BACKLASH_IN_MODULES = (0.005, 0.3)
 LEAST_LINE_LOAD = 1e5

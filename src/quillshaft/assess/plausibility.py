@@ -12,7 +12,9 @@ from quillshaft.assess.results import Flag, LinkDuty
 from quillshaft.assess.throw_flags import throw_flags
 from quillshaft.elements.coupling import is_rubber
 from quillshaft.graph.torsional import TorsionalGraph
-from quillshaft.train.model import Coupling, Epicyclic, GearMesh, Station, Train
+from quillshaft.train.coupling_model import Coupling
+from quillshaft.train.gear_model import Epicyclic, GearMesh
+from quillshaft.train.model import Station, Train
 
 RPM = 30.0 / math.pi
 

@@ -10,7 +10,9 @@ from quillshaft.assess.results import Interference, ModeResult, Screening
 from quillshaft.elements.coupling import is_rubber
 from quillshaft.elements.epicyclic import ring_mesh_name
 from quillshaft.records import dataclass
-from quillshaft.train.model import Assumed, Epicyclic, Provenance, Tolerance, Train
+from quillshaft.train.basic_model import Assumed, Provenance, Tolerance
+from quillshaft.train.gear_model import Epicyclic
+from quillshaft.train.model import Train
 
 DECISIVE = 0.25
 """Share of a critical mode's uncertainty from which one value decides."""

@@ -14,7 +14,7 @@ import numpy as np
 from quillshaft.assess.results import Screening
 from quillshaft.graph.network import Bools, Floats
 from quillshaft.records import dataclass
-from quillshaft.train.model import Assumed
+from quillshaft.train.basic_model import Assumed
 
 CaseKind = Literal["normal", "dead cylinder", "light load", "temperature", "damper", "tolerance", "high damping"]
 FindingVerdict = Literal["pass", "fail", "no limit given"]

@@ -9,7 +9,8 @@ from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.records import dataclass
 from quillshaft.solve.modes import Modes
 from quillshaft.sources.line import Source
-from quillshaft.train.model import Assumed, Dismissal, Train
+from quillshaft.train.basic_model import Assumed
+from quillshaft.train.model import Dismissal, Train
 
 Verdict = Literal["clear", "barred", "close", "crossing"]
 SEVERITY: dict[Verdict, int] = {"clear": 0, "barred": 1, "close": 2, "crossing": 3}

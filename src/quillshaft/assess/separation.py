@@ -8,7 +8,8 @@ from collections.abc import Sequence
 from quillshaft.assess.results import EQUAL, Verdict
 from quillshaft.records import dataclass
 from quillshaft.sources.line import Source, frequencies_over, meeting_speeds, slope
-from quillshaft.train.model import Criteria, Operation, Range
+from quillshaft.train.basic_model import Range
+from quillshaft.train.model import Criteria, Operation
 
 RPM = 30.0 / math.pi
 

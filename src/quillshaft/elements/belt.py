@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from fractions import Fraction
 
-from quillshaft.train.model import Belt
+from quillshaft.train.gear_model import Belt
 
 LARGEST_DENOMINATOR = 10**6
 

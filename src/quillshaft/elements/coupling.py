@@ -4,7 +4,8 @@ from __future__ import annotations
 
 from itertools import pairwise
 
-from quillshaft.train.model import Coupling, Table
+from quillshaft.train.basic_model import Table
+from quillshaft.train.coupling_model import Coupling
 
 
 def table_value(points: Table, at: float) -> float:

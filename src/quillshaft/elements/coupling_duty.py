@@ -11,7 +11,8 @@ import math
 from itertools import pairwise
 
 from quillshaft.elements.coupling import is_rubber, table_value
-from quillshaft.train.model import Coupling, Table
+from quillshaft.train.basic_model import Table
+from quillshaft.train.coupling_model import Coupling
 
 FLAT_HZ = 10.0
 """Frequency up to which the rated vibratory torque stands undiminished (DIN 740-2, recalled)."""

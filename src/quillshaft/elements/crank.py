@@ -5,7 +5,8 @@ from __future__ import annotations
 import math
 
 from quillshaft.elements.slider_crank import equivalent_inertia
-from quillshaft.train.model import Material, RunningGear, Throw
+from quillshaft.train.model import RunningGear
+from quillshaft.train.shaft_model import Material, Throw
 
 
 def _area_power(outer_m: float, bore_m: float) -> float:

@@ -7,7 +7,8 @@ from fractions import Fraction
 from quillshaft.elements.gear import base_radius, mesh_torsional_stiffness
 from quillshaft.elements.mesh_stiffness import PER_MM_UM, MeshRuleResult, rule_stiffness
 from quillshaft.records import dataclass
-from quillshaft.train.model import FIXED, Epicyclic, Planets
+from quillshaft.train.gear_model import Epicyclic, Planets
+from quillshaft.train.model import FIXED
 
 
 @dataclass(frozen=True)

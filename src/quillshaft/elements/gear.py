@@ -7,7 +7,8 @@ from dataclasses import replace
 from fractions import Fraction
 
 from quillshaft.elements.mesh_stiffness import PER_MM_UM, MeshRuleResult, rule_stiffness
-from quillshaft.train.model import FIXED, Epicyclic, GearGeometry, GearMesh
+from quillshaft.train.gear_model import Epicyclic, GearGeometry, GearMesh
+from quillshaft.train.model import FIXED
 
 
 def base_radius(geometry: GearGeometry, teeth: int) -> float:

@@ -8,7 +8,7 @@ from __future__ import annotations
 import math
 
 from quillshaft.records import dataclass
-from quillshaft.train.model import GearGeometry
+from quillshaft.train.gear_model import GearGeometry
 
 CORRECTION = 0.8
 """C_M of the rule: measured over theoretical stiffness (ISO 6336-1, recalled)."""

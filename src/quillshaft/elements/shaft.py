@@ -17,7 +17,7 @@ from quillshaft.elements.shaft_sections import (
     spline_diameter,
 )
 from quillshaft.records import dataclass
-from quillshaft.train.model import EquivalentLength, Keyway, Material, Piece, Shaft
+from quillshaft.train.shaft_model import EquivalentLength, Keyway, Material, Piece, Shaft
 
 PANELS = 16
 NODES = 20

@@ -11,7 +11,9 @@ import numpy as np
 from quillshaft.elements.shaft import cut_shaft
 from quillshaft.graph.network import Floats, Ints, Network
 from quillshaft.graph.torsional import CutLink, GraphLink
-from quillshaft.train.model import Shaft, Tolerance, Train
+from quillshaft.train.basic_model import Tolerance
+from quillshaft.train.model import Train
+from quillshaft.train.shaft_model import Shaft
 
 
 def with_cuts(

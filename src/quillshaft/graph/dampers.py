@@ -8,7 +8,9 @@ from quillshaft.elements.damper import pendulum_stiffness
 from quillshaft.graph.links import LinkDraft
 from quillshaft.graph.states import with_stiffness
 from quillshaft.graph.torsional import InertiaPart, TorsionalGraph, ViscousRing
-from quillshaft.train.model import Damper, Tolerance, Train
+from quillshaft.train.basic_model import Tolerance
+from quillshaft.train.damper_model import Damper
+from quillshaft.train.model import Train
 from quillshaft.train.validate import Findings
 
 

@@ -7,7 +7,8 @@ from collections.abc import Iterator
 from quillshaft.elements.epicyclic import stage_rules, travelling_inertia
 from quillshaft.elements.gear import mesh_by_rule
 from quillshaft.graph.torsional import InertiaPart
-from quillshaft.train.model import Epicyclic, GearMesh, Train
+from quillshaft.train.gear_model import Epicyclic, GearMesh
+from quillshaft.train.model import Train
 from quillshaft.train.validate import Findings
 
 

@@ -15,7 +15,11 @@ from quillshaft.graph.network import Ints
 from quillshaft.graph.states import Temperature, coupling_temperature
 from quillshaft.graph.torsional import Slot
 from quillshaft.records import dataclass
-from quillshaft.train.model import Belt, Coupling, Epicyclic, GearMesh, Shaft, Tolerance, Train
+from quillshaft.train.basic_model import Tolerance
+from quillshaft.train.coupling_model import Coupling
+from quillshaft.train.gear_model import Belt, Epicyclic, GearMesh
+from quillshaft.train.model import Train
+from quillshaft.train.shaft_model import Shaft
 
 
 @dataclass(frozen=True)

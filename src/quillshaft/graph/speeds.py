@@ -9,7 +9,8 @@ from quillshaft.elements.belt import belt_ratio
 from quillshaft.elements.epicyclic import stage_meshes
 from quillshaft.elements.gear import mesh_ratio
 from quillshaft.records import dataclass
-from quillshaft.train.model import Epicyclic, GearMesh, Train
+from quillshaft.train.gear_model import Epicyclic, GearMesh
+from quillshaft.train.model import Train
 from quillshaft.train.validate import Findings
 
 BELT_PLAY = Fraction(1, 1000)

@@ -8,7 +8,8 @@ from typing import Literal
 from quillshaft.elements.coupling import coupling_stiffness
 from quillshaft.graph.network import Network
 from quillshaft.graph.torsional import GraphLink, TorsionalGraph
-from quillshaft.train.model import Coupling, Train
+from quillshaft.train.coupling_model import Coupling
+from quillshaft.train.model import Train
 
 Temperature = Literal["cold", "reference", "hot"] | float
 """State of the couplings: their coldest or hottest in service, 30 °C, or one temperature [K] for all."""

@@ -7,7 +7,7 @@ from typing import Literal
 
 from quillshaft.graph.network import Bools, Floats, Ints, Network
 from quillshaft.records import dataclass
-from quillshaft.train.model import Tolerance
+from quillshaft.train.basic_model import Tolerance
 
 Slot = Literal["spring", "tie", "torque", "rigid", "slack", "cut"]
 

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 from quillshaft.present.units import SHOWN, ShownUnits
 from quillshaft.present.words import number
+from quillshaft.train.damper_model import Damper
 from quillshaft.train.duty_model import ShaftStrength, StressSection
-from quillshaft.train.model import Damper, Piece, Shaft
+from quillshaft.train.shaft_model import Piece, Shaft
 
 PSI_PA = 6894.757293168361
 """lbf/in² in Pa, exact by the international pound and inch and standard gravity."""

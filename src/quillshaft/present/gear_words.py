@@ -11,7 +11,8 @@ from quillshaft.elements.mesh_stiffness import MeshRuleResult
 from quillshaft.present.units import ShownUnits
 from quillshaft.present.words import number
 from quillshaft.sources.joints import joint_words
-from quillshaft.train.model import Belt, Epicyclic, GearGeometry, GearMesh, HeldMember, Planets, UniversalJoint
+from quillshaft.train.gear_model import Belt, Epicyclic, GearGeometry, GearMesh, HeldMember, Planets
+from quillshaft.train.model import UniversalJoint
 
 LB_KG = 0.45359237
 RULE = "by ISO 6336-1 simplified (recalled, confirm against your edition)"

@@ -11,7 +11,8 @@ from quillshaft.sources.electrical import converter_lines, grid_lines, start_lin
 from quillshaft.sources.line import Action, Source
 from quillshaft.sources.reciprocating_sources import KINDS as RECIPROCATING
 from quillshaft.sources.reciprocating_sources import reciprocating_sources
-from quillshaft.train.model import Epicyclic, GearMesh, Machine, Train
+from quillshaft.train.gear_model import Epicyclic, GearMesh
+from quillshaft.train.model import Machine, Train
 from quillshaft.train.validate import Findings
 
 FAMILY = {

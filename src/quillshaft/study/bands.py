@@ -9,7 +9,7 @@ import numpy as np
 from quillshaft.assess.results import EQUAL, Interference, Screening
 from quillshaft.assess.separation import RPM, JudgedRange, judged_ranges, kept_free
 from quillshaft.sources.line import Source, frequencies_over
-from quillshaft.train.model import Range
+from quillshaft.train.basic_model import Range
 
 
 @dataclass(frozen=True)

@@ -13,7 +13,8 @@ from quillshaft.assess.screening import screen_alone
 from quillshaft.elements.damper import Optimum, ring_dynamic_stiffness, tuned_optimum, viscous_optimum
 from quillshaft.graph.network import Floats
 from quillshaft.study.modal_response import Receptance, modal_receptance, with_ring
-from quillshaft.train.model import Damper, Train
+from quillshaft.train.damper_model import Damper
+from quillshaft.train.model import Train
 
 if TYPE_CHECKING:
     from collections.abc import Callable

@@ -9,7 +9,8 @@ from quillshaft.assess.screening import screen_alone
 from quillshaft.elements.damper import pendulum_effective_inertia
 from quillshaft.study.damper_optimum import DamperError, Suggestion, suggest
 from quillshaft.train.damper_cases import damper_case_names
-from quillshaft.train.model import Damper, Train
+from quillshaft.train.damper_model import Damper
+from quillshaft.train.model import Train
 from quillshaft.train.problems import TrainFileError
 from quillshaft.train.read import train_of
 

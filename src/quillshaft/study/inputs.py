@@ -11,7 +11,9 @@ from quillshaft.elements.epicyclic import ring_mesh_name
 from quillshaft.graph.network import Floats, Ints, Network
 from quillshaft.graph.torsional import GraphLink, InertiaPart, TorsionalGraph
 from quillshaft.solve.modes import Modes
-from quillshaft.train.model import Epicyclic, Tolerance, Train
+from quillshaft.train.basic_model import Tolerance
+from quillshaft.train.gear_model import Epicyclic
+from quillshaft.train.model import Train
 
 TABLE = {
     "shaft": "shafts",

@@ -17,7 +17,7 @@ from quillshaft.sources.line import Source
 from quillshaft.study.changed import corners_of
 from quillshaft.study.reach import Datum, Side, data_of, factors_to
 from quillshaft.study.source_bands import TOUCHING, forbidden_bands
-from quillshaft.train.model import Range
+from quillshaft.train.basic_model import Range
 
 LARGEST_FACTOR = {"stiffness": 20.0, "inertia": 5.0}
 """Changes beyond these factors, up or down, are no way out."""

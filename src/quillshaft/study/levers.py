@@ -14,7 +14,7 @@ from quillshaft.graph.network import Floats
 from quillshaft.solve.modes import natural_frequencies
 from quillshaft.study.lever_search import Search, candidates_for, prepare, sensitivity
 from quillshaft.study.reach import Datum, Side, changed
-from quillshaft.train.model import Range
+from quillshaft.train.basic_model import Range
 
 HELPLESS = 0.01
 """A sensitivity below this (d ln f / d ln value) says that the element does not move the mode."""

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from quillshaft.assess.results import Screening
 from quillshaft.assess.separation import judged_ranges, kept_free, required_separation
 from quillshaft.sources.line import Source, frequencies_over
-from quillshaft.train.model import Range
+from quillshaft.train.basic_model import Range
 
 TOUCHING = 3e-9
 """Relative widening where no separation is required, so that a mode at the edge does not count as met."""

@@ -18,7 +18,8 @@ from quillshaft.elements.coupling import table_value
 from quillshaft.graph.network import Network
 from quillshaft.graph.states import coupling_temperature, follows_temperature, with_stiffness
 from quillshaft.graph.torsional import TorsionalGraph
-from quillshaft.train.model import Coupling, Range
+from quillshaft.train.basic_model import Range
+from quillshaft.train.coupling_model import Coupling
 
 CELLS = 24
 

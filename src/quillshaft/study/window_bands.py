@@ -9,7 +9,7 @@ from typing import Literal
 from quillshaft.assess.results import Screening
 from quillshaft.assess.separation import kept_free, required_separation
 from quillshaft.sources.line import Source, frequencies_over
-from quillshaft.train.model import Range
+from quillshaft.train.basic_model import Range
 from quillshaft.train.problems import did_you_mean
 
 Orders = Literal["major", "all"]

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import Any
 
-from quillshaft.train.model import Assumed, Provenance, Tolerance
+from quillshaft.train.basic_model import Assumed, Provenance, Tolerance
 
 TWO_PI = 6.283185307179586
 ICE_K = 273.15

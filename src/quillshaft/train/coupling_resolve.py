@@ -4,7 +4,8 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Any
 
-from quillshaft.train.model import CouplingRatings, FluidCoupling, Provenance
+from quillshaft.train.basic_model import Provenance
+from quillshaft.train.coupling_model import CouplingRatings, FluidCoupling
 
 if TYPE_CHECKING:
     from quillshaft.train.assumptions import Assumptions

@@ -5,7 +5,8 @@ from __future__ import annotations
 import math
 from typing import TYPE_CHECKING, Any
 
-from quillshaft.train.model import Damper, Pendulums, Provenance, Tolerance
+from quillshaft.train.basic_model import Provenance, Tolerance
+from quillshaft.train.damper_model import Damper, Pendulums
 
 if TYPE_CHECKING:
     from quillshaft.train.assumptions import Assumptions

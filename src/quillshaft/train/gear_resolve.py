@@ -8,21 +8,10 @@ from fractions import Fraction
 from typing import Any
 
 from quillshaft.train.assumptions import DEFAULT_TOLERANCE, Assumptions, damping, provenance
+from quillshaft.train.basic_model import Tolerance
 from quillshaft.train.gear_fields import ISO_RULE
-from quillshaft.train.model import (
-    FIXED,
-    Belt,
-    Epicyclic,
-    GearGeometry,
-    GearMesh,
-    HeldMember,
-    Operation,
-    Planets,
-    Station,
-    Tie,
-    Tolerance,
-    UniversalJoint,
-)
+from quillshaft.train.gear_model import Belt, Epicyclic, GearGeometry, GearMesh, HeldMember, Planets
+from quillshaft.train.model import FIXED, Operation, Station, Tie, UniversalJoint
 from quillshaft.train.validate import Rows
 
 DEFAULT_PRESSURE_ANGLE = math.pi / 9.0

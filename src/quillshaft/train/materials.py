@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from quillshaft.train.model import Material
+from quillshaft.train.shaft_model import Material
 
 BUILT_IN: dict[str, Material] = {
     name: Material(name, modulus * 1e9, density)

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from typing import Any
 
+from quillshaft.train.basic_model import Assumed
 from quillshaft.train.cards import read_card, read_orders
-from quillshaft.train.model import Assumed
 from quillshaft.train.reciprocating_model import (
     CompressorEnd,
     Cylinder,

@@ -5,17 +5,10 @@ from __future__ import annotations
 from typing import Any
 
 from quillshaft.train.assumptions import DEFAULT_TOLERANCE, ICE_K, Assumptions, damping, provenance
+from quillshaft.train.coupling_model import Coupling
 from quillshaft.train.coupling_resolve import coupling_ratings
 from quillshaft.train.electrical_resolve import electrical, synchronizing
-from quillshaft.train.model import (
-    Coupling,
-    Dismissal,
-    Excitation,
-    Machine,
-    RunningGear,
-    Station,
-    Tie,
-)
+from quillshaft.train.model import Dismissal, Excitation, Machine, RunningGear, Station, Tie
 from quillshaft.train.reciprocating_resolve import KINDS as RECIPROCATING
 from quillshaft.train.reciprocating_resolve import Read, machine_parts
 from quillshaft.train.validate import Rows

@@ -9,7 +9,7 @@ from typing import Any, Literal
 from quillshaft.train.assumptions import DEFAULT_TOLERANCE, ICE_K, Assumptions, damping, provenance
 from quillshaft.train.duty_resolve import shaft_strength
 from quillshaft.train.materials import BUILT_IN
-from quillshaft.train.model import EquivalentLength, Keyway, Material, Piece, Shaft, Throw
+from quillshaft.train.shaft_model import EquivalentLength, Keyway, Material, Piece, Shaft, Throw
 from quillshaft.train.validate import Rows
 
 ROOM_K = ICE_K + 20.0

@@ -11,7 +11,8 @@ from quillshaft.graph.torsional import GraphLink, TorsionalGraph
 from quillshaft.records import dataclass
 from quillshaft.sources.gas import Complexes
 from quillshaft.sources.line import TWO_PI, Action, Source
-from quillshaft.train.model import Assumed, Excitation, Train
+from quillshaft.train.basic_model import Assumed
+from quillshaft.train.model import Excitation, Train
 from quillshaft.train.validate import Findings
 
 ORDINARY: dict[str, float] = {

@@ -23,7 +23,7 @@ from quillshaft.assess.response.run import Swept
 from quillshaft.assess.response_results import CaseResponse, DeadLoad
 from quillshaft.graph.network import Bools, Floats
 from quillshaft.sources.gas import Complexes
-from quillshaft.train.model import Coupling
+from quillshaft.train.coupling_model import Coupling
 
 HALVINGS = 7
 MOST_TRIED = 40

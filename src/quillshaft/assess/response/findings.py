@@ -15,7 +15,8 @@ from quillshaft.elements.coupling_duty import frequency_factor, weighs_by_freque
 from quillshaft.graph.network import Bools, Floats
 from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.records import dataclass
-from quillshaft.train.model import Coupling, Machine, Train
+from quillshaft.train.coupling_model import Coupling
+from quillshaft.train.model import Machine, Train
 
 RPM = 30.0 / math.pi
 ICE_K = 273.15

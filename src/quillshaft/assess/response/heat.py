@@ -16,7 +16,8 @@ from quillshaft.graph.network import Bools, Floats, Ints
 from quillshaft.graph.states import REFERENCE_K
 from quillshaft.records import dataclass
 from quillshaft.sources.gas import Complexes
-from quillshaft.train.model import Coupling, Train
+from quillshaft.train.coupling_model import Coupling
+from quillshaft.train.model import Train
 
 MOST_ROUNDS = 60
 SETTLED_K = 0.02

@@ -22,8 +22,12 @@ from quillshaft.elements.stress import Concentration, section_concentration, sec
 from quillshaft.graph.network import Floats
 from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.records import dataclass
+from quillshaft.train.basic_model import Assumed
+from quillshaft.train.coupling_model import Coupling
 from quillshaft.train.duty_model import ShaftStrength, StressSection
-from quillshaft.train.model import Assumed, Coupling, Epicyclic, GearMesh, Material, Piece, Shaft, Train
+from quillshaft.train.gear_model import Epicyclic, GearMesh
+from quillshaft.train.model import Train
+from quillshaft.train.shaft_model import Material, Piece, Shaft
 
 RECALLED = "recalled, confirm against your edition"
 MPA = 1e6

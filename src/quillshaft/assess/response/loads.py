@@ -17,7 +17,8 @@ from quillshaft.records import dataclass
 from quillshaft.sources.cylinder_loads import CylinderLoads, cylinder_loads
 from quillshaft.sources.gas import Complexes
 from quillshaft.sources.line import Source
-from quillshaft.train.model import Assumed, Excitation, Machine, Train
+from quillshaft.train.basic_model import Assumed
+from quillshaft.train.model import Excitation, Machine, Train
 from quillshaft.train.problems import TrainFileError, did_you_mean
 from quillshaft.train.validate import Findings
 

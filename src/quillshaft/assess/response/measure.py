@@ -13,7 +13,7 @@ from quillshaft.assess.response_results import Gauge
 from quillshaft.assess.results import Screening
 from quillshaft.graph.network import Floats
 from quillshaft.solve.steady import steady_response
-from quillshaft.train.model import Shaft
+from quillshaft.train.shaft_model import Shaft
 
 RPM = 30.0 / math.pi
 MOST_MODES = 8

@@ -32,7 +32,8 @@ from quillshaft.assess.results import Screening
 from quillshaft.elements.coupling_duty import weighs_by_frequency
 from quillshaft.graph.network import Bools
 from quillshaft.sources.gas import CycleError
-from quillshaft.train.model import Assumed, Train
+from quillshaft.train.basic_model import Assumed
+from quillshaft.train.model import Train
 from quillshaft.train.problems import TrainFileError
 from quillshaft.train.validate import Findings
 

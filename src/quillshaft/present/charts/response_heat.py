@@ -37,7 +37,7 @@ from quillshaft.present.charts.response_common import (
     worst_of,
 )
 from quillshaft.records import dataclass
-from quillshaft.train.model import Coupling
+from quillshaft.train.coupling_model import Coupling
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes

@@ -6,7 +6,8 @@ import math
 
 from quillshaft.present.units import ShownUnits
 from quillshaft.present.words import number, plain
-from quillshaft.train.model import CouplingRatings, Damper, FluidCoupling
+from quillshaft.train.coupling_model import CouplingRatings, FluidCoupling
+from quillshaft.train.damper_model import Damper
 
 RPM = 30.0 / math.pi
 MOVING = {0.5: "half of it", 1.0: "all of it", 0.0: "none of it"}

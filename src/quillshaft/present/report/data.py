@@ -19,7 +19,9 @@ from quillshaft.present.units import SHOWN, ShownUnits
 from quillshaft.present.viscous_words import viscous_words
 from quillshaft.present.words import number, plain
 from quillshaft.present.written_rows import written_rows
-from quillshaft.train.model import Coupling, Machine, Provenance, Tolerance, Train
+from quillshaft.train.basic_model import Provenance, Tolerance
+from quillshaft.train.coupling_model import Coupling
+from quillshaft.train.model import Machine, Train
 
 Row = tuple[str, str, str, str, str]
 

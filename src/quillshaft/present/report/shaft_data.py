@@ -8,7 +8,8 @@ from quillshaft.elements.crank import throw_stiffness
 from quillshaft.present.duty_words import raiser_words
 from quillshaft.present.units import ShownUnits
 from quillshaft.present.words import number
-from quillshaft.train.model import Piece, RunningGear, Shaft, Throw, Train
+from quillshaft.train.model import RunningGear, Train
+from quillshaft.train.shaft_model import Piece, Shaft, Throw
 
 OWN_INERTIA = {
     "ends": "own inertia lumped at both ends",
