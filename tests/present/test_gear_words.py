@@ -14,9 +14,8 @@ from quillshaft.cli.show import show_check
 from quillshaft.present.gear_words import belt_text, gear_text, joint_text
 from quillshaft.present.report.data import data_parts
 from quillshaft.present.units import SHOWN
-from quillshaft.train.gear_rows import BeltRow, BevelRow, JointRow
+from quillshaft.train.gear_rows import BeltRow, BevelRow, EpicyclicRow, GearRow, JointRow
 from quillshaft.train.messages import keys_of
-from quillshaft.train.rows import EpicyclicRow, GearRow
 from quillshaft.train.starters import schema_text
 from trains import screening_of, train
 

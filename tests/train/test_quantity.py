@@ -11,8 +11,8 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
+from quillshaft.train.measures import MEASURES
 from quillshaft.train.quantity import (
-    MEASURES,
     QuantityError,
     measure_help,
     read_quantity,

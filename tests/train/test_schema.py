@@ -12,6 +12,7 @@ import pytest
 from jsonschema import Draft202012Validator
 
 from quillshaft.train.duty_rows import DutyTable, StrengthTable, WeakestRow
+from quillshaft.train.gear_rows import EpicyclicTeethRow
 from quillshaft.train.machine_rows import MACHINE_ROWS
 from quillshaft.train.messages import keys_of
 from quillshaft.train.overlay import KEYED_TABLES, PLAIN_TABLES
@@ -22,7 +23,7 @@ from quillshaft.train.reciprocating_rows import (
     GasRow,
     SimpleCycleRow,
 )
-from quillshaft.train.rows import EpicyclicTeethRow, RunningGearRow
+from quillshaft.train.rows import RunningGearRow
 from quillshaft.train.schema import build_schema, schema_as_text
 from quillshaft.train.shaft_rows import EquivalentRow, KeywayRow, PieceRow, SectionRow, SplineRow, ThrowRow
 from quillshaft.train.starters import KINDS, schema_text, starter_text

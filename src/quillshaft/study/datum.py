@@ -8,10 +8,11 @@ from dataclasses import dataclass, replace
 from typing import Any
 
 from quillshaft.train.document import Document
+from quillshaft.train.measures import MEASURES
 from quillshaft.train.model import Train
 from quillshaft.train.overlay import ALTERNATIVES, KEYED_TABLES, lay_cases
 from quillshaft.train.problems import Problem, TrainFileError, did_you_mean, shown
-from quillshaft.train.quantity import MEASURES, QuantityError, read_quantity, which_measure
+from quillshaft.train.quantity import QuantityError, read_quantity, which_measure
 from quillshaft.train.read import train_of
 
 Path = tuple[str | int, ...]

@@ -13,9 +13,9 @@ from pydantic import AfterValidator, BeforeValidator, Field, StrictInt, Validati
 from pydantic_core import CoreSchema, PydanticCustomError, core_schema
 
 from quillshaft.records import dataclass
+from quillshaft.train.measures import MEASURES
 from quillshaft.train.problems import shown
 from quillshaft.train.quantity import (
-    MEASURES,
     QuantityError,
     measure_help,
     read_quantity,

@@ -10,9 +10,9 @@ from pydantic import BaseModel
 from quillshaft.records import dataclass
 from quillshaft.train.duty_rows import WeakestRow
 from quillshaft.train.fields import AnyMeasure, Measured, MeasuredPair
+from quillshaft.train.gear_rows import EpicyclicRow
 from quillshaft.train.problems import did_you_mean
 from quillshaft.train.quantity import measure_help
-from quillshaft.train.rows import EpicyclicRow
 
 EXAMPLES = {
     "at": "a name from [stations], in quotes",

@@ -12,7 +12,7 @@ from quillshaft.train.coupling_rows import FluidCouplingRow
 from quillshaft.train.damper_rows import DAMPER_ROWS
 from quillshaft.train.document import Document, line_of
 from quillshaft.train.duty_rows import AmplitudeRow
-from quillshaft.train.gear_rows import BeltRow, BevelRow, JointRow
+from quillshaft.train.gear_rows import BeltRow, BevelRow, EpicyclicRow, GearRow, JointRow
 from quillshaft.train.machine_rows import MACHINE_ROWS
 from quillshaft.train.messages import refusal
 from quillshaft.train.overlay import KEYED_TABLES, PLAIN_TABLES, PathParts, written_at
@@ -20,9 +20,7 @@ from quillshaft.train.problems import Problem, did_you_mean, shown
 from quillshaft.train.rows import (
     CouplingRow,
     DismissalRow,
-    EpicyclicRow,
     ExcitationRow,
-    GearRow,
     MaterialRow,
     StationRow,
     TieRow,
