@@ -6,7 +6,7 @@ import math
 
 import numpy as np
 
-from quillshaft.assess.response.findings import Ground, judged_torque, share_of
+from quillshaft.assess.response.ground import Ground, judged_torque, share_of
 from quillshaft.assess.response.in_tune import tuned_responses
 from quillshaft.assess.response.loads import LoadSet
 from quillshaft.assess.response.run import Swept

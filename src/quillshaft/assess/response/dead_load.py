@@ -8,7 +8,7 @@ import numpy as np
 
 from quillshaft.assess.response.combine import Combined, put_together, torque_range
 from quillshaft.assess.response.evaluate import all_kept, evaluate
-from quillshaft.assess.response.findings import Ground, judged_torque, share_of
+from quillshaft.assess.response.ground import Ground, judged_torque, share_of
 from quillshaft.assess.response.heat import (
     SETTLED_K,
     ambient_k,

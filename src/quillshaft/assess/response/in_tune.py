@@ -8,7 +8,7 @@ import numpy as np
 
 from quillshaft.assess.response.combine import torque_range
 from quillshaft.assess.response.evaluate import Kept, evaluate
-from quillshaft.assess.response.findings import Ground
+from quillshaft.assess.response.ground import Ground
 from quillshaft.assess.response.loads import LoadSet
 from quillshaft.assess.response.mean import shares_along
 from quillshaft.assess.response.run import Swept

@@ -7,7 +7,7 @@ import math
 import numpy as np
 
 from quillshaft.assess.mode_results import mode_torques
-from quillshaft.assess.response.findings import Ground
+from quillshaft.assess.response.ground import Ground
 from quillshaft.assess.response.run import Swept
 from quillshaft.assess.response_results import Gauge
 from quillshaft.assess.results import Screening

@@ -10,7 +10,8 @@ import numpy as np
 from quillshaft.assess.response.closing import close_pairs
 from quillshaft.assess.response.combine import Combined, combine, continuous_speeds, torque_range
 from quillshaft.assess.response.evaluate import Kept, all_kept, evaluate
-from quillshaft.assess.response.findings import Ground, all_findings, damper_faults
+from quillshaft.assess.response.findings import all_findings, damper_faults
+from quillshaft.assess.response.ground import Ground
 from quillshaft.assess.response.heat import (
     ambient_k,
     complex_springs,

@@ -8,7 +8,7 @@ import numpy as np
 
 from quillshaft.assess.response.dead_load import dead_loads
 from quillshaft.assess.response.evaluate import Lines, plain_responses
-from quillshaft.assess.response.findings import Ground, judged_torque
+from quillshaft.assess.response.ground import Ground, judged_torque
 from quillshaft.assess.response.loads import LoadSet
 from quillshaft.assess.response.run import Swept
 from quillshaft.assess.response_results import BarredSpan, CaseResponse, Passage, Restrictions, Tolerable
