@@ -54,7 +54,7 @@ def torque_share(power: Power, speed_rad_s: float, rated_rad_s: float) -> float:
     """Mean torque at a speed over that at rated speed, by the load law; 1 at rated speed.
 
     square: torque as the square of the speed; constant-torque; constant-power: torque as 1 over the speed; a
-    table: share of rated power over share of rated speed.
+    table: share of rated power over share of rated speed, the torque held below its first point and above its last.
     """
     ratio = speed_rad_s / rated_rad_s
     law = power.law
@@ -63,7 +63,8 @@ def torque_share(power: Power, speed_rad_s: float, rated_rad_s: float) -> float:
     if law == "constant-power":
         return 1.0 / ratio
     if isinstance(law, tuple):
-        return table_value(law, speed_rad_s) / ratio
+        inside = min(max(speed_rad_s, law[0][0]), law[-1][0])
+        return table_value(law, inside) * rated_rad_s / inside
     return 1.0
 
 

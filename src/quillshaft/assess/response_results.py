@@ -6,6 +6,7 @@ torque is that at its first-named station. Amplitudes are zero to peak.
 
 from __future__ import annotations
 
+import math
 from dataclasses import field
 from typing import Literal
 
@@ -130,17 +131,25 @@ class Finding:
 
     @property
     def use(self) -> float | None:
-        """Value over limit; None without a limit."""
-        return None if self.limit is None or self.limit <= 0 else self.value / self.limit
+        """Value over limit; None without a limit, infinite where nothing at all is permitted and it fails."""
+        if self.limit is None:
+            return None
+        if self.limit <= 0:
+            return math.inf if self.verdict == "fail" else 0.0
+        return self.value / self.limit
 
 
 @dataclass(frozen=True)
 class BarredSpan:
-    """Speeds [rpm of `speed-at`] that must not be run at continuously, tachometer allowance included."""
+    """Speeds [rpm of `speed-at`] that must not be run at continuously.
+
+    declared   True of a range that the file alone declares; no tachometer allowance is in it, as it is in all others
+    """
 
     from_rpm: float
     to_rpm: float
     because: str
+    declared: bool = False
 
 
 @dataclass(frozen=True)

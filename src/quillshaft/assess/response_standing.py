@@ -19,6 +19,7 @@ class Standing:
     not_cleared   interferences that the response does not clear; not_judged: those it could not judge
     unclosed      interferences of the screening without a closing: open as well
     barred        True where barred speed ranges must be kept, declared by the file or found here
+    rated_barred  True where rated speed itself lies in a range that would have to be barred
     low_idle      True where the stated idle lies below the lowest at which every continuous limit holds
     limited       True where at least one finding but mean torques has a limit
     """
@@ -30,6 +31,7 @@ class Standing:
     not_judged: tuple[Closing, ...]
     unclosed: tuple[Interference, ...]
     barred: bool
+    rated_barred: bool
     low_idle: bool
     limited: bool
 
@@ -46,7 +48,7 @@ class Standing:
 
 def standing(response: Response) -> Standing:
     """The response's own verdict; not judged too where an interference has no closing or only mean torques have a
-    limit, restricted too where barred ranges must be kept or the idle raised.
+    limit, restricted too where barred ranges must be kept or the idle raised; a fail where rated speed would be barred.
     """
     screening = response.screening
     closed = {(item.source, item.mode) for item in response.closings}
@@ -55,9 +57,12 @@ def standing(response: Response) -> Standing:
     )
     limited = any(item.limit is not None and item.check != "mean torque" for item in response.findings)
     barred = bool(response.restrictions.barred) or screening.gravest_verdict == "barred"
-    low_idle = idle_too_low(response)
+    low_idle, rated = idle_too_low(response), screening.train.operation.rated_rad_s * RPM
+    rated_barred = any(span.from_rpm < rated < span.to_rpm for span in response.restrictions.barred)
     verdict = response.verdict
-    if verdict in ("pass", "restricted") and (unclosed or not limited):
+    if rated_barred:
+        verdict = "fail"
+    elif verdict in ("pass", "restricted") and (unclosed or not limited):
         verdict = "not judged"
     elif verdict == "pass" and (barred or low_idle):
         verdict = "restricted"
@@ -69,6 +74,7 @@ def standing(response: Response) -> Standing:
         tuple(item for item in response.closings if item.status.startswith("not judged")),
         unclosed,
         barred,
+        rated_barred,
         low_idle,
         limited,
     )

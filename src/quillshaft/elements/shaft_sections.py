@@ -31,6 +31,16 @@ def rectangle_constant(long_m: float, short_m: float) -> float:
     return long_m * short_m**3 * (1.0 / 3.0 - 64.0 / (math.pi**5 * ratio) * series)
 
 
+def rectangle_modulus(long_m: float, short_m: float) -> float:
+    """Torque over the largest shear stress [m³] of a solid rectangle, at the middle of its longer sides.
+
+    K / (b [1 − 8/π² · Σ 1/(n² cosh(nπa/2b)), n odd]), a ≥ b: 0.208 a³ of a square. Source: as `rectangle_constant`.
+    """
+    odd = np.arange(1, 2 * RECTANGLE_TERMS, 2)
+    series = float(np.sum(1.0 / (odd**2 * np.cosh(np.minimum(odd * math.pi * long_m / short_m / 2.0, 700.0)))))
+    return rectangle_constant(long_m, short_m) / (short_m * (1.0 - 8.0 / math.pi**2 * series))
+
+
 def rectangle_inertia(density_kgm3: float, length_m: float, long_m: float, short_m: float) -> float:
     """Polar inertia [kg·m²] of a rectangular bar about its axis: ρ L a b (a² + b²) / 12 (common practice)."""
     return density_kgm3 * length_m * long_m * short_m * (long_m**2 + short_m**2) / 12.0

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from quillshaft.assess.response_results import DeadLoad, Gauge, Response, Tolerable
+from quillshaft.assess.response_results import BarredSpan, DeadLoad, Gauge, Response, Tolerable
 from quillshaft.assess.response_standing import idle_too_low
 from quillshaft.present.response_values import RPM, torque_text, torque_unit
 from quillshaft.present.units import SHOWN
@@ -14,8 +14,9 @@ def restriction_sentences(response: Response) -> list[str]:
     found = response.restrictions
     allowance = plain(found.tachometer_share)
     lines = [
-        f"Do not run continuously between {span.from_rpm:.0f} and {span.to_rpm:.0f} rpm (tachometer allowance of "
-        f"{allowance} included): {span.because}. Pass the range without stopping, with falling as with rising speed."
+        f"Do not run continuously between {span.from_rpm:.0f} and {span.to_rpm:.0f} rpm"
+        f"{_allowance(span, allowance)}: {span.because}. Pass the range without stopping, with falling as with rising "
+        "speed."
         for span in found.barred
     ] or ["No speed range has to be barred for torque."]
     lines.append(_idle(response))
@@ -25,6 +26,11 @@ def restriction_sentences(response: Response) -> list[str]:
     if found.barred:
         lines.append("A barred range must be marked at the tachometer and in the instructions, and reach the operator.")
     return lines
+
+
+def _allowance(span: BarredSpan, allowance: str) -> str:
+    """Whether the tachometer's error is in a barred range: not in one that the file alone declares."""
+    return " (as declared, no allowance added)" if span.declared else f" (tachometer allowance of {allowance} included)"
 
 
 def _idle(response: Response) -> str:

@@ -44,6 +44,8 @@ def verdict_sentence(response: Response, found: Standing) -> str:
         parts = [f"{counted(len(found.failed), 'limit')} exceeded"] if found.failed else []
         if found.not_cleared:
             parts.append(f"{counted(len(found.not_cleared), 'interference')} not cleared")
+        if found.rated_barred:
+            parts.append("rated speed in a range that would have to be barred")
         return f"Does not pass: {' and '.join(parts)}."
     if found.verdict == "not judged":
         left = len(found.not_judged) + len(found.unclosed)

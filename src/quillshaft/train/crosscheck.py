@@ -18,6 +18,9 @@ from quillshaft.train.shaft_checks import check_shaft_temperatures
 from quillshaft.train.validate import Findings, Rows
 
 LINK_TABLES = ("shafts", "couplings", "gears", "belts", "ties", "dampers")
+RPM = 9.549296585513721
+RATED_SHARE = 0.01
+"""How far from 100 % a load law may be at rated speed."""
 DEGREES = 57.29577951308232
 LEAST_POWER_W = 1e-9
 LAWS = ("square", "constant-torque", "constant-power")
@@ -220,7 +223,8 @@ def read_power(
         stations[name] = None if value == BALANCE else _read(value, "power", system, ("power", name), findings)
         if 0 < abs(stations[name] or 0.0) < LEAST_POWER_W:
             findings.add(("power", name), "is less than any machine's power", value, "0, or a power that counts")
-    return stations, _read_law(data.get("law"), system, findings)
+    operation = rows.plain.get("operation")
+    return stations, _read_law(data.get("law"), system, None if operation is None else operation.rated, findings)
 
 
 def _read(value: Any, measure: str, system: str, path: tuple[str, ...], findings: Findings) -> float:
@@ -232,7 +236,9 @@ def _read(value: Any, measure: str, system: str, path: tuple[str, ...], findings
         return 0.0
 
 
-def _read_law(law: Any, system: str, findings: Findings) -> str | tuple[tuple[float, float], ...] | None:
+def _read_law(
+    law: Any, system: str, rated_rad_s: float | None, findings: Findings
+) -> str | tuple[tuple[float, float], ...] | None:
     if law is None or (isinstance(law, str) and law in LAWS):
         return law
     if not isinstance(law, dict) or not law:
@@ -247,7 +253,23 @@ def _read_law(law: Any, system: str, findings: Findings) -> str | tuple[tuple[fl
         )
         for speed, share in law.items()
     ]
-    return tuple(sorted(points))
+    points.sort()
+    if rated_rad_s is not None and not findings.problems:
+        at_rated = _share_at(points, rated_rad_s)
+        if abs(at_rated - 1.0) > RATED_SHARE:
+            rpm = f"{rated_rad_s * RPM:.6g} rpm"
+            message = f"gives {at_rated * 100.0:.4g} % of rated power at rated speed, {rpm}"
+            findings.add(("power", "law"), message, None, f'a table through "{rpm}" = "100 %"')
+    return tuple(points)
+
+
+def _share_at(points: list[tuple[float, float]], speed_rad_s: float) -> float:
+    """Share of a law at a speed: straight between its points, held beyond them."""
+    speed = min(max(speed_rad_s, points[0][0]), points[-1][0])
+    for (low, share), (high, above) in pairwise(points):
+        if low <= speed <= high and high > low:
+            return share + (above - share) * (speed - low) / (high - low)
+    return points[0][1]
 
 
 def read_off(data: Any, findings: Findings) -> dict[str, str]:

@@ -58,6 +58,8 @@ class OperationTable(Row):
         top = max(high for _, high in self.range) if self.range else self.rated
         if self.trip is not None and self.trip < max(top, self.rated) * (1 - 1e-9):
             raise complain("lies below the rated speed or the top of the range", "a higher speed", "trip")
+        if self.idle is not None and self.idle > max(top, self.rated) * (1 + 1e-9):
+            raise complain("lies above the rated speed and the range", "a speed below them, or in the range", "idle")
         if self.barred is not None and not self.barred_because:
             why = "a barred range needs a reason"
             raise complain(why, 'barred-because = "who holds the train out of it, and why"', "barred")

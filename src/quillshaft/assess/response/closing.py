@@ -47,11 +47,12 @@ def _close(screening: Screening, ground: Ground, swept: Swept, loads: LoadSet, p
     if finding is None:
         text = f"{name}: a link that carries it has no limit at a speed where they are near"
         return Closing(pair.source, pair.mode, "not judged: no limit", text, None)
-    used = (finding.use or 0.0) * 100.0
+    share = finding.use or 0.0
+    used = f"{share * 100.0:.0f} % of the limit" if math.isfinite(share) else "beyond a limit of nothing"
     where = f"{finding.element} at {finding.at_speed_rpm:.0f} rpm, case {finding.case}"
     if finding.verdict == "fail":
-        return Closing(pair.source, pair.mode, "not cleared", f"{name}: {used:.0f} % of the limit in {where}", finding)
-    text = f"{name}: {used:.0f} % of the limit in {where}"
+        return Closing(pair.source, pair.mode, "not cleared", f"{name}: {used} in {where}", finding)
+    text = f"{name}: {used} in {where}"
     if "barred" in (pair.verdict, pair.worst_verdict):
         text += ", the barred range kept"
     return Closing(pair.source, pair.mode, "cleared by response", text, finding)

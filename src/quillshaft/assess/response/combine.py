@@ -66,7 +66,7 @@ def _worst(lines: Complexes) -> Floats:
     return np.asarray(np.abs(lines).max(axis=1))
 
 
-def _weights(lines: Lines) -> Floats:
+def line_weights(lines: Lines) -> Floats:
     """(lines, S) frequency factor of couplings: 1 to 10 Hz, √(f / 10 Hz) above (DIN 740-2, recalled)."""
     return np.sqrt(np.maximum(lines.omega_rad_s / (TWO_PI * FLAT_HZ), 1.0))
 
@@ -159,9 +159,7 @@ def combine(what: Combined, mean_nm: Floats, watched: tuple[int, ...], couplings
         alternating_torque_nm=torque.half,
         root_sum_square_nm=np.sqrt(torque.squares),
         peak_torque_nm=np.maximum(np.abs(known + torque.high), np.abs(known + torque.low)),
-        weighted_torque_nm=_spread(
-            what.rows(lambda own: own.link_nm[list(couplings)] * _weights(own), len(couplings)).half, couplings, links
-        ),
+        weighted_torque_nm=_spread(_weighted(what, couplings), couplings, links),
         twist_deg=np.degrees(torque.half * _compliance(state, what.lines.springs)),
         heat_w=_heat(what, links),
         angle_deg=_angles(what, where),
@@ -172,6 +170,11 @@ def combine(what: Combined, mean_nm: Floats, watched: tuple[int, ...], couplings
         damper_w=_rings(what, heat=True),
         damper_nm=_rings(what, heat=False),
     )
+
+
+def _weighted(what: Combined, couplings: tuple[int, ...]) -> Floats:
+    """(couplings, S) alternating torque, each line weighed by its frequency."""
+    return what.rows(lambda own: own.link_nm[list(couplings)] * line_weights(own), len(couplings)).half
 
 
 def _spread(values: Floats, places: tuple[int, ...], rows: int) -> Floats:

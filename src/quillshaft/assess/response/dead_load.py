@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import replace
+from functools import partial
 
 import numpy as np
 
-from quillshaft.assess.response.combine import Combined, put_together, torque_range
-from quillshaft.assess.response.evaluate import all_kept, evaluate
+from quillshaft.assess.response.combine import Combined, combine, line_weights, put_together, torque_range
+from quillshaft.assess.response.evaluate import Kept, Lines, StateLines, all_kept, evaluate
+from quillshaft.assess.response.findings import all_findings
 from quillshaft.assess.response.ground import Ground, judged_torque, share_of
 from quillshaft.assess.response.heat import (
     SETTLED_K,
@@ -18,22 +21,27 @@ from quillshaft.assess.response.heat import (
     settle_heat,
     thinned,
 )
-from quillshaft.assess.response.loads import LoadSet
-from quillshaft.assess.response.run import Swept
+from quillshaft.assess.response.loads import LoadCase, LoadSet
+from quillshaft.assess.response.run import Swept, mean_links, rubber_links, watched_stations
+from quillshaft.assess.response.states import OWN_HEAT, State
 from quillshaft.assess.response_results import CaseResponse, DeadLoad
-from quillshaft.graph.network import Bools, Floats
+from quillshaft.graph.network import Floats, Ints
+from quillshaft.records import dataclass
 from quillshaft.sources.gas import Complexes
 from quillshaft.train.coupling_model import Coupling
 
 HALVINGS = 7
 MOST_TRIED = 40
-"""Speeds at which a load is tried for heat."""
+"""Speeds at which a load is tried for all checks beside the torque of links."""
+AT_A_LOAD = ("tooth separation",)
+"""Checks that less load does not help: they are shown over load by a map of their own."""
 
 
 def dead_loads(ground: Ground, swept: Swept, loads: LoadSet) -> tuple[DeadLoad, ...]:
     """Largest share of load at which all limits hold in the judged ranges with each machine's worst cylinder dead.
 
-    Limits of torque, of heat and temperature of couplings, of a generator's electrical angle and inertia torque.
+    In the normal state, cold and hot, and at both ends of the tolerances: the torque of every link at all speeds, and
+    every other check (heat, temperature, dampers, generators) at no more than 40 of them.
     """
     out = []
     for group in loads.groups:
@@ -44,25 +52,54 @@ def dead_loads(ground: Ground, swept: Swept, loads: LoadSet) -> tuple[DeadLoad, 
         ]
         if group.cylinders is None or not numbers or not group.cylinders.follows_load:
             continue
-        if not _any_limit(ground):
+        if not any(item.limit is not None for item in all_findings(ground)):
             out.append(DeadLoad(group.name, swept.loads[numbers[0]].name, None, "no limits are given"))
             continue
-        numbers.sort(key=lambda number: -_most_used(ground, swept.cases[number]))
-        worst = numbers[0]
-        share, why = _largest_share(ground, swept, loads, worst)
-        hottest = max(numbers, key=lambda number: _heat(ground, swept.cases[number]))
-        for number in numbers[1:]:
-            limiting = _limiting if number == hottest else _torque_limiting
-            if share is not None and limiting(ground, swept, loads, number, share) is not None:
-                worst, (share, why) = number, _largest_share(ground, swept, loads, number)
-        out.append(DeadLoad(group.name, swept.loads[worst].name, share, why))
+        out.append(_dead_load(ground, swept, loads, group.name, numbers))
     return tuple(out)
 
 
-def _any_limit(ground: Ground) -> bool:
-    generators = any(machine.kind == "generator" for machine in ground.train.machines)
-    limited = any(curve.continuous_nm is not None for curve in ground.limits)
-    return limited or generators or bool(heated_couplings(ground.train))
+def _dead_load(ground: Ground, swept: Swept, loads: LoadSet, name: str, numbers: list[int]) -> DeadLoad:
+    """The limit of one machine: by the torques of every cylinder dead, then by all checks of the two worst of them."""
+    numbers = sorted(numbers, key=lambda number: -_most_used(ground, swept.cases[number]))
+    cases = [swept.loads[number] for number in numbers]
+    legs = [_leg(ground, swept, loads, state, cases) for state in _states(swept)]
+    hottest = max(range(len(cases)), key=lambda place: _heat(ground, swept.cases[numbers[place]]))
+    tests = [(place, partial(_over, ground, leg, place)) for place in range(len(cases)) for leg in legs]
+    for place in sorted({0, hottest}):
+        tests += [(place, partial(_trial, ground, swept, loads, leg.state, cases[place])) for leg in legs]
+    worst, share, why = 0, 1.0, "all limits of torque, heat and generators hold at full load"
+    for place, test in tests:
+        link = test(share)
+        if link is None:
+            continue
+        if (unloaded := test(0.0)) is not None:
+            return DeadLoad(name, cases[place].name, None, f"{unloaded} is beyond its limit even at no load")
+        found = _bisected(test, share)
+        worst, share, why = place, found[0], f"limited by {found[1] or link}"
+    return DeadLoad(name, cases[worst].name, share, why)
+
+
+def _bisected(test: Callable[[float], str | None], high: float) -> tuple[float, str]:
+    """Largest share found below `high` that passes a test that 0 passes, and what is beyond its limit above it."""
+    low, link = 0.0, ""
+    for _ in range(HALVINGS):
+        middle = 0.5 * (low + high)
+        found = test(middle)
+        if found is None:
+            low = middle
+        else:
+            high, link = middle, found
+    return low, link
+
+
+def _states(swept: Swept) -> list[State]:
+    """The states that are judged, the normal one first."""
+    kept: dict[str, State] = {}
+    for state in swept.states:
+        if state.judged and state.kind in ("normal", "temperature", "tolerance") and state.name != OWN_HEAT:
+            kept.setdefault(state.name, state)
+    return list(kept.values())
 
 
 def _most_used(ground: Ground, case: CaseResponse) -> float:
@@ -81,49 +118,60 @@ def _heat(ground: Ground, case: CaseResponse) -> float:
     return float(np.nan_to_num(case.heat_w[rows][:, ground.continuous]).max(initial=0.0))
 
 
-def _limiting(ground: Ground, swept: Swept, loads: LoadSet, number: int, share: float) -> str | None:
-    """What is beyond its limit at a share of load in load case `number`; None where nothing is."""
-    return _torque_limiting(ground, swept, loads, number, share) or _trial(ground, swept, loads, number, share)
+@dataclass(frozen=True)
+class _Leg:
+    """All dead cylinders in one state at the judged speeds: lines at no load, then at full load, of each in turn."""
+
+    state: State
+    loads: LoadSet
+    lines: StateLines
+    share: Floats
 
 
-def _torque_limiting(ground: Ground, swept: Swept, loads: LoadSet, number: int, share: float) -> str | None:
-    """The link whose torque is beyond its limit at a share of load, couplings at 30 °C."""
+def _leg(ground: Ground, swept: Swept, loads: LoadSet, state: State, cases: list[LoadCase]) -> _Leg:
+    both = tuple(replace(case, load_share=share) for case in cases for share in (0.0, 1.0))
+    speeds, law = swept.speed_rad_s[ground.continuous], swept.share[ground.continuous]
+    return _Leg(state, loads, evaluate(state, loads, both, (Kept((), ()),) * len(both), speeds, law), law)
+
+
+def _over(ground: Ground, leg: _Leg, place: int, load: float) -> str | None:
+    """The link whose torque is beyond its limit with the cylinder `place` dead at a share of load.
+
+    Lines are linear in the load: between none and full.
+    """
     places = [n for n, curve in enumerate(ground.limits) if curve.continuous_nm is not None]
     if not places:
         return None
-    inside = ground.continuous
-    limits = np.array([ground.limits[n].continuous_nm for n in places])[:, inside]
-    weights = np.array([_weight(swept, number, n)[inside] for n in places])
-    half = _at_load(swept, loads, number, share, places, inside) * weights
+    rubber = set(rubber_links(ground.train, ground.graph))
+    weighs = np.array([number in rubber for number in places])
+
+    def judged(own: Lines, torque: Complexes) -> Complexes:
+        return np.asarray(np.where(weighs[:, None, None], torque * line_weights(own), torque))
+
+    values = []
+    pairs = zip(leg.loads.groups, leg.lines.groups[2 * place], leg.lines.groups[2 * place + 1], strict=True)
+    for group, none, full in pairs:
+        empty, whole = none.link_nm[places], full.link_nm[places]
+        values.append((group, judged(full, empty + load * (whole - empty))))
+    single = [
+        item.amplitude_nm(leg.share * load) * np.abs(judged(own, own.link_nm[places])).max(axis=1)
+        for item, own in zip(leg.loads.plain, leg.lines.plain, strict=True)
+    ]
+    half = put_together(values, single, (len(places), len(leg.share))).half
+    limits = np.array([ground.limits[n].continuous_nm for n in places])[:, ground.continuous]
     over = np.flatnonzero((half > limits * (1 + 1e-9)).any(axis=1))
     return ground.limits[places[int(over[0])]].link if len(over) else None
 
 
-def _largest_share(ground: Ground, swept: Swept, loads: LoadSet, number: int) -> tuple[float | None, str]:
-    if _limiting(ground, swept, loads, number, 1.0) is None:
-        return 1.0, "all limits of torque, heat and generators hold at full load"
-    if (first := _limiting(ground, swept, loads, number, 0.0)) is not None:
-        return None, f"{first} is beyond its limit even at no load"
-    low, high, link = 0.0, 1.0, ""
-    for _ in range(HALVINGS):
-        middle = 0.5 * (low + high)
-        found = _limiting(ground, swept, loads, number, middle)
-        if found is None:
-            low = middle
-        else:
-            high, link = middle, found
-    return low, f"limited by {link}"
+def _trial(ground: Ground, swept: Swept, loads: LoadSet, state: State, case: LoadCase, load: float) -> str | None:
+    """What is beyond any limit at a share of load, at no more than 40 of the judged speeds.
 
-
-def _trial(ground: Ground, swept: Swept, loads: LoadSet, number: int, share: float) -> str | None:
-    """What is beyond its limit at a share of load, stiffness, heat and temperature of couplings settled on each other.
-
-    At no more than 40 of the judged speeds: heat, torques of links, and the motion of generators.
+    In the normal state with stiffness, heat and temperature of couplings settled on each other.
     """
-    state, case = swept.states[0], replace(swept.loads[number], load_share=share)
+    case = replace(case, load_share=load)
     few = thinned(ground.continuous, MOST_TRIED)
     speeds, law = swept.speed_rad_s[few], swept.share[few]
-    couplings, springs = heated_couplings(ground.train), None
+    couplings, springs = heated_couplings(ground.train) if state.kind == "normal" else (), None
     if couplings:
         allowed = {item.name: ambient_k(item) + _rise(item) for item in couplings}
         found = settle_heat(state, loads, case, speeds, law, max(allowed.values()))
@@ -134,58 +182,29 @@ def _trial(ground: Ground, swept: Swept, loads: LoadSet, number: int, share: flo
     kept = all_kept(state.graph)
     lines = evaluate(state, loads, (case,), (kept,), speeds, law, springs)
     torque = torque_range(loads, case, 0, lines, law)
-    weights = [_weight(swept, number, place)[few] for place in range(len(ground.limits))]
-    for place, curve in enumerate(ground.limits):
-        if curve.continuous_nm is not None:
-            over = torque.half[place] * weights[place] > curve.continuous_nm[few] * (1 + 1e-9)
-            if over.any():
-                return curve.link
-    return _generator(ground, Combined(state, loads, case, 0, lines, speeds, law, torque, kept))
+    what = Combined(state, loads, case, 0, lines, speeds, law, torque, kept)
+    watched, rubber = watched_stations(ground.train, state.graph), rubber_links(ground.train, state.graph)
+    made = combine(what, mean_links(state, case), watched, rubber)
+    tried = replace(_at(ground, few), cases=(replace(made, judged=True),))
+    failed = (item for item in all_findings(tried) if item.verdict == "fail" and item.check not in AT_A_LOAD)
+    return next((item.element for item in failed), None)
+
+
+def _at(ground: Ground, few: Ints) -> Ground:
+    """The same at some of its speeds, all of them run at for good."""
+
+    def taken(row: Floats | None) -> Floats | None:
+        return None if row is None else row[few]
+
+    limits = tuple(
+        replace(curve, continuous_nm=taken(curve.continuous_nm), passing_nm=taken(curve.passing_nm))
+        for curve in ground.limits
+    )
+    return replace(ground, speed_rad_s=ground.speed_rad_s[few], continuous=np.ones(len(few), dtype=bool), limits=limits)
 
 
 def _rise(coupling: Coupling) -> float:
     return 0.0 if coupling.ratings is None else coupling.ratings.heat_rise_k or 0.0
-
-
-def _generator(ground: Ground, what: Combined) -> str | None:
-    """The generator whose electrical angle or inertia torque is beyond its limit."""
-    duty = ground.train.duty
-    for machine in ground.train.machines:
-        if machine.kind != "generator" or machine.at is None:
-            continue
-        station = ground.graph.number(machine.at)
-        every = np.ones(len(what.speed_rad_s), dtype=bool)
-        angle = what.angles((station,), 0, every)[0] * (machine.poles or 2) / 2.0
-        inertia = what.angles((station,), 2, every)[0] * float(ground.graph.inertia_kgm2[station])
-        rated = machine.electrical.rated_torque_nm or ground.mean.at_station(ground.graph, station)
-        if (angle > duty.electrical_rad).any() or (rated is not None and (inertia > duty.inertia_torque * rated).any()):
-            return machine.name
-    return None
-
-
-def _weight(swept: Swept, number: int, place: int) -> Floats:
-    """(S,) weighted over plain alternating torque of a coupling in a case; 1 of other links."""
-    case = swept.cases[number]
-    weighted, plain = case.weighted_torque_nm[place], case.alternating_torque_nm[place]
-    with np.errstate(all="ignore"):
-        return np.where(np.isfinite(weighted) & (plain > 0), weighted / plain, 1.0)
-
-
-def _at_load(swept: Swept, loads: LoadSet, number: int, share: float, places: list[int], inside: Bools) -> Floats:
-    """(places, speeds inside) alternating torque of load case `number` of the normal state at a share of its load.
-
-    Lines are linear in the load: between none and full. Those at no load follow from the normal and the light case.
-    """
-    unloaded = no_load_lines(swept)
-    values = []
-    for group, own, none in zip(loads.groups, swept.lines.groups[number], unloaded, strict=True):
-        empty, full = (part[places][:, :, inside] for part in (none, own.link_nm))
-        values.append((group, empty + share * (full - empty)))
-    single = [
-        item.amplitude_nm(swept.share[inside] * share) * np.abs(own.link_nm[places][:, :, inside]).max(axis=1)
-        for item, own in zip(loads.plain, swept.lines.plain, strict=True)
-    ]
-    return put_together(values, single, (len(places), int(inside.sum()))).half
 
 
 def no_load_lines(swept: Swept) -> list[Complexes]:

@@ -153,12 +153,16 @@ def _gear(ground: Ground, place: int, curve: LimitCurve, name: str) -> Iterator[
     if duty.gear_reversal == "allowed" or not ground.mean.known or not np.isfinite(mean):
         return
 
+    def holding(case: CaseResponse) -> Floats:
+        return np.asarray(np.abs(case.mean_torque_nm[place]))
+
     def ratio(case: CaseResponse) -> Floats:
         with np.errstate(all="ignore"):
-            return np.asarray(case.alternating_torque_nm[place] / np.abs(case.mean_torque_nm[place]))
+            return np.asarray(vibratory(case) / holding(case))
 
-    text = "alternating over mean torque: above 1 the teeth separate (no reversal in continuous running, class rules)"
-    yield from worst(ground, name, "tooth separation", "", f"{text}, {duty.edition or RECALLED}", ratio, 1.0)
+    text = "the limit is the mean torque, above it the teeth separate (no reversal in continuous running, class rules)"
+    basis = f"{text}, {duty.edition or RECALLED}"
+    yield from worst(ground, name, "tooth separation", "N·m", basis, vibratory, holding)
     if ground.train.operation.barred_rad_s:
         words = "alternating over mean torque while a barred range is passed: above 1 teeth separate; no limit is kept"
         yield from worst(_in_barred(ground), name, "tooth separation", "", words, ratio, None, "passing")

@@ -17,6 +17,7 @@ from quillshaft.train.model import Train
 
 RPM = 30.0 / math.pi
 Zone = Literal["continuous", "passing"]
+Limit = Callable[[CaseResponse], Floats] | Floats | float | None
 
 
 @dataclass(frozen=True)
@@ -48,10 +49,12 @@ def worst(
     unit: str,
     basis: str,
     values: Callable[[CaseResponse], Floats],
-    limit: Floats | float | None,
+    limit: Limit,
     zone: Zone = "continuous",
 ) -> Iterator[Finding]:
     """The case and speed at which a value is largest, against its limit where there is one; none where unknown.
+
+    The limit may differ from case to case.
 
     Cases with a dead cylinder have a finding of their own, where they ask for more than the others.
     """
@@ -77,22 +80,23 @@ def _largest(
     unit: str,
     basis: str,
     values: Callable[[CaseResponse], Floats],
-    limit: Floats | float | None,
+    limit: Limit,
     zone: Zone,
 ) -> Finding | None:
-    where, best = ground.zone(zone), -1.0
+    where, best = ground.zone(zone), (-1.0, 0.0)
     found: Finding | None = None
     for case in cases if where.any() else ():
         own = values(case)
-        bound = np.full(own.shape, np.nan) if limit is None else np.broadcast_to(np.asarray(limit, float), own.shape)
+        given = limit(case) if callable(limit) else np.nan if limit is None else limit
+        bound = np.broadcast_to(np.asarray(given, float), own.shape)
         with np.errstate(all="ignore"):
             used = own if limit is None else share_of(own, bound)
         used = np.where(where & np.isfinite(own) & ~np.isnan(used), used, -1.0)
-        at = int(np.argmax(used))
-        if used[at] <= best:
+        at = int(np.argmax(np.where(used == used.max(), own, -1.0)))
+        if (float(used[at]), float(own[at])) <= best:
             continue
-        best, allowed = float(used[at]), None if limit is None else float(bound[at])
-        verdict: FindingVerdict = "no limit given" if limit is None else "pass" if best <= 1.0 + 1e-9 else "fail"
+        best, allowed = (float(used[at]), float(own[at])), None if limit is None else float(bound[at])
+        verdict: FindingVerdict = "no limit given" if limit is None else "pass" if best[0] <= 1.0 + 1e-9 else "fail"
         speed = float(ground.speed_rad_s[at]) * RPM
         found = Finding(
             element, check, float(own[at]), allowed, unit, speed, case.name, zone, verdict, basis, case.kind

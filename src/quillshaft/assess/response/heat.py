@@ -13,7 +13,7 @@ from quillshaft.assess.response.loads import LoadCase, LoadSet
 from quillshaft.assess.response.states import State
 from quillshaft.elements.coupling import table_value
 from quillshaft.graph.network import Bools, Floats, Ints
-from quillshaft.graph.states import REFERENCE_K
+from quillshaft.graph.states import REFERENCE_K, coupling_temperature
 from quillshaft.records import dataclass
 from quillshaft.sources.gas import Complexes
 from quillshaft.train.coupling_model import Coupling
@@ -56,7 +56,7 @@ def settle_heat(
 ) -> Heated:
     """Iterate T = ambient + rise · heat / permitted heat at every speed (S,), from the ambient up.
 
-    The state's couplings are at 30 °C. What has not settled in 60 rounds, or leaves its table by more than 60 K, runs
+    What has not settled in 60 rounds, or leaves its table by more than 60 K, runs
     away; the iteration stops early where a coupling gets hotter than highest_k. Source: steady heat balance with a
     constant thermal resistance (common practice; the rise at the permitted heat is the maker's).
     """
@@ -128,14 +128,14 @@ def heated_springs(
     springs = base.copy()
     for coupling in couplings:
         index = state.graph.link(coupling.name).index
-        softer = _factors(coupling.temperature_points, kelvin[coupling.name])
-        looser = _factors(coupling.damping_points, kelvin[coupling.name]) if coupling.damping_points else 1.0
+        stands = coupling_temperature(coupling, state.temperature)
+        softer = _factors(coupling.temperature_points, kelvin[coupling.name], stands)
+        looser = _factors(coupling.damping_points, kelvin[coupling.name], stands) if coupling.damping_points else 1.0
         springs[index] = base[index].real * softer * (1 + 1j * base[index].imag / base[index].real * looser)
     return springs
 
 
-def _factors(points: tuple[tuple[float, float], ...], kelvin: Floats) -> Floats:
-    """(S,) factors at temperatures [K] over that at 30 °C."""
+def _factors(points: tuple[tuple[float, float], ...], kelvin: Floats, stands_k: float) -> Floats:
+    """(S,) factors at temperatures [K] over that at the temperature of the state."""
     table = np.array(points)
-    at_reference = table_value(points, REFERENCE_K)
-    return np.asarray(np.interp(kelvin, table[:, 0], table[:, 1]) / at_reference)
+    return np.asarray(np.interp(kelvin, table[:, 0], table[:, 1]) / table_value(points, stands_k))

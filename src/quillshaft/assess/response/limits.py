@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import replace
 
 import numpy as np
@@ -18,6 +19,7 @@ from quillshaft.elements.endurance import (
     yield_alternating,
 )
 from quillshaft.elements.propulsion_rule import continuous_limit, passing_limit, propulsion_shaft
+from quillshaft.elements.shaft_sections import rectangle_modulus
 from quillshaft.elements.stress import Concentration, section_concentration, section_modulus
 from quillshaft.graph.network import Floats
 from quillshaft.graph.torsional import TorsionalGraph
@@ -172,19 +174,32 @@ def _endurance(
 
 
 def _sections(shaft: Shaft, own: ShaftStrength) -> list[_Section]:
-    """Sections to judge: the one stated as weakest, else the smaller end of every piece."""
+    """Sections to judge: the one stated as weakest, else the smaller end of every round piece and every rectangle."""
     if own.weakest is not None:
-        found = [(f"the weakest section, {_size(own.weakest)}", own.weakest)]
-    else:
-        found = []
-        for number, piece in enumerate(shaft.pieces):
-            if not piece.flange and piece.section_m is None:
-                section = _piece_section(shaft.pieces, number)
-                found.append((f"piece {number + 1}, {_size(section)}", section))
-    return [
-        _Section(words, section, section_modulus(section.od_m, section.id_m), section_concentration(section))
-        for words, section in found
-    ]
+        return [_round(f"the weakest section, {_size(own.weakest)}", own.weakest)]
+    found = []
+    for number, piece in enumerate(shaft.pieces):
+        if piece.section_m is not None:
+            found.append(_rectangle(shaft.pieces, number, piece.section_m))
+        elif not piece.flange:
+            section = _piece_section(shaft.pieces, number)
+            found.append(_round(f"piece {number + 1}, {_size(section)}", section))
+    return found
+
+
+def _round(words: str, section: StressSection) -> _Section:
+    return _Section(words, section, section_modulus(section.od_m, section.id_m), section_concentration(section))
+
+
+def _rectangle(pieces: tuple[Piece, ...], number: int, sides_m: tuple[float, float]) -> _Section:
+    """A rectangular piece: size by a round of its area; a sharp shoulder to its neighbours where no factor is given."""
+    piece = pieces[number]
+    beside = [max(pieces[other].od_m) for other in (number - 1, number + 1) if 0 <= other < len(pieces)]
+    shoulder = max((od for od in beside if od > 0.0), default=None)
+    equal = 2.0 * math.sqrt(sides_m[0] * sides_m[1] / math.pi)
+    section = StressSection(equal, 0.0, None, shoulder, stress_factor=piece.stress_factor, surface=piece.surface)
+    words = f"piece {number + 1}, rectangle {sides_m[0] * 1e3:.4g} by {sides_m[1] * 1e3:.4g} mm"
+    return _Section(words, section, rectangle_modulus(*sides_m), section_concentration(section))
 
 
 def _size(section: StressSection) -> str:

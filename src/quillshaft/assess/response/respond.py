@@ -26,11 +26,10 @@ from quillshaft.assess.response.maps import separation_maps, waves
 from quillshaft.assess.response.mean import MeanTorques, mean_torques_of
 from quillshaft.assess.response.measure import gauges
 from quillshaft.assess.response.restrictions import restrictions
-from quillshaft.assess.response.run import UNDAMPED, Swept, modes_of, sweep
-from quillshaft.assess.response.states import State, all_states
+from quillshaft.assess.response.run import UNDAMPED, Swept, modes_of, rubber_links, sweep, watched_stations
+from quillshaft.assess.response.states import OWN_HEAT, State, all_states
 from quillshaft.assess.response_results import CaseResponse, Response
 from quillshaft.assess.results import Screening
-from quillshaft.elements.coupling_duty import weighs_by_frequency
 from quillshaft.graph.network import Bools
 from quillshaft.sources.gas import CycleError
 from quillshaft.train.basic_model import Assumed
@@ -39,6 +38,7 @@ from quillshaft.train.problems import TrainFileError
 from quillshaft.train.validate import Findings
 
 MOST_HEATED = 200
+RPM = 30.0 / math.pi
 
 COMBINATION = (
     "Sources locked in phase are synthesised over their working cycle; sources of unknown mutual phase are added by "
@@ -57,12 +57,8 @@ def respond(screening: Screening) -> Response:
     loads = _loads(screening, mean)
     states = all_states(train, screening.temperature)
     _check_damping(train, states[0], loads)
-    generators = {machine.at for machine in train.machines if machine.kind == "generator"}
-    watched = sorted({screening.graph.number(name) for name in (train.operation.speed_at, *generators) if name})
-    rubber = {item.name for item in train.couplings if weighs_by_frequency(item.kind)}
-    couplings = tuple(n for n, link in enumerate(screening.graph.links) if link.name in rubber)
-    swept = sweep(states, loads, tuple(watched), couplings)
-    swept = _with_heat(swept, loads, tuple(watched), couplings)
+    watched, couplings = watched_stations(train, screening.graph), rubber_links(train, screening.graph)
+    swept = _with_heat(sweep(states, loads, watched, couplings), loads, watched, couplings)
     assumed = [*loads.assumed, *_assumed(train, loads)]
     speeds, rated = swept.speed_rad_s, train.operation.rated_rad_s
     limits = limit_curves(train, screening.graph, swept.cases[0].mean_torque_nm, speeds / rated, assumed)
@@ -137,7 +133,7 @@ def _with_heat(swept: Swept, loads: LoadSet, watched: tuple[int, ...], couplings
     numbers = [0, *_hottest_dead(swept, [links.index(coupling.name) for coupling in heated], running)]
     cases, states, own_loads = list(swept.cases), list(swept.states), list(swept.loads)
     for number in numbers:
-        own = replace(state, name="own heat", kind="temperature", note="couplings at the temperature of their own heat")
+        own = replace(state, name=OWN_HEAT, kind="temperature", note="couplings at the temperature of their own heat")
         cases.append(_own_heat(own, swept, loads, number, running, (watched, couplings)))
         states.append(own)
         own_loads.append(swept.loads[number])
@@ -193,10 +189,15 @@ def _assumed(train: Train, loads: LoadSet) -> list[Assumed]:
     if train.power is not None and train.power.law is None:
         why = "not given: mean torque is taken as at rated speed at every speed"
         out.append(Assumed("power", "law", "constant-torque", why))
+    if train.power is not None and isinstance(train.power.law, tuple):
+        low, high = (train.power.law[end][0] * RPM for end in (0, -1))
+        why = "the table of the load law ends there: below and above the torque is held"
+        out.append(Assumed("power", "law", f"given from {low:.5g} to {high:.5g} rpm", why))
     if not operation.tachometer_given:
         why = "not given: allowance for the tachometer beside barred ranges and idle"
         out.append(Assumed("operation", "tachometer", f"{operation.tachometer * 100:.3g} %", why))
-    if loads.groups and not operation.light_load_given and train.power is not None:
+    engines = any(group.cylinders and group.cylinders.follows_load for group in loads.groups)
+    if engines and not operation.light_load_given and train.power is not None:
         why = "not given: share of full load of the light-load case, and of an engine below 0.8 of its idle speed"
         out.append(Assumed("operation", "light-load", f"{operation.light_load * 100:.3g} %", why))
     out += _criteria(train)

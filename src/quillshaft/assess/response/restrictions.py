@@ -6,6 +6,7 @@ import math
 
 import numpy as np
 
+from quillshaft.assess.response.combine import continuous_speeds
 from quillshaft.assess.response.dead_load import dead_loads
 from quillshaft.assess.response.evaluate import Lines, plain_responses
 from quillshaft.assess.response.ground import Ground, judged_torque
@@ -27,7 +28,10 @@ RUNNING = ("normal", "temperature", "tolerance")
 
 
 def over_limit(ground: Ground, case: CaseResponse) -> dict[str, Bools]:
-    """By link (S,) True where a continuous limit of torque is exceeded in a case, wherever that is."""
+    """By link (S,) True where a limit for continuous running is exceeded in a case, wherever that is.
+
+    Of couplings the mean and peak torque and the heat count as well.
+    """
     out = {}
     for place, curve in enumerate(ground.limits):
         if curve.continuous_nm is None:
@@ -35,12 +39,16 @@ def over_limit(ground: Ground, case: CaseResponse) -> dict[str, Bools]:
         own = judged_torque(case, place)
         if own.max(initial=0.0) > 0:
             out[curve.link] = own > curve.continuous_nm * (1.0 + 1e-9)
+    links = [link.name for link in ground.graph.links]
     for coupling in ground.train.couplings:
-        heat = None if coupling.ratings is None else coupling.ratings.permitted_heat_w
-        if heat is not None:
-            place = [link.name for link in ground.graph.links].index(coupling.name)
-            hot = case.heat_w[place] > heat * (1.0 + 1e-9)
-            out[coupling.name] = out.get(coupling.name, np.zeros_like(hot)) | hot
+        place, ratings = links.index(coupling.name), coupling.ratings
+        values = [(np.abs(case.mean_torque_nm[place]), coupling.rated_torque_nm)]
+        if ratings is not None:
+            values += [(case.heat_w[place], ratings.permitted_heat_w), (case.peak_torque_nm[place], ratings.peak_nm)]
+        for value, most in values:
+            if most is not None:
+                beyond = value > most * (1.0 + 1e-9)
+                out[coupling.name] = out.get(coupling.name, np.zeros_like(beyond)) | beyond
     return out
 
 
@@ -109,7 +117,7 @@ def _merged(spans: list[tuple[float, float, str]]) -> list[BarredSpan]:
             out[-1] = (before[0], max(before[1], end), listed)
         else:
             out.append((start, end, [words]))
-    return [BarredSpan(start, end, _few(words)) for start, end, words in out]
+    return [BarredSpan(start, end, _few(words), words == [DECLARED]) for start, end, words in out]
 
 
 def _few(words: list[str]) -> str:
@@ -197,17 +205,19 @@ def _per_unit(lines: Lines, limited: list[int], ground: Ground) -> tuple[Floats,
 
 
 def passages(screening: Screening, swept: Swept) -> tuple[Passage, ...]:
-    """Resonances below the judged range that are passed at the stated ramp, those of the largest torque first."""
+    """Resonances that are passed at the stated ramp, those of the largest torque first: below the judged range, and in
+    its barred ranges and gaps."""
     ramp = screening.train.operation.ramp_rad_s2
     if ramp is None:
         return ()
     shares = {share.source: share for share in swept.shares}
-    low, found = screening.train.operation.ranges_rad_s[0][0], []
+    top, found = screening.train.operation.ranges_rad_s[-1][1], []
     for pair in screening.interferences:
         share, mode = shares.get(pair.source), screening.mode(pair.mode)
         source = screening.source(pair.source)
         for rpm in pair.critical_speeds_rpm:
-            if share is None or rpm / RPM >= low or rpm / RPM < swept.speed_rad_s[0]:
+            run_at = continuous_speeds(screening.train.operation, np.array([rpm / RPM]))[0]
+            if share is None or run_at or not swept.speed_rad_s[0] <= rpm / RPM <= top:
                 continue
             place = int(np.argmin(np.abs(swept.speed_rad_s - rpm / RPM)))
             size = float(np.nan_to_num(share.torque_nm[:, place]).max())

@@ -23,7 +23,9 @@ from quillshaft.assess.response.loads import LoadCase, LoadSet
 from quillshaft.assess.response.mean import shares_along
 from quillshaft.assess.response.states import State
 from quillshaft.assess.response_results import CaseResponse, LineShare
+from quillshaft.elements.coupling_duty import weighs_by_frequency
 from quillshaft.graph.network import Floats
+from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.records import dataclass
 from quillshaft.solve.damped_state import undamped
 from quillshaft.solve.modes import natural_modes
@@ -52,6 +54,18 @@ class Swept:
     all_found: bool
 
 
+def watched_stations(train: Train, graph: TorsionalGraph) -> tuple[int, ...]:
+    """Stations whose speed irregularity and inertia torque are worked out: `speed-at` and those of generators."""
+    generators = {machine.at for machine in train.machines if machine.kind == "generator"}
+    return tuple(sorted({graph.number(name) for name in (train.operation.speed_at, *generators) if name}))
+
+
+def rubber_links(train: Train, graph: TorsionalGraph) -> tuple[int, ...]:
+    """Links whose vibratory torque weighs more at a higher frequency."""
+    rubber = {item.name for item in train.couplings if weighs_by_frequency(item.kind)}
+    return tuple(number for number, link in enumerate(graph.links) if link.name in rubber)
+
+
 def load_cases(train: Train, loads: LoadSet) -> tuple[LoadCase, ...]:
     """The normal case, every cylinder dead in turn, and light load."""
     cases = [LoadCase("normal", "normal", "")]
@@ -63,7 +77,7 @@ def load_cases(train: Train, loads: LoadSet) -> tuple[LoadCase, ...]:
                 name = f"{group.name} cylinder {place + 1} {word}"
                 cases.append(LoadCase(name, "dead cylinder", f"at {cylinder.at}", 1.0, group.name, place))
     share = train.operation.light_load
-    if train.power is not None and len(loads.groups):
+    if train.power is not None and any(group.cylinders and group.cylinders.follows_load for group in loads.groups):
         cases.append(LoadCase("light load", "light load", f"at {share * 100:.3g} % of full load", share))
     return tuple(cases)
 

@@ -39,6 +39,7 @@ class State:
     loads              all: every load case is asked for; worst: the normal one, and the dead cylinder that is worst
                        for the couplings in the normal state; one: the normal one alone
     pick               which of the graph's networks it is: nominal, or an end of the tolerances
+    temperature        at which the couplings stand
     judged             False of what is only shown beside the verdict
     """
 
@@ -50,11 +51,16 @@ class State:
     network: Network
     damping: Damping
     plan: Plan
+    temperature: Temperature
     duties: tuple[LinkDuty, ...]
     springs_along: Callable[[Floats], Floats] | None
     loads: Asked
     judged: bool
     pick: Pick
+
+
+OWN_HEAT = "own heat"
+"""Name of the state whose couplings stand at the temperature that their own heat brings them to."""
 
 
 def _nominal(graph: TorsionalGraph) -> Network:
@@ -89,8 +95,8 @@ def make_state(
     damping = with_magnifiers(train, graph, damping)
     along = None if settled is None else _along(train, settled, temperature, pick, network)
     duties = mean_torques(train, graph) if settled is None else settled.duties
-    plan = plan_elimination(network)
-    return State(name, kind, note, train, graph, network, damping, plan, duties, along, loads, judged, pick)
+    solved = (network, damping, plan_elimination(network))
+    return State(name, kind, note, train, graph, *solved, temperature, duties, along, loads, judged, pick)
 
 
 def with_magnifiers(train: Train, graph: TorsionalGraph, damping: Damping) -> Damping:
@@ -144,7 +150,7 @@ def all_states(train: Train, temperature: Temperature) -> tuple[State, ...]:
     for name, pick in (("soft and heavy", _soft), ("stiff and light", _stiff)):
         if _has_tolerances(train):
             note = f"all tolerances together, {name}"
-            states.append(make_state(train, name, "tolerance", note, low, temperature, pick))
+            states.append(make_state(train, name, "tolerance", note, low, temperature, pick, loads="worst"))
     if high != low:
         note = f"links that state no damping at ζ = {high * 100:.3g} % in place of {low * 100:.3g} %"
         states.append(make_state(train, "high damping", "high damping", note, high, temperature, judged=False))

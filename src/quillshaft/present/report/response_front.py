@@ -75,6 +75,8 @@ def response_headline(response: Response, by_separation: Headline) -> Headline:
 
 def _failure(found: Standing) -> str:
     """What is exceeded worst, or how many interferences are not cleared."""
+    if not found.failed and not found.not_cleared:
+        return "by forced response rated speed lies in a range that would have to be barred"
     if not found.failed:
         return f"forced response does not clear {counted(len(found.not_cleared), 'interference')}"
     worst = next((item for item in found.failed if item not in found.dead), found.failed[0])
