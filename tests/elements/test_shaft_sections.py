@@ -335,3 +335,11 @@ def test_a_composite_tube_stands_by_its_given_modulus():
     pieces = [{"od": "120 mm", "id": "100 mm", "length": "900 mm"}]
     expected = math.pi * 28e9 * (0.12**4 - 0.1**4) / (32 * 0.9)
     assert stiffness_of(pieces, tube, material="tube") == pytest.approx(expected, rel=1e-13)
+
+
+@pytest.mark.parametrize(
+    ("ratio", "alpha"), [(1.0, 0.208), (1.5, 0.231), (2.0, 0.246), (3.0, 0.267), (4.0, 0.282), (10.0, 0.312)]
+)
+def test_a_rectangle_has_its_tabled_shear_stress(ratio, alpha):
+    # Timoshenko and Goodier, Theory of Elasticity, table of k2 for rectangular bars (from memory, three digits)
+    assert sections.rectangle_modulus(ratio * 0.05, 0.05) / (ratio * 0.05**3) == pytest.approx(alpha, abs=6e-4)

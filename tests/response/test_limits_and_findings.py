@@ -8,6 +8,7 @@ import numpy as np
 import pytest
 from response_trains import RPM, engine_text, place, plain_text, response_of
 
+from quillshaft.assess.response_standing import standing
 from quillshaft.elements.endurance import permitted_alternating, shear_strength, tensile_share_limits
 
 GEOMETRY = {
@@ -239,3 +240,52 @@ def test_a_train_with_a_swinging_damper_responds_with_the_damper_lost_too(damper
     omega = 2 * response.speed_rad_s[at]
     expected = 60 * np.hypot(1, 0.02) / np.hypot(1 - omega**2 / (1e5 * 5 / 6), 0.02)
     assert lost.alternating_torque_nm[place(response, "shaft"), at] == pytest.approx(expected, rel=1e-9)
+
+
+NECK = {
+    "between": ["driver", "load"],
+    "material": "steel-x",
+    "loss-factor": 0.02,
+    "pieces": [{"od": "150 mm", "length": "400 mm"}, {"section": {"square": "70 mm"}, "length": "60 mm"}],
+}
+
+
+def test_a_square_neck_is_judged_by_its_own_modulus():
+    """τ = T / (0.208 a³) at the middle of a side (Timoshenko and Goodier, torsion of rectangular bars, from memory)."""
+    materials = {
+        "steel-x": {"shear-modulus": "80 GPa", "density": "7850 kg/m^3", "tensile": "650 MPa", "yield": "400 MPa"}
+    }
+    criteria = {"strength": {"rule": "endurance"}}
+    for kilowatts, verdict in ((2000, "fail"), (1, "pass")):
+        power = {"driver": kilowatts, "load": "balance", "law": "constant-torque"}
+        text = plain_text("10 N m", shafts={"shaft": NECK}, materials=materials, criteria=criteria, power=power)
+        response = response_of(text)
+        item = finding(response, "shaft", "alternating stress")
+        assert item.verdict == verdict
+        assert "piece 2, rectangle 70 by 70 mm" in item.basis
+        modulus = 0.2081652601191 * 0.07**3
+        assert response.limits[0].mpa_per_nm == pytest.approx(1e-6 / modulus, rel=1e-9)
+        if kilowatts == 2000:  # 12.7 kN·m of mean torque: 178 N/mm², above 0.577 · 400 / 1.5
+            assert item.limit == 0.0
+
+
+def test_teeth_of_an_idle_gear_separate():
+    """No mean torque holds the teeth together: any alternating torque separates them."""
+    stations = '"load" = { "inertia" = 3.0 }\n"wheel" = { "inertia" = 0.4 }'
+    power = {"driver": 5, "load": "balance", "law": "constant-torque"}
+    text = plain_text("50 N m", power=power).replace('"load" = { "inertia" = 3.0 }', stations)
+    text += '[gears]\n"mesh" = { "between" = ["load", "wheel"], "teeth" = [20, 40], "rated-torque" = 500.0 }\n'
+    response = response_of(text)
+    item = finding(response, "mesh", "tooth separation")
+    assert (item.limit, item.verdict, item.use) == (0.0, "fail", math.inf)
+    assert item.value == pytest.approx(response.normal.alternating_torque_nm[1][response.continuous].max(), rel=1e-9)
+    assert response.governing.element == "mesh"
+    assert response.verdict == "fail"
+
+
+def test_rated_speed_in_a_range_to_be_barred_is_no_pass():
+    shaft = {"between": ["driver", "load"], "stiffness": 1e5, "loss-factor": 0.02, "permitted-torque": 900.0}
+    operation = {"rated": "1400 rpm", "range": ["900 rpm", "1600 rpm"]}
+    found = standing(response_of(plain_text(shafts={"shaft": shaft}, operation=operation)))
+    assert found.rated_barred
+    assert found.verdict == "fail"

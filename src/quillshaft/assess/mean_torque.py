@@ -18,6 +18,8 @@ from quillshaft.train.problems import TrainFileError
 from quillshaft.train.validate import Findings
 
 CLOSES = 1e-3
+NO_TORQUE = 1e-13
+"""Of the largest torque: what lies below is left by rounding."""
 
 
 def mean_torques(train: Train, graph: TorsionalGraph) -> tuple[LinkDuty, ...]:
@@ -44,6 +46,8 @@ def mean_torques(train: Train, graph: TorsionalGraph) -> tuple[LinkDuty, ...]:
         solution.link_torque[None, :],
         load[None, :],
     )[0]
+    size = np.abs(torques)
+    torques = np.where(size <= NO_TORQUE * float(np.max(np.nan_to_num(size), initial=0.0)), 0.0, torques)
     return tuple(_duty(link_index, float(torques[link_index]), graph) for link_index in range(len(graph.links)))
 
 

@@ -71,6 +71,9 @@ def restriction_words(response: Response, found: Standing) -> str:
     if found.dead:
         loads = [item for item in response.restrictions.dead_loads if (item.load_share or 0.0) < 1.0]
         said = [f"at most {(item.load_share or 0.0) * 100:.0f} % of full load with {item.cylinder}" for item in loads]
+        helped = tuple(f"{item.machine} cylinder" for item in response.restrictions.dead_loads)
+        other = dict.fromkeys(item.case.split(",")[0] for item in found.dead if not item.case.startswith(helped))
+        said += [f"no running with {case}" for case in other]
         parts.append(_listed(said) if said else "less load with a cylinder dead")
     return "; ".join(parts)
 

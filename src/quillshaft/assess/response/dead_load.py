@@ -22,16 +22,17 @@ from quillshaft.assess.response.heat import (
     thinned,
 )
 from quillshaft.assess.response.loads import LoadCase, LoadSet
-from quillshaft.assess.response.run import Swept, mean_links, rubber_links, watched_stations
+from quillshaft.assess.response.run import Swept, for_case, mean_links, rubber_links, watched_stations
 from quillshaft.assess.response.states import OWN_HEAT, State
 from quillshaft.assess.response_results import CaseResponse, DeadLoad
 from quillshaft.graph.network import Floats, Ints
+from quillshaft.graph.states import follows_torque
 from quillshaft.records import dataclass
 from quillshaft.sources.gas import Complexes
 from quillshaft.train.coupling_model import Coupling
 
 HALVINGS = 7
-MOST_TRIED = 40
+MOST_FOLLOWED, MOST_TRIED = 200, 40
 """Speeds at which a load is tried for all checks beside the torque of links."""
 AT_A_LOAD = ("tooth separation",)
 """Checks that less load does not help: they are shown over load by a map of their own."""
@@ -41,7 +42,8 @@ def dead_loads(ground: Ground, swept: Swept, loads: LoadSet) -> tuple[DeadLoad, 
     """Largest share of load at which all limits hold in the judged ranges with each machine's worst cylinder dead.
 
     In the normal state, cold and hot, and at both ends of the tolerances: the torque of every link at all speeds, and
-    every other check (heat, temperature, dampers, generators) at no more than 40 of them.
+    every other check (heat, temperature, dampers, generators) at no more than 40 of them. Where couplings follow mean
+    torque nothing is linear in the load: every check at no more than 200 speeds.
     """
     out = []
     for group in loads.groups:
@@ -63,11 +65,12 @@ def _dead_load(ground: Ground, swept: Swept, loads: LoadSet, name: str, numbers:
     """The limit of one machine: by the torques of every cylinder dead, then by all checks of the two worst of them."""
     numbers = sorted(numbers, key=lambda number: -_most_used(ground, swept.cases[number]))
     cases = [swept.loads[number] for number in numbers]
-    legs = [_leg(ground, swept, loads, state, cases) for state in _states(swept)]
+    states, follows = _states(swept), follows_torque(ground.train)
     hottest = max(range(len(cases)), key=lambda place: _heat(ground, swept.cases[numbers[place]]))
+    legs = [] if follows else [_leg(ground, swept, loads, state, cases) for state in states]
     tests = [(place, partial(_over, ground, leg, place)) for place in range(len(cases)) for leg in legs]
-    for place in sorted({0, hottest}):
-        tests += [(place, partial(_trial, ground, swept, loads, leg.state, cases[place])) for leg in legs]
+    for place in range(len(cases)) if follows else sorted({0, hottest}):
+        tests += [(place, partial(_trial, ground, swept, loads, state, cases[place])) for state in states]
     worst, share, why = 0, 1.0, "all limits of torque, heat and generators hold at full load"
     for place, test in tests:
         link = test(share)
@@ -169,7 +172,9 @@ def _trial(ground: Ground, swept: Swept, loads: LoadSet, state: State, case: Loa
     In the normal state with stiffness, heat and temperature of couplings settled on each other.
     """
     case = replace(case, load_share=load)
-    few = thinned(ground.continuous, MOST_TRIED)
+    follows = follows_torque(ground.train)
+    state = for_case(state, case) if follows else state
+    few = thinned(ground.continuous, MOST_FOLLOWED if follows else MOST_TRIED)
     speeds, law = swept.speed_rad_s[few], swept.share[few]
     couplings, springs = heated_couplings(ground.train) if state.kind == "normal" else (), None
     if couplings:
@@ -205,16 +210,3 @@ def _at(ground: Ground, few: Ints) -> Ground:
 
 def _rise(coupling: Coupling) -> float:
     return 0.0 if coupling.ratings is None else coupling.ratings.heat_rise_k or 0.0
-
-
-def no_load_lines(swept: Swept) -> list[Complexes]:
-    """By group (links, lines, S) [N·m] at no load, from the normal and the light-load case of the normal state."""
-    light = next((n for n, case in enumerate(swept.loads) if case.kind == "light load"), None)
-    full = swept.lines.groups[0]
-    if light is None:
-        return [own.link_nm for own in full]
-    share = swept.loads[light].load_share
-    return [
-        (some.link_nm - share * own.link_nm) / (1.0 - share)
-        for own, some in zip(full, swept.lines.groups[light], strict=True)
-    ]

@@ -3,15 +3,19 @@
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 
 import numpy as np
 
 from quillshaft.assess.response.combine import put_together
-from quillshaft.assess.response.dead_load import no_load_lines
+from quillshaft.assess.response.evaluate import Kept, evaluate
 from quillshaft.assess.response.loads import LoadSet
-from quillshaft.assess.response.run import Swept
+from quillshaft.assess.response.run import Swept, for_case
 from quillshaft.assess.response.synthesis import cycle_points, wave
 from quillshaft.assess.response_results import SeparationMap, Wave
+from quillshaft.graph.network import Floats
+from quillshaft.graph.states import follows_torque
+from quillshaft.sources.gas import Complexes
 from quillshaft.train.model import Operation, Train
 
 RPM = 30.0 / math.pi
@@ -26,27 +30,52 @@ def separation_maps(train: Train, swept: Swept, loads: LoadSet) -> tuple[Separat
     """
     names = [link.name for link in swept.states[0].graph.links]
     share = np.linspace(0.0, 1.0, LOADS)[1:]
-    none = no_load_lines(swept)
-    out = []
-    for gear in train.gears:
-        place = names.index(gear.name)
-        mean = swept.cases[0].mean_torque_nm[place]
-        if not np.isfinite(mean).all() or not mean.any():
-            continue
-        rows = []
-        for load in share.tolist():
-            values = [
-                (group, (empty + load * (own.link_nm - empty))[place : place + 1])
-                for group, own, empty in zip(loads.groups, swept.lines.groups[0], none, strict=True)
-            ]
-            single = [
-                item.amplitude_nm(swept.share * load) * np.abs(own.link_nm[place : place + 1]).max(axis=1)
-                for item, own in zip(loads.plain, swept.lines.plain, strict=True)
-            ]
-            half = put_together(values, single, (1, len(mean))).half[0]
-            rows.append(half / np.maximum(np.abs(mean) * load, 1e-300))
-        out.append(SeparationMap(gear.name, share, np.array(rows)))
-    return tuple(out)
+    gears = [gear.name for gear in train.gears if _has_mean(swept, names.index(gear.name))]
+    if not gears:
+        return ()
+    places = [names.index(gear) for gear in gears]
+    mean = np.abs(swept.cases[0].mean_torque_nm[places])
+    rows = [_alternating(swept, loads, places, load) / np.maximum(mean * load, 1e-300) for load in share.tolist()]
+    return tuple(SeparationMap(gear, share, np.array([row[n] for row in rows])) for n, gear in enumerate(gears))
+
+
+def _has_mean(swept: Swept, place: int) -> bool:
+    mean = swept.cases[0].mean_torque_nm[place]
+    return bool(np.isfinite(mean).all() and mean.any())
+
+
+def _alternating(swept: Swept, loads: LoadSet, places: list[int], load: float) -> Floats:
+    """(places, S) alternating torque [N·m] of links in normal firing at a share of load.
+
+    Between none and full, or anew where couplings follow mean torque.
+    """
+    state, shape = swept.states[0], (len(places), len(swept.speed_rad_s))
+    if follows_torque(state.train):
+        case = replace(swept.loads[0], load_share=load)
+        lines = evaluate(for_case(state, case), loads, (case,), (Kept((), ()),), swept.speed_rad_s, swept.share)
+        torques, plain = [own.link_nm for own in lines.groups[0]], lines.plain
+    else:
+        full, plain = swept.lines.groups[0], swept.lines.plain
+        torques = [none + load * (own.link_nm - none) for own, none in zip(full, no_load_lines(swept), strict=True)]
+    values = [(group, torque[places]) for group, torque in zip(loads.groups, torques, strict=True)]
+    single = [
+        item.amplitude_nm(swept.share * load) * np.abs(own.link_nm[places]).max(axis=1)
+        for item, own in zip(loads.plain, plain, strict=True)
+    ]
+    return put_together(values, single, shape).half
+
+
+def no_load_lines(swept: Swept) -> list[Complexes]:
+    """By group (links, lines, S) [N·m] at no load, from the normal and the light-load case of the normal state."""
+    light = next((n for n, case in enumerate(swept.loads) if case.kind == "light load"), None)
+    full = swept.lines.groups[0]
+    if light is None:
+        return [own.link_nm for own in full]
+    share = swept.loads[light].load_share
+    return [
+        (some.link_nm - share * own.link_nm) / (1.0 - share)
+        for own, some in zip(full, swept.lines.groups[light], strict=True)
+    ]
 
 
 def chosen_speeds(operation: Operation) -> tuple[float, ...]:

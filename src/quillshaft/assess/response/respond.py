@@ -133,7 +133,12 @@ def _with_heat(swept: Swept, loads: LoadSet, watched: tuple[int, ...], couplings
     numbers = [0, *_hottest_dead(swept, [links.index(coupling.name) for coupling in heated], running)]
     cases, states, own_loads = list(swept.cases), list(swept.states), list(swept.loads)
     for number in numbers:
-        own = replace(state, name=OWN_HEAT, kind="temperature", note="couplings at the temperature of their own heat")
+        own = replace(
+            swept.states[number],
+            name=OWN_HEAT,
+            kind="temperature",
+            note="couplings at the temperature of their own heat",
+        )
         cases.append(_own_heat(own, swept, loads, number, running, (watched, couplings)))
         states.append(own)
         own_loads.append(swept.loads[number])

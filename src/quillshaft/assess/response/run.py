@@ -21,10 +21,11 @@ from quillshaft.assess.response.evaluate import Kept, StateLines, all_kept, eval
 from quillshaft.assess.response.grid import MOST_SPEEDS, NEAREST, ROUNDS, first_speeds, refine
 from quillshaft.assess.response.loads import LoadCase, LoadSet
 from quillshaft.assess.response.mean import shares_along
-from quillshaft.assess.response.states import State
+from quillshaft.assess.response.states import State, at_mean_torques
 from quillshaft.assess.response_results import CaseResponse, LineShare
 from quillshaft.elements.coupling_duty import weighs_by_frequency
 from quillshaft.graph.network import Floats
+from quillshaft.graph.states import follows_torque
 from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.records import dataclass
 from quillshaft.solve.damped_state import undamped
@@ -39,7 +40,8 @@ UNDAMPED = 1e-6
 class Swept:
     """Every case over the speeds (S,) [rad/s], with the state and the load case of each.
 
-    lines, means   of the normal state, by load case: what its sources do, and mean link torques (links,) [N·m]
+    lines, means   of the normal state, by load case: what its sources do, and mean link torques (links,) [N·m]; single
+                   sources as in the first
     all_found      False where the grid could not be refined until every peak is found
     """
 
@@ -139,6 +141,7 @@ def sweep(states: tuple[State, ...], loads: LoadSet, watched: tuple[int, ...], c
     modes = [modes_of(state) for state in states]
     speeds = first_speeds(train, loads, modes)
     cases = _asked(states, loads, couplings, speeds)
+    states, cases = _apart(states, cases)
     means = [[mean_links(state, case) for case in own] for state, own in zip(states, cases, strict=True)]
     work = _Work(states, loads, cases, means, watched, couplings, bands(states, loads))
     least = NEAREST * min(max(float(np.min(zeta, initial=1.0)), 1e-3) for _, zeta in modes)
@@ -154,6 +157,24 @@ def sweep(states: tuple[State, ...], loads: LoadSet, watched: tuple[int, ...], c
         parts.append(work.part(peaks.add))
     lines = [joined_lines([part.lines[state] for part in parts], order) for state in range(len(states))]
     return work.whole(speeds, lines, ranges, found)
+
+
+def for_case(state: State, case: LoadCase) -> State:
+    """The state with couplings that follow mean torque at that of a load case."""
+    return at_mean_torques(state, mean_links(state, case) * case.load_share)
+
+
+def _apart(
+    states: tuple[State, ...], cases: list[tuple[LoadCase, ...]]
+) -> tuple[tuple[State, ...], list[tuple[LoadCase, ...]]]:
+    """The same, a state of its own for every load case where couplings follow its mean torque."""
+    pairs: list[tuple[State, tuple[LoadCase, ...]]] = []
+    for state, own in zip(states, cases, strict=True):
+        if len(own) > 1 and follows_torque(state.train):
+            pairs += [(for_case(state, case), (case,)) for case in own]
+        else:
+            pairs.append((state, own))
+    return tuple(state for state, _ in pairs), [own for _, own in pairs]
 
 
 def _asked(
@@ -247,7 +268,10 @@ class _Work:
                 cases.append(case)
         shares = line_shares(self.loads, lines[0], share)
         found = (tuple(responses), tuple(states), tuple(cases), shares)
-        return Swept(speed_rad_s, share, *found, lines[0], self.means[0], all_found)
+        normal = [number for number, state in enumerate(self.states) if state.kind == "normal"]
+        groups = tuple(own for number in normal for own in lines[number].groups)
+        means = [mean for number in normal for mean in self.means[number]]
+        return Swept(speed_rad_s, share, *found, replace(lines[0], groups=groups), means, all_found)
 
 
 @dataclass(frozen=True)

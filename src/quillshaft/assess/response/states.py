@@ -16,7 +16,7 @@ from quillshaft.assess.response_results import CaseKind
 from quillshaft.assess.results import LinkDuty
 from quillshaft.graph.build import build_graph
 from quillshaft.graph.network import Floats, Network
-from quillshaft.graph.states import Temperature, follows_temperature
+from quillshaft.graph.states import Temperature, follows_temperature, follows_torque
 from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.records import dataclass
 from quillshaft.solve.damped_state import Damping
@@ -36,6 +36,7 @@ class State:
 
     network, damping   referred, rings of untuned dampers as nodes of their own, after all others
     springs_along      (S,) speeds -> (springs, S) stiffness where it follows speed; None elsewhere
+    settled            couplings at their mean torques, where a stiffness follows them or speed; None elsewhere
     loads              all: every load case is asked for; worst: the normal one, and the dead cylinder that is worst
                        for the couplings in the normal state; one: the normal one alone
     pick               which of the graph's networks it is: nominal, or an end of the tolerances
@@ -54,6 +55,7 @@ class State:
     temperature: Temperature
     duties: tuple[LinkDuty, ...]
     springs_along: Callable[[Floats], Floats] | None
+    settled: Settled | None
     loads: Asked
     judged: bool
     pick: Pick
@@ -96,7 +98,7 @@ def make_state(
     along = None if settled is None else _along(train, settled, temperature, pick, network)
     duties = mean_torques(train, graph) if settled is None else settled.duties
     solved = (network, damping, plan_elimination(network))
-    return State(name, kind, note, train, graph, *solved, temperature, duties, along, loads, judged, pick)
+    return State(name, kind, note, train, graph, *solved, temperature, duties, along, settled, loads, judged, pick)
 
 
 def with_magnifiers(train: Train, graph: TorsionalGraph, damping: Damping) -> Damping:
@@ -113,6 +115,20 @@ def with_magnifiers(train: Train, graph: TorsionalGraph, damping: Damping) -> Da
             inertia = float(graph.inertia_kgm2[station]) * float(graph.scale[station]) ** 2
             lost[graph.node[station]] += inertia / (machine.magnifier or 1.0) / shared
     return replace(damping, node_lost_kgm2=lost) if lost.any() else damping
+
+
+def at_mean_torques(state: State, mean_nm: Floats) -> State:
+    """The state with couplings that follow mean torque at other mean torques, (links,) [N·m] at rated speed; nan is 0.
+
+    In an elastic loop the torques split by the stiffness itself: there the couplings stay as they are.
+    """
+    settled = state.settled
+    if settled is None or settled.split_follows_stiffness or not follows_torque(state.train):
+        return state
+    torques = np.nan_to_num(mean_nm).tolist()
+    duties = tuple(replace(d, mean_torque_nm=value) for d, value in zip(settled.duties, torques, strict=True))
+    own = replace(settled, duties=duties)
+    return replace(state, springs_along=_along(state.train, own, state.temperature, state.pick, state.network))
 
 
 def _along(
