@@ -57,7 +57,7 @@ def collect_sources(train: Train, graph: TorsionalGraph) -> SourceSet:
         raise TrainFileError(tuple(findings.problems))
     on = [source for source in sources if _reason_off(source, train) is None]
     off = [(source, reason) for source in sources if (reason := _reason_off(source, train)) is not None]
-    return SourceSet(_merged(on, _phased(train)), tuple(off))
+    return SourceSet(tuple(_stated(source, train) for source in _merged(on, _phased(train))), tuple(off))
 
 
 def _reason_off(source: Source, train: Train) -> str | None:
@@ -74,11 +74,6 @@ def _given(excitation: Excitation, graph: TorsionalGraph, findings: Findings) ->
     if excitation.order and graph.speed_ratio[station] == 0:
         message = f"an order needs a station that turns, and {excitation.at} stands still"
         findings.add(("excitations", excitation.name, "order"), message, excitation.order)
-    torque = None
-    if excitation.torque_share is not None:
-        torque = f"{excitation.torque_share * 100:.3g} % of mean torque"
-    elif excitation.torque_nm is not None:
-        torque = f"{excitation.torque_nm:.4g} N·m"
     return Source(
         excitation.name,
         (excitation.name,),
@@ -92,8 +87,22 @@ def _given(excitation: Excitation, graph: TorsionalGraph, findings: Findings) ->
         excitation.when,
         action,
         None,
-        torque,
+        _amplitude(excitation.torque_nm, excitation.torque_share),
     )
+
+
+def _amplitude(torque_nm: float | None, share: float | None) -> str | None:
+    """An amplitude in words; None where there is none."""
+    if share is not None:
+        return f"{share * 100:.3g} % of mean torque"
+    return None if torque_nm is None else f"{torque_nm:.4g} N·m"
+
+
+def _stated(source: Source, train: Train) -> Source:
+    """The source with the amplitude that [amplitudes] states for it."""
+    stated = [item for item in train.amplitudes if source.answers_to(item.source)]
+    words = dict.fromkeys(_amplitude(item.torque_nm, item.torque_share) for item in stated)
+    return replace(source, torque=" + ".join(word for word in words if word)) if stated else source
 
 
 def _check_names(sources: list[Source], train: Train, findings: Findings) -> None:

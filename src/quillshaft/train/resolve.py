@@ -189,6 +189,8 @@ def excitations(rows: Rows, said: Assumptions) -> tuple[Excitation, ...]:
     out = []
     for name, row in rows.keyed["excitations"].items():
         measure, value = row.torque or (None, 0.0)
+        if row.locked_with is not None and row.phase is None:
+            said.add(f"excitations.{name}", "phase", "0°", f"not given: in phase with the angle of {row.locked_with}")
         out.append(
             Excitation(
                 name,

@@ -271,6 +271,8 @@ class ExcitationRow(ElementRow):
             raise complain("a constant frequency keeps its phase to no shaft", "order alone", "frequency")
         if self.torque is None:
             raise complain("needs an amplitude, which is not given", 'torque = "1.5 %" beside it', "locked-with")
+        if (self.order or 0.0) < 0:
+            raise complain("is below 0, and its phase is counted with the shaft", "an order above 0", "order")
         return self
 
 

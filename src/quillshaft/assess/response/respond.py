@@ -250,6 +250,13 @@ def _notes(screening: Screening, swept: Swept, loads: LoadSet) -> list[str]:
     several = [item.source.name for item in loads.plain if len(item.places) > 1 and not item.silent]
     if several:
         out.append(f"applied at whichever station of the shaft line is worst for each link: {', '.join(several)}")
+    off = [source for source, _ in screening.sources_off]
+    if off:
+        names = ", ".join(source.name for source in off[:6]) + (f" and {len(off) - 6} more" if len(off) > 6 else "")
+        out.append(f"switched off by the file, so not here: {names}")
+    idle = [item.source for item in screening.train.amplitudes if any(one.answers_to(item.source) for one in off)]
+    if idle:
+        out.append(f"an amplitude is stated for a source that is switched off, and not used: {', '.join(idle)}")
     when = sorted({source.name for source in screening.sources if source.when != "continuous"})
     if when:
         out.append(f"not steady, so not here: {', '.join(when)} (they act at the start or in a fault)")

@@ -95,14 +95,15 @@ def mean_links(state: State, case: LoadCase) -> Floats:
 def _without(train: Train, case: LoadCase) -> Train:
     """The train without the power of one cylinder; what balances it takes less.
 
-    Where the power of the engine stands at another station, all powers fall by the cylinder's share.
+    Where the power of the engine stands at another station, or at some of its throws only, all powers fall by the
+    cylinder's share.
     """
     assert train.power is not None
     machine = next(item for item in train.machines if item.name == case.group)
     at = machine.cylinders[case.dead or 0].at
     watts = dict(train.power.stations_w)
     own = watts.get(at)
-    if own is None:
+    if own is None or any(cylinder.at not in watts for cylinder in machine.cylinders):
         left = 1.0 - 1.0 / len(machine.cylinders)
         return replace(train, power=replace(train.power, stations_w={k: v and v * left for k, v in watts.items()}))
     watts[at] = own * (1.0 - 1.0 / sum(cylinder.at == at for cylinder in machine.cylinders))

@@ -73,7 +73,7 @@ def wave_chart(response: Response, link: str) -> Figure:
         raise ValueError(f"no wave of {link} was synthesised")
     panels = [panel[:MOST_CURVES] for panel in found[:MOST_PANELS]]
     left_out = sum(map(len, found)) - sum(map(len, panels))
-    note = look.wrap(_note(panels, left_out), look.WIDTH_MM - 4.0)
+    note = look.wrap(_note(response, panels, left_out), look.WIDTH_MM - 4.0)
     high, foot = HIGH_MM[len(panels)], len(note) * look.line_mm() + 2.0
     made = look.frame(_title(response, link, panels), len(panels) * (high + HEAD_MM + AXIS_MM) + foot)
     page = look.millimetre_axes(made, 0.0, made.top_mm)
@@ -198,7 +198,8 @@ def _title(response: Response, link: str, panels: Sequence[Sequence[Curve]]) -> 
         return f"The torque in {name} swings about zero: no mean torque passes it, or none is known"
     least = min((curve for curve in curves if curve.has_mean), key=_left)
     return (
-        f"The torque in {name} never reverses; at {least.wave.speed_rpm:.0f} rpm it falls to {unit.text(_left(least))}"
+        f"At the speeds shown the torque in {name} does not reverse; at {least.wave.speed_rpm:.0f} rpm it falls to "
+        f"{unit.text(_left(least))}"
     )
 
 
@@ -207,8 +208,10 @@ def _left(curve: Curve) -> float:
     return float(curve.torque_nm.min()) if curve.mean_nm > 0 else -float(curve.torque_nm.max())
 
 
-def _note(panels: Sequence[Sequence[Curve]], left_out: int) -> str:
+def _note(response: Response, panels: Sequence[Sequence[Curve]], left_out: int) -> str:
     text = "Torque at the first-named station, mean included; long dash-dot: mean."
+    if len({share.group for share in response.shares}) > 1:
+        text += " Each wave holds its own sources alone; those of unknown phase beside them add to it."
     if any(curve.turned_nm for panel in panels for curve in panel):
         text += " Hatched: the torque reverses against its mean."
     bare = [curve.wave.case for panel in panels for curve in panel if not curve.has_mean]

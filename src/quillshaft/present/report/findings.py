@@ -35,7 +35,7 @@ def finding_parts(screening: Screening, response: Response | None = None) -> lis
         *_shapes(screening),
         *_interferences(screening, response),
         *_excitations(screening),
-        *_damping(screening),
+        *_damping(screening, response is not None),
     ]
 
 
@@ -211,7 +211,10 @@ VISCOUS_COUNTS = (
 )
 
 
-def _damping(screening: Screening) -> list[Any]:
+def _damping(screening: Screening, shaken: bool) -> list[Any]:
+    """Damping as stated and assumed; `shaken` where a forced response, which rests on it, is in the report."""
+    enters = "Damping does not enter the verdicts by separation"
+    enters += "; those by forced response rest on it." if shaken else "."
     train = screening.train
     stated = [
         (link.name, f"{link.loss_factor:.4f}", f"{link.loss_factor * 2 * math.pi:.3f}", "stated")
@@ -230,7 +233,7 @@ def _damping(screening: Screening) -> list[Any]:
         paragraph(
             f"Links that state no damping take a loss factor 2ζ with ζ = {plain(low)} to {plain(high)}; the low "
             "value is used. The damping ratio of a mode is half its links' loss factors weighted by their shares "
-            "of strain energy. Damping does not enter the verdicts of this screening."
+            f"of strain energy. {enters}"
         ),
         *([paragraph(VISCOUS_COUNTS)] if viscous else ()),
         data_table(("Link", "loss factor η", "ψ = 2π η", "where from"), rows, align="lrrl"),
