@@ -57,6 +57,13 @@ def test_both_sides_carry_one_torque_and_the_slip_is_heat(power):
     assert fluid_torques(read, build_graph(read)) == pytest.approx({"oil": torque}, rel=1e-12)
 
 
+@pytest.mark.parametrize(("share", "flagged"), [(1.01, False), (0.99, True)])
+def test_a_fluid_coupling_beyond_its_rated_torque_is_flagged(share, flagged):
+    rated = share * 500e3 / RATED
+    result = screening_of(fluid_train({"motor": "500 kW", "fan": "balance"}, oil={**OIL, "rated-torque": rated}))
+    assert any("exceeds its rated" in flag.text for flag in result.flags) == flagged
+
+
 def test_powers_that_close_without_the_heat_of_the_slip_are_refused():
     assert screening_of(fluid_train({"motor": "500 kW", "fan": "-480 kW"})).station_power_w
     assert "do not close" in refusal(fluid_train({"motor": "500 kW", "fan": "-500 kW"}))

@@ -403,10 +403,8 @@ def test_a_wave_that_keeps_its_direction_says_how_far_it_falls():
     waves = given.waves[:1]
     title = title_of(wave_chart(replace(given, waves=waves), "rubber-blocks"))
     left = torque_text(given, float(waves[0].torque_nm[number].min()))
-    assert (
-        title
-        == f"At the speeds shown the torque in elastomer coupling rubber-blocks does not reverse; at 1486 rpm it falls to {left}"
-    )
+    said = "At the speeds shown the torque in elastomer coupling rubber-blocks does not reverse"
+    assert title == f"{said}; at 1486 rpm it falls to {left}"
 
 
 def test_a_wave_without_mean_torque_swings_about_zero():

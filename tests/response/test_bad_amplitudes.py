@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 import pytest
-from response_trains import engine_text, plain_text, response_of
+from response_trains import RPM, engine_text, plain_text, response_of
 
 from quillshaft.train.problems import TrainFileError
+from trains import screening_of
 
 
 def refused(text: str) -> str:
@@ -80,3 +81,52 @@ def test_an_amplitude_that_stands_for_another_source_on_the_same_line_is_listed_
     (found,) = [item for item in response.assumed if item.element == "pump vane-pass"]
     assert found.value == "that of wave"
     assert "along the same line" in found.why
+
+
+def test_what_is_switched_off_is_said_with_an_amplitude_that_goes_unused():
+    response = response_of(plain_text(amplitudes={"driver 1x": "5 N m"}))
+    assert "switched off by the file, so not here: driver 1x, driver 2x" in response.notes
+    assert any("driver 1x" in note and "not used" in note for note in response.notes)
+
+
+def test_a_locked_excitation_without_a_phase_lists_the_one_taken_and_takes_no_order_below_0():
+    shake = {"at": "driver", "order": 1, "torque": "100 N m", "locked-with": "third"}
+    third = {"at": "driver", "order": 3, "torque": "30 N m"}
+    screening = screening_of(plain_text(excitations={"shake": shake, "third": third}))
+    (found,) = [item for item in screening.train.assumed if item.key == "phase"]
+    assert (found.element, found.value) == ("excitations.shake", "0°")
+    assert "an order above 0" in refused(plain_text(excitations={"shake": {**shake, "order": -1}, "third": third}))
+
+
+def test_a_compressor_has_no_light_load_case_as_its_gas_does_not_follow_the_load():
+    assert [case.kind for case in response_of(plain_text(power=POWER)).cases].count("light load") == 0
+    assert [case.kind for case in response_of(engine_text()).cases].count("light load") == 1
+
+
+POWER = {"driver": 100, "load": "balance", "law": "constant-torque"}
+
+
+@pytest.mark.parametrize(
+    ("law", "said"),
+    [
+        ({"900 rpm": "20 %", "1400 rpm": "50 %"}, "gives 50 % of rated power at rated speed, 1500 rpm"),
+        ({"300 rpm": "10 %"}, "gives 10 % of rated power"),
+        ({"900 rpm": "20 %", "1500 rpm": "100 %"}, None),
+    ],
+)
+def test_a_load_law_that_is_not_whole_at_rated_speed_is_refused(law, said):
+    text = plain_text(power={"driver": 100, "load": "balance", "law": law})
+    if said is not None:
+        assert said in refused(text)
+        return
+    response = response_of(text)
+    case, speeds = response.normal, response.speed_rad_s
+    low = float(abs(case.mean_torque_nm[0, 0]))
+    full = 100e3 / (1500 * RPM)
+    assert speeds[0] < 500 * RPM
+    assert low == pytest.approx(full * 0.2 * 1500 / 900, rel=1e-9)  # held below the first point
+    assert any(item.key == "law" and "from 900 to 1500 rpm" in item.value for item in response.assumed)
+
+
+def test_an_idle_above_the_range_is_refused():
+    assert "lies above the rated speed" in refused(plain_text(operation={"idle": "1800 rpm"}))

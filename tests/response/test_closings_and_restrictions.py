@@ -8,7 +8,10 @@ import numpy as np
 import pytest
 from response_trains import RPM, alternating_at, engine_text, plain_text, response_of
 
+from quillshaft.present.response_limits_words import restriction_sentences
+
 CRITICAL = 1378.3  # rpm at which 2x meets the two discs' mode
+SHAFT_LINE = '"shaft" = { "between" = ["driver", "load"], "stiffness" = 100000.0, "loss-factor" = 0.02 }\n'
 WIDE = {"range": ["900 rpm", "1600 rpm"], "idle": "700 rpm"}
 
 
@@ -149,6 +152,45 @@ def test_a_ramp_says_how_long_a_resonance_is_passed_and_what_that_does():
     assert row.seconds == pytest.approx(2 * 0.01 * frequency / rate, rel=1e-3)
     assert row.cycles == pytest.approx(2 * 0.01 * frequency**2 / rate, rel=1e-3)
     assert 0.3 < row.peak_share < 1.0
+
+
+def test_the_resonance_in_a_barred_range_is_among_those_that_are_passed():
+    operation = {
+        "range": ["900 rpm", "1600 rpm"],
+        "barred": [["1250 rpm", "1500 rpm"]],
+        "barred-because": "first mode on 2x",
+        "ramp": "60 rpm/s",
+    }
+    response = response_of(plain_text(operation=operation))
+    row = next(item for item in response.restrictions.passages if item.source == "shake")
+    assert row.at_rpm == pytest.approx(CRITICAL, rel=1e-4)
+    frequency = response.screening.modes[0].frequency_hz
+    assert row.seconds == pytest.approx(2 * 0.01 * frequency / (2 * 60 / 60), rel=1e-3)
+    (span,) = response.restrictions.barred
+    assert (span.from_rpm, span.to_rpm, span.declared) == (pytest.approx(1250.0), pytest.approx(1500.0), True)
+    lines = restriction_sentences(response)
+    assert any("as declared, no allowance added" in line for line in lines)
+
+
+def test_lowest_idle_counts_the_peak_torque_of_a_coupling():
+    """Mean 318 N·m: the peak rating of 800 is exceeded where the alternating torque is still within its 600."""
+    rubber = {
+        "kind": "disc",
+        "between": ["driver", "load"],
+        "stiffness": 1e5,
+        "loss-factor": 0.02,
+        "rated-torque": "600 N m",
+        "vibratory-torque": "600 N m",
+        "peak-torque": "800 N m",
+    }
+    power = {"driver": "60 kW", "load": "balance", "law": "constant-torque"}
+    operation = {"range": ["1600 rpm", "1900 rpm"], "rated": "1800 rpm", "idle": "1000 rpm"}
+    text = plain_text("50 N m", order=2, couplings={"rubber": rubber}, operation=operation, power=power)
+    response = response_of(text.replace(SHAFT_LINE, ""))
+    peak = response.normal.peak_torque_nm[0]
+    below = response.speed_rad_s < 1600 * RPM
+    last = response.speed_rad_s[below & (peak > 800.0)].max() / RPM
+    assert response.restrictions.lowest_idle_rpm == pytest.approx(last * 1.02, rel=0.01)
 
 
 def side_line(limit: float, **line):

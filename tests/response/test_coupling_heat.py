@@ -8,6 +8,10 @@ import numpy as np
 import pytest
 from response_trains import RPM, plain_text, response_of
 
+from quillshaft import respond
+from quillshaft.assess.screening import screen_alone
+from trains import train
+
 RUBBER = {
     "between": ["driver", "load"],
     "stiffness": 2e4,
@@ -17,6 +21,9 @@ RUBBER = {
     "ambient": "30 degC",
     "rated-torque": 1000,
 }
+
+
+DAMPING = {"30 degC": 1.0, "80 degC": 0.8}
 
 
 def heated(torque: str, heat: str, rise: str, order: float = 1.0):
@@ -69,3 +76,19 @@ def test_no_heat_is_worked_out_without_the_rise_at_the_permitted_heat():
     shaft = '"shaft" = { "between" = ["driver", "load"], "stiffness" = 100000.0, "loss-factor" = 0.02 }\n'
     response = response_of(text.replace(shaft, ""))
     assert all(not case.temperature_k for case in response.cases)
+
+
+def test_the_settled_temperature_does_not_depend_on_where_the_screening_stands():
+    """A coupling finds its own temperature from the air about it, whether the train is shown cold, at 30 °C or hot."""
+    rubber = {**RUBBER, "permitted-heat": "200 W", "heat-rise": "40 K", "damping-temperature": DAMPING}
+    text = plain_text("60 N m", 1.0, couplings={"rubber": rubber})
+    shaft = '"shaft" = { "between" = ["driver", "load"], "stiffness" = 100000.0, "loss-factor" = 0.02 }\n'
+    read, settled = train(text.replace(shaft, "")), []
+    for temperature in ("reference", "cold", "hot"):
+        response = respond(screen_alone(read, temperature))
+        found, speeds = case_of(response).temperature_k["rubber"], response.speed_rad_s
+        inside = response.continuous
+        settled.append(np.interp(np.array([1000.0, 1300.0]) * RPM, speeds[inside], found[inside]))
+    assert settled[0].max() > 303.15 + 1.0
+    assert settled[1] == pytest.approx(settled[0], abs=0.05)
+    assert settled[2] == pytest.approx(settled[0], abs=0.05)

@@ -7,6 +7,7 @@ from collections.abc import Iterator
 
 from quillshaft.assess.coupling_flags import damper_flags, fluid_flags, overspeed_flags, rating_flags, twist_flags
 from quillshaft.assess.gear_flags import gear_flags
+from quillshaft.assess.mean_torque import fluid_torques
 from quillshaft.assess.reciprocating_flags import reciprocating_flags
 from quillshaft.assess.results import Flag, LinkDuty
 from quillshaft.assess.throw_flags import throw_flags
@@ -161,10 +162,16 @@ def _duty_flags(train: Train, graph: TorsionalGraph, duties: tuple[LinkDuty, ...
         coupling: Coupling | None = rated.get(duty.link)
         if coupling is None or coupling.rated_torque_nm is None or duty.mean_torque_nm is None:
             continue
-        if abs(duty.mean_torque_nm) > coupling.rated_torque_nm:
-            rating = f"its rated {coupling.rated_torque_nm:.5g} N·m"
-            text = f"mean torque {abs(duty.mean_torque_nm):.5g} N·m exceeds {rating}"
-            yield Flag(f"couplings.{duty.link}", text)
+        yield from _overloaded(duty.link, duty.mean_torque_nm, coupling.rated_torque_nm)
+    through = fluid_torques(train, graph)
+    for fluid in train.fluid_couplings:
+        if fluid.rated_torque_nm is not None and fluid.name in through:
+            yield from _overloaded(fluid.name, through[fluid.name], fluid.rated_torque_nm)
+
+
+def _overloaded(name: str, torque_nm: float, rated_nm: float) -> Iterator[Flag]:
+    if abs(torque_nm) > rated_nm:
+        yield Flag(f"couplings.{name}", f"mean torque {abs(torque_nm):.5g} N·m exceeds its rated {rated_nm:.5g} N·m")
 
 
 def _power_flags(train: Train) -> Iterator[Flag]:

@@ -66,7 +66,7 @@ def _passing(response: Response) -> str:
         return "No ramp is stated: how long a resonance is dwelt in while it is passed is not known."
     ramp = found.ramp_rad_s2 * RPM
     if not found.passages:
-        return f"At the stated ramp of {number(ramp, 3)} rpm/s no resonance is passed below the judged ranges."
+        return f"At the stated ramp of {number(ramp, 3)} rpm/s no resonance is passed outside the judged speeds."
     least = min(found.passages, key=lambda item: item.peak_share)
     return (
         f"At the stated ramp of {number(ramp, 3)} rpm/s {counted(len(found.passages), 'resonance')} listed below "
@@ -96,7 +96,8 @@ def tolerable_note(response: Response) -> str:
 def dead_note() -> str:
     """How the load with a dead cylinder is meant."""
     return (
-        "Load with a dead cylinder keeps the limits of torque, heat, temperature and generators in the judged ranges; "
+        "Load with a dead cylinder keeps the limits of torque, heat, temperature, dampers and generators in the judged "
+        "ranges, over the tolerances, cold and hot; "
         "a misfiring engine is stopped and repaired as its maker says."
     )
 

@@ -11,13 +11,15 @@ from quillshaft.assess.response.ground import Ground
 from quillshaft.assess.response.run import Swept
 from quillshaft.assess.response_results import Gauge
 from quillshaft.assess.results import Screening
+from quillshaft.elements.stress import section_modulus
 from quillshaft.graph.network import Floats
 from quillshaft.solve.steady import steady_response
 from quillshaft.train.shaft_model import Shaft
 
 RPM = 30.0 / math.pi
 MOST_MODES = 8
-MPA = 1e6
+MEASURABLE = 1e-4
+"""Of the largest alternating torque of a link: what a source makes of less is not expected to be seen."""
 
 
 def gauges(screening: Screening, ground: Ground, swept: Swept) -> tuple[Gauge, ...]:
@@ -35,13 +37,13 @@ def _gauge(screening: Screening, ground: Ground, swept: Swept, number: int, torq
     encoder = max(mode.shape, key=lambda name: abs(mode.shape[name]))
     link = None if place is None else graph.links[place]
     name = None if link is None else link.name
-    strain = None if place is None else _strain(ground, shafts, place, graph.links[place].name)
+    strain = None if name is None else _strain(shafts[name])
     torque, at_rpm, source = (None, None, None) if place is None else _expected(screening, swept, number, place)
     return Gauge(
         number,
         mode.frequency_hz,
         name,
-        "" if name is None else _section(shafts[name]),
+        "" if name is None else _words(shafts[name]),
         strain,
         torque,
         None if torque is None or strain is None else torque * strain,
@@ -81,23 +83,34 @@ def _best_place(
     return best, "its section is not in the file: strain follows once the diameter is known"
 
 
-def _strain(ground: Ground, shafts: dict[str, Shaft], place: int, name: str) -> float | None:
-    """Strain of a gauge at 45° [microstrain per N·m]: τ / (2 G) (pure shear, any strength of materials)."""
-    per_nm, material = ground.limits[place].mpa_per_nm, shafts[name].material
-    if per_nm is None or material is None:
+def _strain(shaft: Shaft) -> float | None:
+    """Strain of a gauge at 45° [microstrain per N·m]: τ / (2 G) at the gauged section (pure shear).
+
+    Source: strength of materials.
+    """
+    section = _section(shaft)
+    if section is None or shaft.material is None:
         return None
-    return per_nm * MPA / (2.0 * material.shear_modulus_pa) * 1e6
+    return 1e6 / section_modulus(section[0], section[1]) / (2.0 * shaft.material.shear_modulus_pa)
 
 
-def _section(shaft: Shaft) -> str:
+def _words(shaft: Shaft) -> str:
+    section = _section(shaft)
+    return "section not known" if section is None else section[2]
+
+
+def _section(shaft: Shaft) -> tuple[float, float, str] | None:
+    """Outer and inner diameter [m] where a gauge goes, and its words: the weakest section, else the thinnest piece."""
     own = shaft.strength.weakest if shaft.strength is not None else None
     if own is not None:
-        return f"{own.od_m * 1e3:.4g} mm"
+        return own.od_m, own.id_m, f"{own.od_m * 1e3:.4g} mm"
     round_pieces = [piece for piece in shaft.pieces if not piece.flange and piece.section_m is None]
     if not round_pieces:
-        return "section not known"
+        return None
     thinnest = min(round_pieces, key=lambda piece: min(piece.od_m))
-    return f"{min(thinnest.od_m) * 1e3:.4g} mm, {thinnest.length_m * 1e3:.4g} mm long"
+    small = int(thinnest.od_m[1] < thinnest.od_m[0])
+    words = f"{thinnest.od_m[small] * 1e3:.4g} mm, {thinnest.length_m * 1e3:.4g} mm long"
+    return thinnest.od_m[small], thinnest.id_m[small], words
 
 
 def _expected(
@@ -106,6 +119,7 @@ def _expected(
     """Largest torque amplitude of one source in the link at a critical speed of the mode: value, rpm, source."""
     shares = {share.source: share for share in swept.shares}
     best: tuple[float, float, str] | None = None
+    least = MEASURABLE * float(np.nanmax(swept.cases[0].alternating_torque_nm[place], initial=0.0))
     for pair in screening.interferences:
         share = shares.get(pair.source)
         if pair.mode != mode or share is None:
@@ -114,7 +128,7 @@ def _expected(
             near = np.flatnonzero(np.abs(swept.speed_rad_s * RPM - rpm) <= 0.02 * rpm)
             if len(near):
                 value = float(share.torque_nm[place, near].max())
-                if best is None or value > best[0]:
+                if value > least and (best is None or value > best[0]):
                     best = (value, rpm, pair.source)
     return best if best is not None else (None, None, None)
 

@@ -134,13 +134,16 @@ def uses(response: Response, link: str) -> list[Use]:
     """The largest use of the limit in the judged ranges and at all other speeds, the larger first."""
     limit, rpm, found = limit_at_speeds(response, link), speeds_rpm(response), []
     for zone in (True, False):
-        inside = (response.continuous == zone) & np.isfinite(limit) & (limit > 0)
+        inside = (response.continuous == zone) & np.isfinite(limit)
         best: Use | None = None
         for case in judged_cases(response):
             row = swing(response, case, link)
-            share = np.where(inside & np.isfinite(row), row / np.where(inside, limit, 1.0), -1.0)
-            at = int(np.argmax(share))
-            if share[at] > (best.share if best else -0.5):
+            with np.errstate(divide="ignore", invalid="ignore"):
+                share = np.where(limit > 0, row / limit, np.where(row > 0, np.inf, 0.0))
+            share = np.where(inside & np.isfinite(row), share, -1.0)
+            at = int(np.argmax(np.where(share == share.max(), row, -1.0)))
+            held = (best.share, best.torque_nm) if best else (-0.5, 0.0)
+            if (share[at], row[at]) > held:
                 best = Use(float(share[at]), float(rpm[at]), case, float(row[at]), zone)
         found += [best] if best else []
     return sorted(found, key=lambda use: -use.share)

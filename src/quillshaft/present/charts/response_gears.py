@@ -90,6 +90,23 @@ def separation_title(response: Response, found: SeparationMap) -> str:
     return f"{text}; they separate outside it up to {share_text(float(ends[at]))} load, at {rpm[at]:.0f} rpm"
 
 
+def is_blank(found: SeparationMap) -> bool:
+    """True where the map of a gear would show nothing: the ratio stays below the lowest contour throughout."""
+    return not bool((_ratios(found) >= LEVELS[0]).any())
+
+
+def gear_lines(response: Response) -> list[str]:
+    """What needs no map: gears whose teeth stay in contact at every load, and gears without a mean torque."""
+    lines = [separation_title(response, item) for item in response.maps if is_blank(item)]
+    names = [link.name for link in response.screening.graph.links]
+    for gear in response.screening.train.gears:
+        mean = response.normal.mean_torque_nm[names.index(gear.name)]
+        if np.isfinite(mean).all() and not mean.any():
+            name = link_words(response.screening, response.screening.graph.link(gear.name))
+            lines.append(f"No mean torque passes {name}: any alternating torque separates its teeth")
+    return lines
+
+
 def _separating_loads(load: Floats, ratio: Floats) -> Floats:
     """(S,) highest load at which the ratio reaches 1, between loads by its logarithm; -1 where it does not."""
     ends: Floats = np.full(ratio.shape[1], -1.0)

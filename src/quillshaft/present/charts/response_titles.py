@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 
 from quillshaft.assess.response_results import Response
@@ -73,4 +74,7 @@ def panel_text(response: Response, link: str) -> str:
 
 def _use_text(response: Response, use: Use) -> str:
     zone = "continuous" if use.continuous else "passing"
+    if math.isinf(use.share):
+        torque = torque_text(response, use.torque_nm)
+        return f"{torque} where nothing is permitted, {where(response, use.rpm, use.case)}"
     return f"{share_text(use.share)} of the {zone} limit {where(response, use.rpm, use.case)}"

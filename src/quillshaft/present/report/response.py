@@ -114,11 +114,15 @@ def _machines(response: Response, figures: dict[str, Figure]) -> list[Any]:
     """Generators, heat of couplings and dampers, and tooth separation, each where there is any."""
     parts: list[Any] = []
     heat = [*coupling_lines(response), *damper_lines(response)]
+    from quillshaft.present.charts.response_gears import gear_lines, is_blank
+
+    blank = [f"response-gear-{number}.pdf" for number, item in enumerate(response.maps, start=1) if is_blank(item)]
+    figures = {name: figure for name, figure in figures.items() if name not in blank}
     for title, lines, kind in (
         ("With a damper at fault", fault_sentences(response), ""),
         ("Generators", generator_lines(response), ""),
         ("Heat of couplings and dampers", heat, "heat"),
-        ("Where gear teeth separate", [], "gear"),
+        ("Where gear teeth separate", gear_lines(response), "gear"),
     ):
         drawn = _charts(figures, kind) if kind else []
         if lines or drawn:
