@@ -7,6 +7,7 @@ from rich.console import Console
 from quillshaft.assess.results import Screening
 from quillshaft.present import tables
 from quillshaft.present.listed_modes import listed_modes, unlisted_sentence
+from quillshaft.present.shown_text import shown_text
 from quillshaft.present.viscous_words import viscous_rows
 from quillshaft.present.words import (
     case_lines,
@@ -92,4 +93,4 @@ def show_check(screening: Screening, out: Console) -> None:
     out.print()
     out.print(f"Questions about the data ({len(screening.flags)})", style="bold")
     for flag in screening.flags:
-        out.print(f"- {flag.element}: {flag.text}")
+        out.print(f"- {flag.element}: {shown_text(flag.text, screening.train.units)}")

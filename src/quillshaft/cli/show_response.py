@@ -26,6 +26,7 @@ from quillshaft.present.response_words import (
     spread_sentence,
     unjudged_sentence,
 )
+from quillshaft.present.shown_text import assumed_rows
 from quillshaft.present.tables import make_table
 from quillshaft.present.words import counted, range_words, temperature_words
 
@@ -144,7 +145,8 @@ def _basis(response: Response, out: Console, every: bool) -> None:
     said = [basis.speed_words(response) + f", {counted(len(response.cases), 'case')}.", _sentence(response.combination)]
     said += [line for line in (spread_sentence(response, torques.spread_shares(response)),) if line]
     said += [line for line in (unjudged_sentence(response),) if line]
-    said += [f"Assumed: {item.element}, {item.key} = {item.value}: {item.why}." for item in response.assumed]
+    assumed = assumed_rows(response.assumed, response.screening.train.units)
+    said += [f"Assumed: {element}, {key} = {value}: {why}." for element, key, value, why in assumed]
     said += [_sentence(note) for note in response.notes]
     _lines(out, "What it rests on", said)
     _lines(out, "Cautions", response_cautions(response))

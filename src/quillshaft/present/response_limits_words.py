@@ -5,6 +5,7 @@ from __future__ import annotations
 from quillshaft.assess.response_results import BarredSpan, DeadLoad, Gauge, Response, Tolerable
 from quillshaft.assess.response_standing import idle_too_low
 from quillshaft.present.response_values import RPM, torque_text, torque_unit
+from quillshaft.present.shown_text import shown_text
 from quillshaft.present.units import SHOWN
 from quillshaft.present.words import counted, hertz, number, percent, plain
 
@@ -109,7 +110,8 @@ def gauge_sentences(response: Response) -> list[str]:
 
 def _gauge(response: Response, gauge: Gauge) -> str:
     text = f"Mode {gauge.mode}, {hertz(gauge.frequency_hz)} Hz: "
-    text += f"gauge {gauge.link} ({gauge.section})" if gauge.link else "no shaft to gauge"
+    section = shown_text(gauge.section, response.screening.train.units)
+    text += f"gauge {gauge.link} ({section})" if gauge.link else "no shaft to gauge"
     if gauge.torque_nm is not None:
         text += f"; expect ±{torque_text(response, gauge.torque_nm, 3)}"
         if gauge.microstrain is not None:

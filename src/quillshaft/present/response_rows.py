@@ -14,6 +14,7 @@ from quillshaft.present.response_values import (
     torque_unit,
     value_cells,
 )
+from quillshaft.present.shown_text import shown_text
 from quillshaft.present.units import SHOWN
 from quillshaft.present.words import hertz, number, percent
 
@@ -142,7 +143,7 @@ def gauge_rows(response: Response) -> Rows:
         (
             f"{item.mode}",
             hertz(item.frequency_hz),
-            "–" if item.link is None else f"{item.link} ({item.section})",
+            "–" if item.link is None else f"{item.link} ({shown_text(item.section, response.screening.train.units)})",
             _or_dash(item.strain_per_nm, 1e3 / per_nm),
             torque_number(response, item.torque_nm, 3),
             _or_dash(item.microstrain, 1.0),

@@ -6,6 +6,7 @@ import math
 
 from quillshaft.assess.response_results import Response
 from quillshaft.present.response_values import torque_text
+from quillshaft.present.shown_text import shown_text
 from quillshaft.present.words import number, plain, source_line
 from quillshaft.sources.line import Source
 from quillshaft.train.model import Machine
@@ -60,8 +61,8 @@ def _size(response: Response, source: Source) -> tuple[str, str]:
             return _of(response, excitation.torque_nm, excitation.torque_share), why
     for item in response.assumed:
         if item.element == source.name and item.key == "amplitude":
-            return item.value, item.why
-    return source.torque or "as the element makes it", "worked out from the element"
+            return shown_text(item.value, train.units), shown_text(item.why, train.units)
+    return shown_text(source.torque or "as the element makes it", train.units), "worked out from the element"
 
 
 def _of(response: Response, torque_nm: float | None, share: float | None) -> str:
@@ -72,7 +73,8 @@ def _of(response: Response, torque_nm: float | None, share: float | None) -> str
 
 def limit_rows(response: Response) -> list[tuple[str, ...]]:
     """(link, rule, section and figures) of every link's limit."""
-    return [(item.link, item.basis) for item in response.limits]
+    units = response.screening.train.units
+    return [(item.link, shown_text(item.basis, units)) for item in response.limits]
 
 
 def case_rows(response: Response) -> list[tuple[str, ...]]:

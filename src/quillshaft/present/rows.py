@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 
 from quillshaft.assess.results import Interference, Screening
+from quillshaft.present.shown_text import shown_text
 from quillshaft.present.units import SHOWN
 from quillshaft.present.words import VERDICT_WORDS, hertz, number, percent, plain, source_line, source_names
 
@@ -110,7 +111,7 @@ def source_rows(screening: Screening) -> list[tuple[str, ...]]:
             f"{source.speed_ratio:.6g}",
             source.when,
             "" if source.major is None else ("major" if source.major else "minor"),
-            source.torque or "",
+            shown_text(source.torque or "", screening.train.units),
         )
         for source in screening.sources
     ]

@@ -18,6 +18,7 @@ from quillshaft.present.rows import (
     station_heads,
     station_rows,
 )
+from quillshaft.present.shown_text import assumed_rows
 from quillshaft.present.viscous_words import VISCOUS_HEADS, viscous_rows
 from quillshaft.present.words import attention_sentences, hertz, mode_words
 from quillshaft.present.written_rows import written_rows
@@ -109,5 +110,5 @@ def written_table(screening: Screening) -> Table:
 
 def assumed_table(screening: Screening) -> Table:
     """What was assumed, in the order met."""
-    rows = ((item.element, item.key, item.value, item.why) for item in screening.assumed)
+    rows = assumed_rows(screening.assumed, screening.train.units)
     return make_table(f"Assumed ({len(screening.assumed)})", "Element|key|value|why", rows)

@@ -18,6 +18,7 @@ from quillshaft.present.pdf.document import (
 )
 from quillshaft.present.report.findings import margin_matrix
 from quillshaft.present.report.front import proof_sentence
+from quillshaft.present.shown_text import assumed_rows, shown_text
 from quillshaft.present.words import attention_sentences, hertz
 
 CAUTIONS = (
@@ -106,7 +107,7 @@ def _is_clear(pair: Interference) -> bool:
 
 
 def _assumptions(screening: Screening) -> list[Any]:
-    rows = [(item.element, item.key, item.value, item.why) for item in screening.assumed]
+    rows = assumed_rows(screening.assumed, screening.train.units)
     parts: list[Any] = [heading(f"Assumptions ({len(rows)})")]
     if not rows:
         return [*parts, paragraph("Nothing was assumed: the file states every value used.")]
@@ -116,7 +117,7 @@ def _assumptions(screening: Screening) -> list[Any]:
 
 def _questions(screening: Screening) -> list[Any]:
     parts: list[Any] = [heading(f"Questions about the data ({len(screening.flags)})")]
-    lines = [f"{flag.element}: {flag.text}" for flag in screening.flags]
+    lines = [f"{flag.element}: {shown_text(flag.text, screening.train.units)}" for flag in screening.flags]
     return [*parts, *(bullets(lines) or [paragraph("None arose.")])]
 
 

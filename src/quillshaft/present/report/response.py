@@ -18,6 +18,7 @@ from quillshaft.present.response_words import (
     spread_sentence,
     unjudged_sentence,
 )
+from quillshaft.present.shown_text import assumed_rows
 
 if TYPE_CHECKING:
     from matplotlib.figure import Figure
@@ -156,7 +157,7 @@ def _basis(response: Response) -> list[Any]:
     ]
     parts += [paragraph(silent)] if silent else []
     if response.assumed:
-        cells = [(item.element, item.key, item.value, item.why) for item in response.assumed]
+        cells = assumed_rows(response.assumed, response.screening.train.units)
         head = ("Element", "key", "value", "why")
         parts += [heading("Assumed for the response", 2), data_table(head, cells, column_widths=(34, 26, 34, 60))]
     return [*parts, *bullets([_sentence(note) for note in response.notes])]

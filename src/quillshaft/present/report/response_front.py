@@ -11,6 +11,7 @@ from quillshaft.assess.results import Screening
 from quillshaft.present.pdf.document import Tone, bullets, heading, key_values, note, stamp
 from quillshaft.present.response_values import finding_text, finding_use
 from quillshaft.present.response_words import closing_sentences, restriction_words, tally_sentences
+from quillshaft.present.shown_text import shown_text
 from quillshaft.present.words import (
     apart_words,
     attention_sentences,
@@ -38,7 +39,7 @@ def closed_verdict(response: Response, by_separation: Headline, rows: Sequence[t
     )
     governing = response.governing
     by_response = [] if governing is None else [("Governing by response", finding_text(response, governing))]
-    by_response += [("Its basis", governing.basis)] if governing is not None else []
+    by_response += [("Its basis", shown_text(governing.basis, screening.train.units))] if governing is not None else []
     named = [("Governing by separation" if label == "Governing item" else label, value) for label, value in rows]
     parts: list[Any] = [stamp(text, tone, "\n".join(lines)), key_values([*by_response, *named])]
     accepted = [sentence for _, sentence in attention_sentences(screening, dismissed=True)]
