@@ -285,11 +285,3 @@ def _lines(train: Train, names: tuple[str, ...]) -> tuple[tuple[int, ...], ...]:
         line = [min(a, b) if own in (a, b) else own for own in line]
     own_lines = {own for own, station in zip(line, train.stations, strict=True) if station.made_by is None}
     return tuple(tuple(i for i, own in enumerate(line) if own == first) for first in sorted(own_lines))
-
-
-def without_damping_words(graph: TorsionalGraph, low_zeta: float) -> TorsionalGraph:
-    """The graph with a loss factor 2ζ on every link that states none (low value of `zeta`)."""
-    links = tuple(
-        replace(link, loss_factor=2.0 * low_zeta) if link.loss_factor is None else link for link in graph.links
-    )
-    return replace(graph, links=links)

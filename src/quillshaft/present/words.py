@@ -182,11 +182,6 @@ def group_sentence(screening: Screening, pairs: Sequence[Interference]) -> str:
     return text
 
 
-def pair_sentence(screening: Screening, pair: Interference) -> str:
-    """One sentence for one interference."""
-    return group_sentence(screening, [pair])
-
-
 def pair_verdict(pair: Interference) -> str:
     """The graver verdict of a pair in a word or two."""
     return "bar too narrow" if pair.bar_too_narrow else VERDICT_WORDS[graver(pair.verdict, pair.worst_verdict)]

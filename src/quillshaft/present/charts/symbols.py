@@ -121,10 +121,3 @@ def letter(axes: Axes, at: Point, text: str) -> None:
     """A letter in a ring: the same letter stands at the other end of the joint."""
     axes.plot(*at, marker="o", ms=8.5, mfc=look.PAPER, mec=look.INK, mew=look.THIN_PT, zorder=6)
     look.put(axes, at[0], at[1], text, 6.5, zorder=7, fontweight="bold", va="center_baseline", gid="letter")
-
-
-def arrow(axes: Axes, start: Point, end: Point) -> None:
-    """A shaft that goes on in another row: a line with an open head."""
-    line(axes, [start, end], look.LINE_PT)
-    back = -1.4 if end[0] > start[0] else 1.4
-    line(axes, [(end[0] + back, end[1] + 1.0), end, (end[0] + back, end[1] - 1.0)], look.LINE_PT)
