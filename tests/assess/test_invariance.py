@@ -44,7 +44,7 @@ TABLES = {"assumptions": {"tolerances": "default"}, "operation": {}}
 
 
 @given(seeds)
-@settings(max_examples=40, deadline=None, derandomize=True)
+@settings(max_examples=30, deadline=None, derandomize=True)
 def test_the_order_of_rows_in_the_file_changes_nothing(seed):
     draft = random_draft(seed)
     extra = {"assumptions": {"tolerances": "default"}}
@@ -78,7 +78,7 @@ def test_the_order_of_rows_in_the_file_changes_nothing(seed):
 
 
 @given(seeds)
-@settings(max_examples=40, deadline=None, derandomize=True)
+@settings(max_examples=30, deadline=None, derandomize=True)
 def test_the_choice_of_the_reference_shaft_changes_nothing(seed):
     draft = random_draft(seed)
     draft.speeds.clear()
@@ -134,7 +134,7 @@ HP_KW = 0.45359237 * 9.80665 * 0.3048 * 550 / 1000
 
 
 @given(seeds)
-@settings(max_examples=40, deadline=None, derandomize=True)
+@settings(max_examples=30, deadline=None, derandomize=True)
 def test_the_unit_system_changes_nothing(seed):
     draft = random_draft(seed)
     names = list(draft.stations)
@@ -196,7 +196,7 @@ def test_a_us_file_by_geometry_is_the_si_file_by_geometry():
 
 
 @given(seeds, st.floats(0.1, 10.0))
-@settings(max_examples=40, deadline=None, derandomize=True)
+@settings(max_examples=30, deadline=None, derandomize=True)
 def test_scaling_every_stiffness_scales_every_frequency_by_its_root(seed, factor):
     draft = random_draft(seed)
     base = frequencies(screening_of(draft.text()))
@@ -212,7 +212,7 @@ def test_scaling_every_stiffness_scales_every_frequency_by_its_root(seed, factor
 
 
 @given(seeds)
-@settings(max_examples=40, deadline=None, derandomize=True)
+@settings(max_examples=30, deadline=None, derandomize=True)
 def test_energy_shares_sum_to_one_and_are_never_negative(seed):
     for mode in screening_of(random_draft(seed, decades=10.0).text()).modes:
         for shares in (mode.strain_energy, mode.kinetic_energy):

@@ -60,13 +60,13 @@ def test_same_input_gives_same_bytes_under_other_hash_seed_time_zone_and_locale(
     """With a forced response, so with every part of a report that has no study."""
     code = (
         f"import hashlib, sys; sys.path.insert(0, {str(ROOT / 'tests')!r}); from issue_reports import issue; "
-        "print(hashlib.sha256(issue('kiln-fan')).hexdigest())"
+        "print(hashlib.sha256(issue('air-compressor')).hexdigest())"
     )
     environment = {**os.environ, "PYTHONHASHSEED": "77", "TZ": "Pacific/Auckland", "LC_ALL": "C"}
     done = subprocess.run(
         [sys.executable, "-c", code], env=environment, capture_output=True, text=True, check=True, timeout=120
     )
-    assert done.stdout.strip() == hashlib.sha256(made("kiln-fan")[1]).hexdigest()
+    assert done.stdout.strip() == hashlib.sha256(made("air-compressor")[1]).hexdigest()
 
 
 @EXAMPLES

@@ -15,7 +15,7 @@ from quillshaft.study.windows import stiffness_windows
 from trains import screening_of, train
 
 TRAINS = 200
-SCAN = np.geomspace(1 / 19.0, 19.0, 29)
+SCAN = np.geomspace(1 / 19.0, 19.0, 21)
 EDGE = 1e-6
 """Relative: how near a band edge the dense solution is not trusted to tell the side."""
 
@@ -98,7 +98,7 @@ def test_screening_at_any_stiffness_gives_the_verdicts_that_the_windows_foretell
     found = (case_of(seed, **TOLERANT) for seed in range(2000, 2200))
     for case in itertools.islice((case for case in found if case is not None), 20):
         windows = stiffness_windows(case.screening, case.link)
-        for factor in SCAN[::4]:
+        for factor in SCAN[::3]:
             stated = nominal(case.draft, case.link) * float(factor)
             result = screening_of(refitted(case.draft, case.link, stated).text(**case.tables))
             actual = at_first_named(case, stated)

@@ -79,7 +79,7 @@ def test_the_line_seen_is_shown_without_control_characters():
 
 
 @given(st.text(alphabet="ab=[]{}\"'\\#,.0-:\n\r \t\0é", max_size=40))
-@settings(max_examples=400, deadline=None)
+@settings(max_examples=250, deadline=None)
 def test_broken_text_gives_a_document_or_one_located_problem_and_line_of_never_raises(text):
     try:
         document = parse_document(text, "t.toml")
@@ -277,7 +277,7 @@ def documents(draw):
 
 
 @given(documents())
-@settings(max_examples=300, deadline=None)
+@settings(max_examples=200, deadline=None)
 def test_the_line_of_every_path_of_a_document_built_line_by_line(built):
     text, truth = built
     document = parse_document(text, "t.toml")

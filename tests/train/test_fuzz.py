@@ -86,7 +86,7 @@ def _tables() -> st.SearchStrategy[dict[str, Any]]:
     return st.fixed_dictionaries({"schema": st.just(1)}, optional=optional)
 
 
-@settings(max_examples=200)
+@settings(max_examples=150)
 @given(_tables())
 def test_random_tables_and_values_are_always_answered_in_words(data):
     text = as_toml(data)
@@ -121,7 +121,7 @@ def _moved(value: Any, factor: float) -> Any:
     return f"{float(match[1]) * factor!r} {match[2]}"
 
 
-@settings(max_examples=120)
+@settings(max_examples=90)
 @given(st.lists(st.tuples(st.sampled_from(NUMBERS), st.floats(-12, 12)), min_size=1, max_size=4))
 def test_numbers_moved_by_up_to_twelve_decades_are_refused_or_screened_soundly(moves):
     data = copy.deepcopy(BASES[moves[0][0][0]])

@@ -231,7 +231,7 @@ def test_check_and_screen_agree_on_what_can_be_used(item, tmp_path):
         assert (code == 2) is item.refused
 
 
-@pytest.mark.parametrize("name", ["deep dots", "garbage 3", "truncated 5", "CRLF", "200 stations"])
+@pytest.mark.parametrize("name", ["deep dots", "garbage 3", "CRLF"])
 def test_a_real_process_does_the_same(name, tmp_path):
     item = next(item for item in FILES if item.name == name)
     (tmp_path / "train.toml").write_bytes(item.content)
