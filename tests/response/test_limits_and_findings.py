@@ -10,6 +10,7 @@ from response_trains import RPM, engine_text, place, plain_text, response_of
 
 from quillshaft.assess.response_standing import standing
 from quillshaft.elements.endurance import permitted_alternating, shear_strength, tensile_share_limits
+from trains import screening_of
 
 GEOMETRY = {
     "between": ["driver", "load"],
@@ -289,3 +290,16 @@ def test_rated_speed_in_a_range_to_be_barred_is_no_pass():
     found = standing(response_of(plain_text(shafts={"shaft": shaft}, operation=operation)))
     assert found.rated_barred
     assert found.verdict == "fail"
+
+
+def test_the_basis_of_a_stated_limit_names_the_one_in_passing_too():
+    shaft = {**GEOMETRY, "permitted-torque": 900.0, "passing-torque": 1800.0}
+    response = response_of(plain_text(shafts={"shaft": shaft}, materials=STEEL))
+    assert response.limits[0].basis == "torque amplitude stated: 900 N·m, 1800 N·m in passing"
+
+
+def test_an_engine_of_which_no_cylinder_works_is_asked_about_its_power():
+    dead = engine_text(machines={}).replace('"cylinders" = ', '"dead-cylinders" = [1, 2, 3], "cylinders" = ')
+    for text, asked in ((engine_text(), False), (dead, True)):
+        flags = [flag.text for flag in screening_of(text).flags]
+        assert any("none of its cylinders works" in said for said in flags) == asked

@@ -28,7 +28,12 @@ def reciprocating_flags(train: Train, graph: TorsionalGraph) -> Iterator[Flag]:
 
 def _power(machine: Machine, train: Train, graph: TorsionalGraph) -> Iterator[Flag]:
     """The file's power against that of the gas, where all cylinders work and each has its own figures."""
-    if train.power is None or any(cylinder.dead for cylinder in machine.cylinders):
+    if train.power is None:
+        return
+    if all(cylinder.dead for cylinder in machine.cylinders) and any(train.power.stations_w.values()):
+        text = "none of its cylinders works, yet [power] is not zero: whose power is it?"
+        yield Flag(f"machines.{machine.name}", text)
+    if any(cylinder.dead for cylinder in machine.cylinders):
         return
     given = [train.power.stations_w.get(name) for name in dict.fromkeys(item.at for item in machine.cylinders)]
     speed = crank_speed(machine, graph, train.operation.rated_rad_s)

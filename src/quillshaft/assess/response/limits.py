@@ -91,12 +91,15 @@ def _shaft(train: Train, shaft: Shaft, mean: Floats | None, ratio: Floats, assum
     flat = np.ones(len(ratio))
     if own.permitted_torque_nm is not None:
         passing = own.passing_torque_nm or own.permitted_torque_nm
-        basis = f"torque amplitude stated: {torque_words(own.permitted_torque_nm)}"
+        quick = f", {torque_words(passing)} in passing" if own.passing_torque_nm else ""
+        basis = f"torque amplitude stated: {torque_words(own.permitted_torque_nm)}{quick}"
         return LimitCurve(shaft.name, own.permitted_torque_nm * flat, passing * flat, per_nm, basis)
     if own.permitted_stress_pa is not None and sections:
         least = min(sections, key=lambda item: item.modulus_m3)
         passing = own.passing_stress_pa or own.permitted_stress_pa
-        basis = f"nominal stress amplitude stated: {own.permitted_stress_pa / MPA:.4g} N/mm² at {least.words}"
+        quick = f", {passing / MPA:.4g} N/mm² in passing" if own.passing_stress_pa else ""
+        stated = f"{own.permitted_stress_pa / MPA:.4g} N/mm²{quick}"
+        basis = f"nominal stress amplitude stated: {stated}, at {least.words}"
         modulus = least.modulus_m3
         return LimitCurve(
             shaft.name, own.permitted_stress_pa * modulus * flat, passing * modulus * flat, 1 / modulus / MPA, basis
