@@ -28,6 +28,7 @@ from quillshaft.present.charts import (
 from quillshaft.present.charts.look import title_of
 from quillshaft.present.charts.response_axes import Scale, value_scale
 from quillshaft.present.charts.response_common import above_limit, share_text, stretches, torque_text, uses
+from quillshaft.present.charts.response_gears import gear_lines, is_blank
 from quillshaft.present.charts.response_orders import leading_lines
 from quillshaft.present.pdf.figure import write_figure_pdf
 from quillshaft.train.coupling_model import CouplingRatings
@@ -503,3 +504,16 @@ def test_a_map_of_one_load_is_drawn_as_points_and_infinite_ratios_count_as_separ
 def test_an_unknown_mean_torque_is_said_in_the_title():
     title = title_of(figures("nothing swings")["response-gear-1.pdf"])
     assert title.startswith("The mean torque of gear reduction is not known")
+
+
+def test_a_gear_that_keeps_contact_at_every_load_needs_no_map_and_an_idle_one_has_none():
+    given = response("pump")
+    (gear,) = given.screening.train.gears
+    calm = replace(given, maps=tuple(replace(item, ratio=0.0 * item.ratio + 0.1) for item in given.maps))
+    assert is_blank(calm.maps[0])
+    assert any(gear.name in line and "stay in contact" in line for line in gear_lines(calm))
+    number = [link.name for link in given.screening.graph.links].index(gear.name)
+    mean = given.normal.mean_torque_nm.copy()
+    mean[number] = 0.0
+    idle = replace(given, cases=(replace(given.normal, mean_torque_nm=mean), *given.cases[1:]), maps=())
+    assert gear_lines(idle) == [f"No mean torque passes gear {gear.name}: any alternating torque separates its teeth"]

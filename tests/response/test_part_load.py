@@ -68,3 +68,11 @@ def test_heat_without_a_table_of_temperature_limits_the_load_with_a_dead_cylinde
     (dead,) = limited.restrictions.dead_loads
     assert dead.because == "limited by rubber"
     assert dead.load_share < 1.0
+
+
+def test_power_stated_at_one_throw_falls_by_the_share_of_one_cylinder_whichever_is_dead():
+    text = engine_text(**rubber(2e4)).replace('"throw-1" = 18\n"throw-2" = 18\n"throw-3" = 18\n', '"throw-1" = 54\n')
+    assert '"throw-1" = 54' in text
+    response = response_of(text)
+    means = [at_rated(response, name)[1] for name in ("normal", *(f"engine cylinder {n} dead" for n in (1, 2, 3)))]
+    assert means == pytest.approx([343.77, *[343.77 * 2 / 3] * 3], rel=1e-3)
