@@ -9,9 +9,10 @@ import pytest
 
 from quillshaft.assess.along import torque_share
 from quillshaft.assess.screening import screen_alone, screen_temperatures
-from quillshaft.elements.coupling import coupling_loss_factor, coupling_stiffness, table_value
+from quillshaft.elements.coupling import coupling_loss_factor, coupling_stiffness
 from quillshaft.graph.build import build_graph
 from quillshaft.graph.states import with_stiffness
+from quillshaft.train.basic_model import table_value
 from quillshaft.train.coupling_model import Coupling
 from quillshaft.train.model import Power
 from quillshaft.train.problems import TrainFileError

@@ -7,7 +7,6 @@ import math
 import pytest
 from scipy.integrate import quad
 
-from quillshaft.elements.coupling import table_value
 from quillshaft.elements.coupling_duty import (
     coupling_twist,
     frequency_factor,
@@ -19,6 +18,7 @@ from quillshaft.elements.coupling_duty import (
     torque_magnification,
     two_mass_frequency,
 )
+from quillshaft.train.basic_model import table_value
 from quillshaft.train.coupling_model import Coupling
 
 POINTS = ((0.0, 0.9e6), (5e3, 1.4e6), (10e3, 2.6e6))

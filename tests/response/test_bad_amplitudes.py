@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import numpy as np
 import pytest
 from response_trains import RPM, engine_text, plain_text, response_of
 
@@ -111,6 +112,7 @@ POWER = {"driver": 100, "load": "balance", "law": "constant-torque"}
     [
         ({"900 rpm": "20 %", "1400 rpm": "50 %"}, "gives 50 % of rated power at rated speed, 1500 rpm"),
         ({"300 rpm": "10 %"}, "gives 10 % of rated power"),
+        ({"0 rpm": "100 %"}, "gives no share at a speed above 0"),
         ({"900 rpm": "20 %", "1500 rpm": "100 %"}, None),
     ],
 )
@@ -130,3 +132,10 @@ def test_a_load_law_that_is_not_whole_at_rated_speed_is_refused(law, said):
 
 def test_an_idle_above_the_range_is_refused():
     assert "lies above the rated speed" in refused(plain_text(operation={"idle": "1800 rpm"}))
+
+
+def test_a_load_law_may_begin_at_standstill():
+    """Power in proportion to speed is one torque at every speed."""
+    law = {"0 rpm": "0 %", "1500 rpm": "100 %"}
+    case = response_of(plain_text(power={"driver": 100, "load": "balance", "law": law})).normal
+    assert np.abs(case.mean_torque_nm[0, :3]) == pytest.approx([100e3 / (1500 * RPM)] * 3, rel=1e-9)

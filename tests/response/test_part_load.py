@@ -76,3 +76,16 @@ def test_power_stated_at_one_throw_falls_by_the_share_of_one_cylinder_whichever_
     response = response_of(text)
     means = [at_rated(response, name)[1] for name in ("normal", *(f"engine cylinder {n} dead" for n in (1, 2, 3)))]
     assert means == pytest.approx([343.77, *[343.77 * 2 / 3] * 3], rel=1e-3)
+
+
+def test_an_engine_being_started_leaves_the_coupling_at_the_stiffness_of_light_load():
+    """Below 0.8 of idle the mean torque is that of light load: so is the stiffness that follows it."""
+    tables = rubber(POINTS)
+    tables["operation"] = {**tables["operation"], "idle": "1400 rpm"}
+    response = response_of(engine_text(**tables))
+    number, slow = place(response, "rubber"), response.speed_rad_s < 0.79 * 1400 * np.pi / 30
+    mean = abs(response.normal.mean_torque_nm[number, slow][0])
+    assert mean == pytest.approx(0.25 * 343.77, rel=1e-3)
+    twist = np.radians(response.normal.twist_deg[number, slow])
+    stiffness = response.normal.alternating_torque_nm[number, slow] / twist
+    assert stiffness == pytest.approx(np.interp(mean, [0.0, 200.0, 400.0], list(POINTS.values())), rel=1e-9)

@@ -9,7 +9,6 @@ import numpy as np
 
 from quillshaft.assess.mean_torque import mean_torques
 from quillshaft.assess.results import LinkDuty
-from quillshaft.elements.coupling import table_value
 from quillshaft.graph.dampers import follows_pendulums, with_pendulums
 from quillshaft.graph.network import Floats, Ints, Network
 from quillshaft.graph.states import Temperature, follows_torque, with_mean_torques
@@ -17,6 +16,7 @@ from quillshaft.graph.torsional import TorsionalGraph
 from quillshaft.records import dataclass
 from quillshaft.solve.modes import Modes, natural_modes
 from quillshaft.solve.plan import plan_elimination
+from quillshaft.train.basic_model import table_value
 from quillshaft.train.model import Operation, Power, Train
 from quillshaft.train.problems import TrainFileError
 from quillshaft.train.validate import Findings
@@ -64,7 +64,7 @@ def torque_share(power: Power, speed_rad_s: float, rated_rad_s: float) -> float:
         return 1.0 / ratio
     if isinstance(law, tuple):
         inside = min(max(speed_rad_s, law[0][0]), law[-1][0])
-        return table_value(law, inside) * rated_rad_s / inside
+        return table_value(law, inside) * rated_rad_s / inside if inside > 0.0 else 0.0
     return 1.0
 
 
@@ -106,20 +106,30 @@ def settle(train: Train, graph: TorsionalGraph, temperature: Temperature, share:
     return Settled(graph, duties, rounds > 0)
 
 
-def graph_at(train: Train, settled: Settled, speed_rad_s: float, temperature: Temperature) -> TorsionalGraph:
-    """The graph at a speed: couplings at its mean torque, pendulums. Raises TrainFileError without a load law."""
-    graph = settled.graph if not follows_torque(train) else _torque_graph(train, settled, speed_rad_s, temperature)
+def graph_at(
+    train: Train, settled: Settled, speed_rad_s: float, temperature: Temperature, share: float | None = None
+) -> TorsionalGraph:
+    """The graph at a speed: couplings at its mean torque, pendulums. Raises TrainFileError without a load law.
+
+    share is the mean torque over that at rated speed; by the load law where it is not given.
+    """
+    graph = settled.graph
+    if follows_torque(train):
+        graph = _torque_graph(train, settled, speed_rad_s, temperature, share)
     return with_pendulums(train, graph, speed_rad_s)
 
 
-def _torque_graph(train: Train, settled: Settled, speed_rad_s: float, temperature: Temperature) -> TorsionalGraph:
+def _torque_graph(
+    train: Train, settled: Settled, speed_rad_s: float, temperature: Temperature, share: float | None
+) -> TorsionalGraph:
     power = train.power
     if power is None or (power.law is None and _wide(train.operation)):
         findings = Findings(train.file, train.cases)
         text = "a coupling's stiffness follows mean torque and the range is wide: how does the load follow speed?"
         findings.add(("power",), text, None, 'law = "square" | "constant-torque" | "constant-power" | a table')
         raise TrainFileError(tuple(findings.problems))
-    share = torque_share(power, speed_rad_s, train.operation.rated_rad_s)
+    if share is None:
+        share = torque_share(power, speed_rad_s, train.operation.rated_rad_s)
     if not settled.split_follows_stiffness:
         torque = {duty.link: share * (duty.mean_torque_nm or 0.0) for duty in settled.duties}
         return with_mean_torques(train, settled.graph, torque, temperature)

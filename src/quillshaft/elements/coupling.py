@@ -2,26 +2,8 @@
 
 from __future__ import annotations
 
-from itertools import pairwise
-
-from quillshaft.train.basic_model import Table
+from quillshaft.train.basic_model import table_value
 from quillshaft.train.coupling_model import Coupling
-
-
-def table_value(points: Table, at: float) -> float:
-    """Value of a table at `at`: straight between its points, held at its first and last value beyond them.
-
-    `points` are (argument, value) pairs rising in the argument, in SI.
-    """
-    (first, low), (last, high) = points[0], points[-1]
-    if at <= first:
-        return low
-    if at >= last:
-        return high
-    for (a, value_a), (b, value_b) in pairwise(points):
-        if at <= b:
-            return value_a + (value_b - value_a) * (at - a) / (b - a)
-    return high
 
 
 def is_rubber(kind: str | None) -> bool:

@@ -10,8 +10,8 @@ from __future__ import annotations
 import math
 from itertools import pairwise
 
-from quillshaft.elements.coupling import is_rubber, table_value
-from quillshaft.train.basic_model import Table
+from quillshaft.elements.coupling import is_rubber
+from quillshaft.train.basic_model import Table, table_value
 from quillshaft.train.coupling_model import Coupling
 
 FLAT_HZ = 10.0

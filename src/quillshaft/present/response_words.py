@@ -46,7 +46,7 @@ def verdict_sentence(response: Response, found: Standing) -> str:
             parts.append(f"{counted(len(found.not_cleared), 'interference')} not cleared")
         if found.rated_barred:
             parts.append("rated speed in a range that would have to be barred")
-        return f"Does not pass: {' and '.join(parts)}."
+        return f"Does not pass: {_listed(parts)}."
     if found.verdict == "not judged":
         left = len(found.not_judged) + len(found.unclosed)
         if not left:

@@ -120,15 +120,16 @@ def meeting_words(screening: Screening, pair: Interference) -> str:
     return f"{nominal}; {worst}{bar_words(pair)}"
 
 
-def bar_words(pair: Interference) -> str:
-    """What the edges of a barred range leave, and the range that would do."""
+def bar_words(pair: Interference, closed: bool = False) -> str:
+    """What the edges of a barred range leave, and the range that would do; `closed` where a response judges them."""
     if pair.free_margin is None or pair.free_worst_margin is None:
         return ""
     left = f"{percent(abs(pair.free_margin))}, {percent(abs(pair.free_worst_margin))} over the tolerances"
     if not pair.bar_too_narrow:
         return f"; at the speeds that stay free {left} remain"
     needed = f"{plain(pair.required)} and {plain(pair.worst_required)} are required"
-    text = f"; THE BARRED RANGE IS TOO NARROW: at its edges only {left} remain ({needed})"
+    narrow = "by separation alone the barred range is too narrow" if closed else "THE BARRED RANGE IS TOO NARROW"
+    text = f"; {narrow}: at its edges only {left} remain ({needed})"
     if pair.bar_needed_rpm is not None:
         text += f"; {pair.bar_needed_rpm[0]:.0f} to {pair.bar_needed_rpm[1]:.0f} rpm would have to be barred"
     return text

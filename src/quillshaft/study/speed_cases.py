@@ -14,11 +14,10 @@ import numpy as np
 
 from quillshaft.assess.along import follows_speed, graph_at, settle
 from quillshaft.assess.results import Screening
-from quillshaft.elements.coupling import table_value
 from quillshaft.graph.network import Network
 from quillshaft.graph.states import coupling_temperature, follows_temperature, with_stiffness
 from quillshaft.graph.torsional import TorsionalGraph
-from quillshaft.train.basic_model import Range
+from quillshaft.train.basic_model import Range, table_value
 from quillshaft.train.coupling_model import Coupling
 
 CELLS = 24

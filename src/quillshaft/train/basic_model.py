@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from itertools import pairwise
 from typing import Literal
 
 from quillshaft.records import dataclass
@@ -35,3 +36,19 @@ class Provenance:
     date: str | None = None
     status: Literal["stated", "calculated", "assumed"] | None = None
     note: str | None = None
+
+
+def table_value(points: Table, at: float) -> float:
+    """Value of a table at `at`: straight between its points, held at its first and last value beyond them.
+
+    `points` are (argument, value) pairs rising in the argument, in SI.
+    """
+    (first, low), (last, high) = points[0], points[-1]
+    if at <= first:
+        return low
+    if at >= last:
+        return high
+    for (a, value_a), (b, value_b) in pairwise(points):
+        if at <= b:
+            return value_a + (value_b - value_a) * (at - a) / (b - a)
+    return high

@@ -5,6 +5,7 @@ from __future__ import annotations
 from itertools import pairwise
 from typing import Any
 
+from quillshaft.train.basic_model import table_value
 from quillshaft.train.damper_checks import check_dampers
 from quillshaft.train.duty_checks import check_duty
 from quillshaft.train.electrical_resolve import tie_problem
@@ -254,22 +255,18 @@ def _read_law(
         for speed, share in law.items()
     ]
     points.sort()
+    if not findings.problems and points[-1][0] <= 0.0:
+        findings.add(
+            ("power", "law"), "gives no share at a speed above 0", law, 'shares by speed, "1500 rpm" = "100 %"'
+        )
+        return None
     if rated_rad_s is not None and not findings.problems:
-        at_rated = _share_at(points, rated_rad_s)
+        at_rated = table_value(tuple(points), rated_rad_s)
         if abs(at_rated - 1.0) > RATED_SHARE:
             rpm = f"{rated_rad_s * RPM:.6g} rpm"
             message = f"gives {at_rated * 100.0:.4g} % of rated power at rated speed, {rpm}"
             findings.add(("power", "law"), message, None, f'a table through "{rpm}" = "100 %"')
     return tuple(points)
-
-
-def _share_at(points: list[tuple[float, float]], speed_rad_s: float) -> float:
-    """Share of a law at a speed: straight between its points, held beyond them."""
-    speed = min(max(speed_rad_s, points[0][0]), points[-1][0])
-    for (low, share), (high, above) in pairwise(points):
-        if low <= speed <= high and high > low:
-            return share + (above - share) * (speed - low) / (high - low)
-    return points[0][1]
 
 
 def read_off(data: Any, findings: Findings) -> dict[str, str]:

@@ -5,11 +5,10 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator
 from dataclasses import replace
-from typing import Literal
 
 import numpy as np
 
-from quillshaft.assess.response.ground import Ground, judged_torque, size_of, worst
+from quillshaft.assess.response.ground import Ground, Zone, judged_torque, size_of, worst
 from quillshaft.assess.response_results import CaseResponse, Finding, LimitCurve
 from quillshaft.elements.coupling_duty import frequency_factor, weighs_by_frequency
 from quillshaft.graph.network import Floats
@@ -18,7 +17,6 @@ from quillshaft.train.model import Machine
 
 ICE_K = 273.15
 RECALLED = "recalled, confirm against your edition"
-Zone = Literal["continuous", "passing"]
 
 
 def damper_faults(ground: Ground) -> tuple[Finding, ...]:

@@ -54,9 +54,8 @@ def worst(
 ) -> Iterator[Finding]:
     """The case and speed at which a value is largest, against its limit where there is one; none where unknown.
 
-    The limit may differ from case to case.
-
-    Cases with a dead cylinder have a finding of their own, where they ask for more than the others.
+    The limit may differ from case to case. Cases with a dead cylinder have a finding of their own, where they ask for
+    more than the others.
     """
     what = (ground, element, check, unit, basis, values, limit, zone)
     working = _largest([case for case in ground.judged if case.kind != "dead cylinder"], *what)

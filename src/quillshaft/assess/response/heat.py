@@ -11,11 +11,11 @@ from quillshaft.assess.response.combine import added_heat
 from quillshaft.assess.response.evaluate import Kept, StateLines, evaluate
 from quillshaft.assess.response.loads import LoadCase, LoadSet
 from quillshaft.assess.response.states import State
-from quillshaft.elements.coupling import table_value
 from quillshaft.graph.network import Bools, Floats, Ints
 from quillshaft.graph.states import REFERENCE_K, coupling_temperature
 from quillshaft.records import dataclass
 from quillshaft.sources.gas import Complexes
+from quillshaft.train.basic_model import table_value
 from quillshaft.train.coupling_model import Coupling
 from quillshaft.train.model import Train
 
@@ -56,9 +56,9 @@ def settle_heat(
 ) -> Heated:
     """Iterate T = ambient + rise · heat / permitted heat at every speed (S,), from the ambient up.
 
-    What has not settled in 60 rounds, or leaves its table by more than 60 K, runs
-    away; the iteration stops early where a coupling gets hotter than highest_k. Source: steady heat balance with a
-    constant thermal resistance (common practice; the rise at the permitted heat is the maker's).
+    What has not settled in 60 rounds, or leaves its table by more than 60 K, runs away; the iteration stops early where
+    a coupling gets hotter than highest_k. Source: steady heat balance with a constant thermal resistance (common
+    practice; the rise at the permitted heat is the maker's).
     """
     couplings = heated_couplings(state.train)
     loads = replace(loads, plain=tuple(item for item in loads.plain if item.constant_nm or item.following_nm))

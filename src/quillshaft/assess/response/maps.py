@@ -8,14 +8,13 @@ from dataclasses import replace
 import numpy as np
 
 from quillshaft.assess.response.combine import put_together
-from quillshaft.assess.response.evaluate import Kept, evaluate
+from quillshaft.assess.response.evaluate import Kept, StateLines, evaluate
 from quillshaft.assess.response.loads import LoadSet
 from quillshaft.assess.response.run import Swept, for_case
 from quillshaft.assess.response.synthesis import cycle_points, wave
 from quillshaft.assess.response_results import SeparationMap, Wave
 from quillshaft.graph.network import Floats
 from quillshaft.graph.states import follows_torque
-from quillshaft.sources.gas import Complexes
 from quillshaft.train.model import Operation, Train
 
 RPM = 30.0 / math.pi
@@ -35,7 +34,9 @@ def separation_maps(train: Train, swept: Swept, loads: LoadSet) -> tuple[Separat
         return ()
     places = [names.index(gear) for gear in gears]
     mean = np.abs(swept.cases[0].mean_torque_nm[places])
-    rows = [_alternating(swept, loads, places, load) / np.maximum(mean * load, 1e-300) for load in share.tolist()]
+    empty = None if follows_torque(train) else _at_load(swept, loads, 0.0)
+    torques = [_alternating(swept, loads, places, load, empty) for load in share.tolist()]
+    rows = [torque / np.maximum(mean * load, 1e-300) for torque, load in zip(torques, share.tolist(), strict=True)]
     return tuple(SeparationMap(gear, share, np.array([row[n] for row in rows])) for n, gear in enumerate(gears))
 
 
@@ -44,38 +45,29 @@ def _has_mean(swept: Swept, place: int) -> bool:
     return bool(np.isfinite(mean).all() and mean.any())
 
 
-def _alternating(swept: Swept, loads: LoadSet, places: list[int], load: float) -> Floats:
+def _alternating(swept: Swept, loads: LoadSet, places: list[int], load: float, empty: StateLines | None) -> Floats:
     """(places, S) alternating torque [N·m] of links in normal firing at a share of load.
 
-    Between none and full, or anew where couplings follow mean torque.
+    Lines are linear in the load, between none (`empty`) and full; worked out anew where couplings follow mean torque.
     """
-    state, shape = swept.states[0], (len(places), len(swept.speed_rad_s))
-    if follows_torque(state.train):
-        case = replace(swept.loads[0], load_share=load)
-        lines = evaluate(for_case(state, case), loads, (case,), (Kept((), ()),), swept.speed_rad_s, swept.share)
-        torques, plain = [own.link_nm for own in lines.groups[0]], lines.plain
-    else:
-        full, plain = swept.lines.groups[0], swept.lines.plain
-        torques = [none + load * (own.link_nm - none) for own, none in zip(full, no_load_lines(swept), strict=True)]
-    values = [(group, torque[places]) for group, torque in zip(loads.groups, torques, strict=True)]
+    lines = _at_load(swept, loads, load) if empty is None else swept.lines
+    torques = [own.link_nm[places] for own in lines.groups[0]]
+    if empty is not None:
+        none = [own.link_nm[places] for own in empty.groups[0]]
+        torques = [least + load * (full - least) for full, least in zip(torques, none, strict=True)]
     single = [
         item.amplitude_nm(swept.share * load) * np.abs(own.link_nm[places]).max(axis=1)
-        for item, own in zip(loads.plain, plain, strict=True)
+        for item, own in zip(loads.plain, lines.plain, strict=True)
     ]
-    return put_together(values, single, shape).half
+    shape = (len(places), len(swept.speed_rad_s))
+    return put_together(list(zip(loads.groups, torques, strict=True)), single, shape).half
 
 
-def no_load_lines(swept: Swept) -> list[Complexes]:
-    """By group (links, lines, S) [N·m] at no load, from the normal and the light-load case of the normal state."""
-    light = next((n for n, case in enumerate(swept.loads) if case.kind == "light load"), None)
-    full = swept.lines.groups[0]
-    if light is None:
-        return [own.link_nm for own in full]
-    share = swept.loads[light].load_share
-    return [
-        (some.link_nm - share * own.link_nm) / (1.0 - share)
-        for own, some in zip(full, swept.lines.groups[light], strict=True)
-    ]
+def _at_load(swept: Swept, loads: LoadSet, load: float) -> StateLines:
+    """What the sources do in normal firing at a share of load, couplings at their mean torque there."""
+    case = replace(swept.loads[0], load_share=load)
+    state = for_case(swept.states[0], case)
+    return evaluate(state, loads, (case,), (Kept((), ()),), swept.speed_rad_s, swept.share)
 
 
 def chosen_speeds(operation: Operation) -> tuple[float, ...]:

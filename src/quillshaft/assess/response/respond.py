@@ -247,6 +247,10 @@ def _notes(screening: Screening, swept: Swept, loads: LoadSet) -> list[str]:
         out.append(
             "the grid holds the machine near rated speed only: start-up speeds are not steady and not shown here"
         )
+    settled = swept.states[0].settled
+    if settled is not None and settled.split_follows_stiffness:
+        text = "in an elastic loop couplings that follow mean torque keep the stiffness of full load in every case"
+        out.append(text)
     several = [item.source.name for item in loads.plain if len(item.places) > 1 and not item.silent]
     if several:
         out.append(f"applied at whichever station of the shaft line is worst for each link: {', '.join(several)}")

@@ -133,16 +133,15 @@ def _few(words: list[str]) -> str:
 
 def lowest_idle(ground: Ground) -> tuple[float | None, str]:
     """Lowest speed [rpm] from which up to the judged range every continuous limit of torque holds in normal running."""
-    limited = [curve for curve in ground.limits if curve.continuous_nm is not None]
+    running = [over_limit(ground, case) for case in ground.judged if case.kind in RUNNING]
     if float(ground.speed_rad_s[0]) >= ground.train.operation.ranges_rad_s[0][0] * (1 - 1e-9):
         return None, "the train runs at no speed below the judged range"
-    if not limited:
+    if not any(running):
         return None, "no limits are given, so no lowest idle can be stated"
     top = ground.train.operation.ranges_rad_s[0][0]
     bad = np.zeros(len(ground.speed_rad_s), dtype=bool)
-    for case in ground.judged:
-        for own in over_limit(ground, case).values() if case.kind in RUNNING else ():
-            bad |= own
+    for own in (row for over in running for row in over.values()):
+        bad |= own
     below = np.flatnonzero(ground.speed_rad_s <= top * (1 + 1e-9))
     wrong = [index for index in below.tolist() if bad[index]]
     if not wrong:

@@ -12,6 +12,7 @@ from quillshaft.assess.along import Settled, follows_speed, graph_at, settle
 from quillshaft.assess.cutting import cut_finely
 from quillshaft.assess.damped_network import damped_network
 from quillshaft.assess.mean_torque import mean_torques
+from quillshaft.assess.response.mean import shares_along
 from quillshaft.assess.response_results import CaseKind
 from quillshaft.assess.results import LinkDuty
 from quillshaft.graph.build import build_graph
@@ -137,7 +138,9 @@ def _along(
     rings = len(network.spring_nm_rad) - len(settled.graph.network.spring_nm_rad)
 
     def stiffness(speed_rad_s: Floats) -> Floats:
-        columns = [pick(graph_at(train, settled, speed, temperature)).spring_nm_rad for speed in speed_rad_s.tolist()]
+        pairs = zip(speed_rad_s.tolist(), shares_along(train, speed_rad_s).tolist(), strict=True)
+        graphs = [graph_at(train, settled, speed, temperature, share) for speed, share in pairs]
+        columns = [pick(graph).spring_nm_rad for graph in graphs]
         return np.concatenate([np.array(columns).T, np.zeros((rings, len(speed_rad_s)))])
 
     return stiffness

@@ -57,7 +57,7 @@ def front_parts(screening: Screening, response: Response | None = None) -> list[
     if response is None:
         verdict = _verdict(screening)
     else:
-        verdict = closed_verdict(response, headline(screening), [*_governing(screening), *_basis(screening)])
+        verdict = closed_verdict(response, headline(screening), [*_governing(screening, True), *_basis(screening)])
     return [*_identification(screening, response), *verdict, *_train(screening), *_operating_map(screening)]
 
 
@@ -120,7 +120,7 @@ def _verdict(screening: Screening) -> list[Any]:
     return parts
 
 
-def _governing(screening: Screening) -> list[tuple[str, str]]:
+def _governing(screening: Screening, closed: bool = False) -> list[tuple[str, str]]:
     governing = screening.governing()
     if governing is None:
         return []
@@ -133,7 +133,7 @@ def _governing(screening: Screening) -> list[tuple[str, str]]:
     span = f"{hertz(low)} to {hertz(high)} Hz over all tolerances together"
     return [
         ("Governing item", f"mode {mode.mode} ({mode_words(mode)}) and {governing.source}"),
-        ("Its margin", margin + bar_words(governing)),
+        ("Its margin", margin + bar_words(governing, closed)),
         (
             "Its uncertainty",
             f"natural frequency {hertz(mode.frequency_hz)} Hz, "

@@ -45,17 +45,12 @@ def closed_verdict(response: Response, by_separation: Headline, rows: Sequence[t
     governing = response.governing
     by_response = [] if governing is None else [("Governing by response", finding_text(response, governing))]
     by_response += [("Its basis", shown_text(governing.basis, screening.train.units))] if governing is not None else []
-    named = [(BY_SEPARATION.get(label, label), _by_separation(value)) for label, value in rows]
+    named = [(BY_SEPARATION.get(label, label), value) for label, value in rows]
     parts: list[Any] = [stamp(text, tone, "\n".join(lines)), key_values([*by_response, *named])]
     accepted = [sentence for _, sentence in attention_sentences(screening, dismissed=True)]
     if accepted:
         parts += [heading("Accepted by name", 2), *bullets(accepted[:MOST_ON_PAGE_ONE])]
     return [*parts, *_closings(response)]
-
-
-def _by_separation(text: str) -> str:
-    """What screening says of a barred range, where the response judges its edges."""
-    return text.replace("THE BARRED RANGE IS TOO NARROW", "by separation alone the barred range is too narrow")
 
 
 def response_headline(response: Response, by_separation: Headline) -> Headline:
