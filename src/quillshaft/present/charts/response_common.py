@@ -7,6 +7,7 @@ from collections.abc import Sequence
 
 import numpy as np
 
+from quillshaft.assess.response.ground import share_of
 from quillshaft.assess.response_results import CaseResponse, LimitCurve, Response
 from quillshaft.graph.network import Bools, Floats, Ints
 from quillshaft.present.charts.phrases import RPM, brief
@@ -138,9 +139,7 @@ def uses(response: Response, link: str) -> list[Use]:
         best: Use | None = None
         for case in judged_cases(response):
             row = swing(response, case, link)
-            with np.errstate(divide="ignore", invalid="ignore"):
-                share = np.where(limit > 0, row / limit, np.where(row > 0, np.inf, 0.0))
-            share = np.where(inside & np.isfinite(row), share, -1.0)
+            share = np.where(inside & np.isfinite(row), share_of(row, limit), -1.0)
             at = int(np.argmax(np.where(share == share.max(), row, -1.0)))
             held = (best.share, best.torque_nm) if best else (-0.5, 0.0)
             if (share[at], row[at]) > held:
